@@ -2,4 +2,7 @@ module github.com/polewright/polewright
 
 go 1.25.0
 
-require gonum.org/v1/gonum v0.17.0
+require (
+	github.com/google/go-cmp v0.7.0
+	gonum.org/v1/gonum v0.17.0
+)
