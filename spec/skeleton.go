@@ -71,8 +71,3 @@ type End struct {
 	By     []Cause
 }
 type Cause struct{}
-type SecondOrder struct{ Damping, NaturalFrequency float64 }
-
-func (q SecondOrder) Overshoot() float64                    { return 0 }
-func DampingForOvershoot(fraction float64) (float64, error) { return 0, errSkeleton }
-func DampingAngle(zeta float64) (float64, error)            { return 0, errSkeleton }
