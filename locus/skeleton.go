@@ -12,7 +12,7 @@ var errSkeleton = errors.New("locus: skeleton")
 
 type Family struct{ fixed, scaled poly.Poly }
 type Option func(*settings)
-type settings struct{}
+type settings struct{ trace traceSettings }
 type Sign int
 
 const (
@@ -25,18 +25,17 @@ type Asymptotes struct {
 	Angles   []float64
 }
 
-func Gain(open tf.Function) (Family, error)                          { return Family{}, errSkeleton }
-func Parameter(fixed, scaled poly.Poly) (Family, error)              { return Family{}, errSkeleton }
-func (f Family) PolesAt(k float64) ([]poly.Root, error)              { return nil, errSkeleton }
-func (f Family) GainAt(s complex128) (k, miss float64)               { return 0, 0 }
-func (f Family) Deficiency(s complex128) float64                     { return 0 }
-func (f Family) Asymptotes(sign Sign) Asymptotes                     { return Asymptotes{} }
-func (f Family) BreakPoints() ([]BreakPoint, error)                  { return nil, errSkeleton }
-func (f Family) Departures(sign Sign) ([]Departure, error)           { return nil, errSkeleton }
-func (f Family) Arrivals(sign Sign) ([]Departure, error)             { return nil, errSkeleton }
-func (f Family) Crossings(r Region) ([]Crossing, error)              { return nil, errSkeleton }
-func (f Family) Windows(r Region) ([]Window, error)                  { return nil, errSkeleton }
-func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) { return nil, errSkeleton }
+func Gain(open tf.Function) (Family, error)                { return Family{}, errSkeleton }
+func Parameter(fixed, scaled poly.Poly) (Family, error)    { return Family{}, errSkeleton }
+func (f Family) PolesAt(k float64) ([]poly.Root, error)    { return nil, errSkeleton }
+func (f Family) GainAt(s complex128) (k, miss float64)     { return 0, 0 }
+func (f Family) Deficiency(s complex128) float64           { return 0 }
+func (f Family) Asymptotes(sign Sign) Asymptotes           { return Asymptotes{} }
+func (f Family) BreakPoints() ([]BreakPoint, error)        { return nil, errSkeleton }
+func (f Family) Departures(sign Sign) ([]Departure, error) { return nil, errSkeleton }
+func (f Family) Arrivals(sign Sign) ([]Departure, error)   { return nil, errSkeleton }
+func (f Family) Crossings(r Region) ([]Crossing, error)    { return nil, errSkeleton }
+func (f Family) Windows(r Region) ([]Window, error)        { return nil, errSkeleton }
 
 type BreakPoint struct {
 	S     complex128
@@ -70,11 +69,3 @@ func OnSamples(r Region, period float64) Region { return nil }
 type BoundaryOnLocusError struct{}
 
 func (e *BoundaryOnLocusError) Error() string { return "locus: the whole boundary is on the locus" }
-
-type Locus struct{ Branches []Branch }
-type Branch struct{}
-
-func (b Branch) Len() int                        { return 0 }
-func (b Branch) XY(i int) (re, im float64)       { return 0, 0 }
-func (b Branch) GainAt(i int) float64            { return 0 }
-func (b Branch) At(k float64) (complex128, bool) { return 0, false }
