@@ -1,0 +1,381 @@
+package timeresp
+
+import (
+	"math"
+
+	"github.com/polewright/polewright/poly"
+)
+
+// Figures are the figures of merit of a response. Times are in seconds from t = 0, dead time
+// included; fractions are of |Final|. What does not exist is NaN.
+type Figures struct {
+	Final          float64 // the limit for t → ∞
+	Overshoot      float64 // the largest excess beyond Final, fraction of |Final|; 0 if there is none
+	Undershoot     float64 // the largest excursion to the side opposite Final, fraction of |Final|; 0 if there is none
+	PeakTime       float64 // of the overshoot; NaN if there is none
+	RiseTime       float64 // from the first crossing of 10 % to that of 90 %
+	SettlingTime   float64 // the last entry into the band
+	PeakValue      float64 // the response at PeakTime
+	UndershootTime float64 // of the undershoot; NaN if there is none
+	DelayTime      float64 // first crossing of 50 %
+	RiseTimeFull   float64 // first crossing of 100 %; NaN if there is none
+	Reach10        float64 // first crossing of 10 %
+	Reach90        float64 // first crossing of 90 %
+}
+
+// noExcursion is the excursion beyond the final value, as a fraction of it, that counts as none.
+const noExcursion = 1e-9
+
+// A node is the signal at one instant, by scaled time.
+type node struct {
+	t       float64
+	y, d, c float64 // value, first and second derivative
+	spread  float64 // bound on |y - limit| from here on
+	fourth  float64 // bound on |y⁗| from here on
+}
+
+// cell holds a signal between two nodes as a cubic with a proven error. Errors of cubic
+// Hermite interpolation: G. Birkhoff and A. Priver, Hermite interpolation errors for
+// derivatives, J. Math. and Phys. 46 (1967) 440–447: 1/384, √3/216 and 1/12 times h⁴, h³,
+// h² times the bound on the fourth derivative.
+type cell struct {
+	low, high           float64 // of y
+	lowRate, highRate   float64 // of dy/dτ
+	lowCurve, highCurve float64 // of d²y/dτ²
+}
+
+func enclose(a, b *node, fourth float64) (c cell) {
+	h := b.t - a.t
+	e := h * h * fourth * (1.0 / 12)
+	p, q := a.y+a.d*h/3, b.y-b.d*h/3
+	c.low = min(min(a.y, b.y), min(p, q)) - e*h*h/32
+	c.high = max(max(a.y, b.y), max(p, q)) + e*h*h/32
+	mid := 3 * (q - p) / h
+	e1 := e * h * 0.0962251 // 12·√3/216, rounded up
+	c.lowRate = min(min(a.d, b.d), mid) - e1
+	c.highRate = max(max(a.d, b.d), mid) + e1
+	u, v := 2*(mid-a.d)/h, 2*(b.d-mid)/h
+	c.lowCurve = min(u, v) - e
+	c.highCurve = max(u, v) + e
+	return c
+}
+
+// A scan reads figures off one kernel, divided by the final value.
+type scan struct {
+	k       *kernel
+	inverse float64 // of the final value
+	levels  [4]float64
+	reached [4]float64 // τ of the first crossing; NaN
+	next    int        // the lowest level not reached
+	most    float64    // largest value so far and where, if above 1 + noExcursion
+	mostAt  float64
+	least   float64
+	leastAt float64
+	band    float64
+}
+
+const maxDepth = 60
+
+func (s *scan) node(tau float64) (n node) {
+	s.k.node(tau, &n)
+	n.y *= s.inverse
+	n.d *= s.inverse
+	n.c *= s.inverse
+	n.spread *= math.Abs(s.inverse)
+	n.fourth *= math.Abs(s.inverse)
+	return n
+}
+
+func (s *scan) fourth(a, b *node) float64 {
+	if b.t <= s.k.earlyEnd {
+		return s.k.earlyFourth(a.t, b.t) * math.Abs(s.inverse)
+	}
+	return a.fourth
+}
+
+// see takes note of the signal at one node.
+func (s *scan) see(n *node) {
+	for s.next < len(s.levels) && n.y >= s.levels[s.next] {
+		s.reached[s.next] = n.t
+		s.next++
+	}
+	if n.y > s.most {
+		s.most, s.mostAt = n.y, n.t
+	}
+	if n.y < s.least {
+		s.least, s.leastAt = n.y, n.t
+	}
+}
+
+// forward takes note of everything between a, seen already, and b.
+func (s *scan) forward(a, b *node, depth int) {
+	c := enclose(a, b, s.fourth(a, b))
+	if !(c.high > s.most || c.low < s.least || s.next < len(s.levels) && c.high >= s.levels[s.next]) {
+		return
+	}
+	if c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t {
+		for s.next < len(s.levels) && b.y >= s.levels[s.next] {
+			n := s.crossing(*a, *b, s.levels[s.next])
+			s.reached[s.next] = n.t
+			s.next++
+		}
+		s.see(b)
+		return
+	}
+	if c.lowCurve >= 0 || c.highCurve <= 0 {
+		if a.d*b.d < 0 {
+			m := s.extremum(*a, *b)
+			s.forward(a, &m, maxDepth+1)
+			s.forward(&m, b, maxDepth+1)
+		} else {
+			s.forward(a, b, maxDepth+1)
+		}
+		return
+	}
+	m := s.node(a.t + (b.t-a.t)/2)
+	s.forward(a, &m, depth+1)
+	s.forward(&m, b, depth+1)
+}
+
+// crossing returns where the signal, monotone between a and b, passes the level.
+func (s *scan) crossing(a, b node, level float64) node {
+	if a.y == level {
+		return a
+	}
+	if b.y == level {
+		return b
+	}
+	rising := b.y > a.y
+	t := guessCrossing(&a, &b, level)
+	for range 100 {
+		if !(t > a.t && t < b.t) {
+			t = a.t + (b.t-a.t)/2
+			if t <= a.t || t >= b.t {
+				return b
+			}
+		}
+		n := s.node(t)
+		miss := level - n.y
+		if miss == 0 {
+			return n
+		}
+		if (miss > 0) == rising {
+			a = n
+		} else {
+			b = n
+		}
+		step := miss / n.d
+		if math.Abs(step) <= 1e-15*t {
+			return n
+		}
+		if math.Abs(step) <= 3e-8*t && n.c*step*step <= 1e-15*math.Abs(n.d)*t*2 {
+			n.t += step
+			return n
+		}
+		t += step
+		if a.t > t || b.t < t || math.IsNaN(t) {
+			t = a.t + (b.t-a.t)/2
+		}
+	}
+	return b
+}
+
+// guessCrossing solves the cubic through both nodes.
+func guessCrossing(a, b *node, level float64) float64 {
+	h := b.t - a.t
+	rise := b.y - a.y
+	x := (level - a.y) / rise
+	c1, c2, c3 := a.d*h, 3*rise-h*(2*a.d+b.d), h*(a.d+b.d)-2*rise
+	for range 3 {
+		f := a.y - level + x*(c1+x*(c2+x*c3))
+		g := c1 + x*(2*c2+x*3*c3)
+		if g == 0 {
+			break
+		}
+		x -= f / g
+		x = min(max(x, 0), 1)
+	}
+	return a.t + h*x
+}
+
+// extremum returns where the derivative, monotone between a and b, is zero.
+func (s *scan) extremum(a, b node) node {
+	h := b.t - a.t
+	// The derivative of the cubic is a parabola; its root by the stable formula.
+	rise := b.y - a.y
+	q0, q1, q2 := a.d*h, 3*rise-h*(2*a.d+b.d), 3*(h*(a.d+b.d)-2*rise)
+	x := 0.5
+	if disc := q1*q1 - q2*q0; disc >= 0 {
+		root := -(q1 + math.Copysign(math.Sqrt(disc), q1))
+		x = root / q2
+		if y := q0 / root; y >= 0 && y <= 1 {
+			x = y
+		}
+	}
+	t := a.t + h*x
+	for range 100 {
+		if !(t > a.t && t < b.t) {
+			t = a.t + (b.t-a.t)/2
+			if t <= a.t || t >= b.t {
+				break
+			}
+		}
+		n := s.node(t)
+		if n.d == 0 {
+			return n
+		}
+		if n.d*a.d > 0 {
+			a = n
+		} else {
+			b = n
+		}
+		step := -n.d / n.c
+		if math.Abs(step) <= 1e-11*t {
+			n.t += step // the value is stationary
+			return n
+		}
+		t += step
+	}
+	if math.Abs(a.d) < math.Abs(b.d) {
+		return a
+	}
+	return b
+}
+
+// Figures returns the figures of merit, the settling time for a band that is a fraction of
+// the final value (0.02).
+func (r *Response) Figures(band float64) (Figures, error) {
+	const call = "timeresp.Response.Figures"
+	nan := math.NaN()
+	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
+	if !(band > 0) || math.IsInf(band, 0) {
+		return f, &poly.ArgumentError{Call: call, Argument: "band", Reason: "must be a positive fraction of the final value"}
+	}
+	if math.IsNaN(r.final) {
+		return f, &NoFinalValueError{Call: call}
+	}
+	if r.final == 0 {
+		return f, nil
+	}
+	a := &r.arcs[len(r.arcs)-1]
+	s := scan{k: a.signal, inverse: 1 / r.final, levels: [4]float64{0.1, 0.5, 0.9, 1}, band: band}
+	for i := range s.reached {
+		s.reached[i] = nan
+	}
+	s.most, s.mostAt, s.least, s.leastAt = 1+noExcursion, nan, -noExcursion, nan
+	s.run()
+	seconds := func(tau float64) float64 { return a.from + tau/a.signal.w }
+	f.Overshoot, f.Undershoot = 0, 0
+	if s.mostAt == s.mostAt {
+		f.Overshoot, f.PeakTime, f.PeakValue = s.most-1, seconds(s.mostAt), s.most*r.final
+		f.RiseTimeFull = seconds(s.reached[3])
+	}
+	if s.leastAt == s.leastAt {
+		f.Undershoot, f.UndershootTime = -s.least, seconds(s.leastAt)
+	}
+	f.Reach10, f.DelayTime, f.Reach90 = seconds(s.reached[0]), seconds(s.reached[1]), seconds(s.reached[2])
+	f.RiseTime = (s.reached[2] - s.reached[0]) / a.signal.w
+	f.SettlingTime = seconds(s.settle())
+	return f, nil
+}
+
+// run looks from t = 0 on until nothing is left to be found.
+func (s *scan) run() {
+	a := s.node(0)
+	s.see(&a)
+	for {
+		if s.next >= 3 && a.spread <= s.most-1 && a.spread <= 1-s.least {
+			return
+		}
+		h := 1.0
+		if a.t >= s.k.earlyEnd {
+			h = stepFor(&a)
+			if math.IsInf(h, 1) {
+				return
+			}
+		}
+		b := s.node(a.t + h)
+		s.forward(&a, &b, 0)
+		a = b
+	}
+}
+
+// stepFor returns a step over which the cubic misses the signal by about 2 % of the spread.
+func stepFor(a *node) float64 {
+	return math.Sqrt(math.Sqrt(384 * 0.02 * a.spread / a.fourth))
+}
+
+// settle returns the last entry into the band.
+func (s *scan) settle() float64 {
+	// The horizon: from there on the modes together cannot leave the band.
+	n := s.node(s.k.earlyEnd)
+	if n.spread > s.band {
+		lo, hi := n.t, max(n.t, 1)
+		for {
+			hi *= 2
+			if s.node(hi).spread <= s.band {
+				break
+			}
+			lo = hi
+		}
+		for range 12 {
+			m := lo + (hi-lo)/2
+			if s.node(m).spread <= s.band {
+				hi = m
+			} else {
+				lo = m
+			}
+		}
+		n = s.node(hi)
+	}
+	b := n
+	for b.t > 0 {
+		h := 1.0
+		if b.t > s.k.earlyEnd {
+			h = min(stepFor(&b), b.t-s.k.earlyEnd)
+		}
+		a := s.node(max(b.t-h, 0))
+		if n, found := s.backward(&a, &b, 0); found {
+			return n
+		}
+		b = a
+	}
+	return 0
+}
+
+// backward returns the last entry into the band between a and b, b being inside.
+func (s *scan) backward(a, b *node, depth int) (float64, bool) {
+	c := enclose(a, b, s.fourth(a, b))
+	if c.low > 1-s.band && c.high < 1+s.band {
+		return 0, false
+	}
+	if c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t {
+		switch {
+		case a.y > 1+s.band:
+			return s.crossing(*a, *b, 1+s.band).t, true
+		case a.y < 1-s.band:
+			return s.crossing(*a, *b, 1-s.band).t, true
+		}
+		return 0, false
+	}
+	if c.lowCurve >= 0 || c.highCurve <= 0 {
+		if a.d*b.d >= 0 {
+			return s.backward(a, b, maxDepth+1)
+		}
+		m := s.extremum(*a, *b)
+		if t, found := s.backward(&m, b, maxDepth+1); found {
+			return t, true
+		}
+		return s.backward(a, &m, maxDepth+1)
+	}
+	m := s.node(a.t + (b.t-a.t)/2)
+	if t, found := s.backward(&m, b, depth+1); found {
+		return t, true
+	}
+	return s.backward(a, &m, depth+1)
+}
+
+// A NoFinalValueError reports a response without a limit: it grows without bound, or swings forever.
+type NoFinalValueError struct{ Call string }
+
+func (e *NoFinalValueError) Error() string { return e.Call + ": the response has no final value" }

@@ -1,0 +1,323 @@
+package timeresp
+
+import (
+	"math"
+)
+
+// Letters of this file: τ = w·t scaled time, w a power of two not below the largest pole;
+// z = s/w; p a pole in z; y⁽ᵏ⁾ a derivative by τ.
+
+// A transform is the Laplace transform num/den of a signal in scaled time, den monic.
+type transform struct {
+	scale    int    // w = 2^scale
+	num, den []wide // by power of z; the last of den is 1
+	poles    []pole // of den; one of each conjugate pair
+}
+
+// A pole has im ≥ 0; one with im > 0 stands for itself and its conjugate.
+type pole struct {
+	at           wideComplex
+	multiplicity int
+}
+
+// A mode is one pole's share in the signal, for a pair that of both:
+// Re(e^(pτ)·Σ a[k]τ^k) with k < multiplicity, the a in kernel.amplitudes from first on.
+type mode struct {
+	re, im, reLo, imLo float64
+	ar, ai             float64 // a[0]
+	first, count       int32   // of the a; count is 1 for a simple pole
+}
+
+// A kernel is a signal that is zero before t = 0 and has a rational Laplace transform
+// after. Early on, where the modes nearly cancel, it is a chain of Taylor polynomials; then
+// it is the sum of its modes.
+type kernel struct {
+	w          float64
+	drift      []float64 // polynomial in τ, by power: the share of a pole at 0
+	modes      []mode
+	amplitudes []complex128 // of multiple poles
+	dirac      float64      // weight of the Dirac impulse at t = 0
+	early      []float64    // len(early) = pieces·earlyTerms coefficients of (τ - τᵢ)/h
+	earlyEnd   float64      // scaled; the modes are used from here on
+	leading    int          // the first piece is this power times its polynomial
+	bound      float64      // of the modal sum, per unit of envelope
+}
+
+const (
+	earlyStep  = 2.0 // h, scaled
+	earlyTerms = 26  // kept of a piece; (h^k/k!) falls below 2⁻⁵² of the sum
+	maxPieces  = 40
+
+	// modalRounding bounds the rounding of one mode's value relative to its envelope:
+	// exponential and sine are good to a unit in the last place or better, the argument is
+	// compensated, then three products and a sum.
+	modalRounding = 8 * 0x1p-53
+	tolerance     = 5e-12 // of max |y| on [0, t], half of what is promised
+)
+
+// newKernel inverts a strictly proper transform.
+func newKernel(f *transform) *kernel {
+	k := &kernel{w: math.Ldexp(1, f.scale)}
+	k.expand(f)
+	k.begin(f)
+	return k
+}
+
+// expand finds the amplitudes of the modes: those of the Laurent series at each pole.
+func (k *kernel) expand(f *transform) {
+	k.modes = make([]mode, 0, len(f.poles))
+	var series [8]wideComplex
+	for i := range f.poles {
+		p := &f.poles[i]
+		a := series[:]
+		if p.multiplicity > len(a) {
+			a = make([]wideComplex, p.multiplicity)
+		}
+		a = a[:p.multiplicity]
+		shiftedSeries(a, f.num, p.at)
+		for j := range f.poles {
+			q := &f.poles[j]
+			if j != i {
+				divideSeries(a, p.at.sub(q.at), q.multiplicity)
+			}
+			if q.at.im.hi != 0 {
+				conjugate := wideComplex{q.at.re, q.at.im.neg()}
+				divideSeries(a, p.at.sub(conjugate), q.multiplicity)
+			}
+		}
+		// Now a[0] belongs to (z-p)^-m, that is τ^(m-1)/(m-1)!.
+		if p.at.re.hi == 0 && p.at.im.hi == 0 {
+			k.drift = make([]float64, len(a))
+			factorial := 1.0
+			for power := range a {
+				if power > 1 {
+					factorial *= float64(power)
+				}
+				k.drift[power] = a[len(a)-1-power].re.float() / factorial
+			}
+			continue
+		}
+		double := 1.0
+		if p.at.im.hi != 0 {
+			double = 2
+		}
+		m := mode{re: p.at.re.hi, reLo: p.at.re.lo, im: p.at.im.hi, imLo: p.at.im.lo, first: int32(len(k.amplitudes)), count: int32(len(a))}
+		factorial := 1.0
+		for power := range a {
+			if power > 1 {
+				factorial *= float64(power)
+			}
+			c := a[len(a)-1-power].complex()
+			c = complex(double*real(c)/factorial, double*imag(c)/factorial)
+			if power == 0 {
+				m.ar, m.ai = real(c), imag(c)
+			}
+			if len(a) > 1 {
+				k.amplitudes = append(k.amplitudes, c)
+			}
+		}
+		k.modes = append(k.modes, m)
+	}
+}
+
+// shiftedSeries sets a to the first coefficients of num about p, by repeated synthetic
+// division.
+func shiftedSeries(a []wideComplex, num []wide, p wideComplex) {
+	if len(a) == 1 {
+		var y wideComplex
+		for i := len(num) - 1; i >= 0; i-- {
+			y = y.mul(p)
+			y.re = y.re.add(num[i])
+		}
+		a[0] = y
+		return
+	}
+	work := make([]wideComplex, len(num))
+	for i, c := range num {
+		work[i].re = c
+	}
+	for k := range a {
+		if k >= len(work) {
+			a[k] = wideComplex{}
+			continue
+		}
+		for i := len(work) - 2; i >= k; i-- {
+			work[i] = work[i].add(work[i+1].mul(p))
+		}
+		a[k] = work[k]
+	}
+}
+
+// divideSeries divides the power series a by (d + x)^m.
+func divideSeries(a []wideComplex, d wideComplex, m int) {
+	for ; m > 0; m-- {
+		a[0] = a[0].div(d)
+		for k := 1; k < len(a); k++ {
+			a[k] = a[k].sub(a[k-1]).div(d)
+		}
+	}
+}
+
+// begin lays Taylor polynomials from t = 0 on until the modal sum is good enough. The
+// derivatives come from the differential equation den(d/dτ)y = 0, in wide arithmetic.
+func (k *kernel) begin(f *transform) {
+	n := len(f.den) - 1
+	if n == 0 {
+		return
+	}
+	terms := earlyTerms + n
+	buffer := make([]wide, 2*terms)
+	y, next := buffer[:terms], buffer[terms:]
+	for i := 0; i < n; i++ { // y⁽ⁱ⁾(0+) by long division
+		var c wide
+		if j := n - 1 - i; j < len(f.num) {
+			c = f.num[j]
+		}
+		for j := 1; j <= i; j++ {
+			c = c.sub(f.den[n-j].mul(y[i-j]))
+		}
+		y[i] = c
+	}
+	k.leading = 0
+	for k.leading < n && y[k.leading].hi == 0 {
+		k.leading++
+	}
+	if k.leading == n { // the zero signal
+		k.leading = 0
+		return
+	}
+	weights := taylorWeights()
+	largest := 0.0
+	for piece := 0; ; piece++ {
+		start := earlyStep * float64(piece)
+		if k.roundingAt(start) <= tolerance*largest {
+			return
+		}
+		if piece == maxPieces {
+			return
+		}
+		for i := n; i < terms; i++ {
+			var c wide
+			for j := 1; j <= n; j++ {
+				c = c.sub(f.den[n-j].mul(y[i-j]))
+			}
+			y[i] = c
+		}
+		skip := 0
+		if piece == 0 {
+			skip = k.leading
+		}
+		for i := 0; i < earlyTerms; i++ {
+			k.early = append(k.early, y[i+skip].hi*weights[i+skip].hi)
+		}
+		k.earlyEnd = start + earlyStep
+		for i := 0; i < n; i++ { // step on
+			var sum wide
+			for j := terms - 1 - i; j >= 0; j-- {
+				sum = sum.add(y[i+j].mul(weights[j]))
+			}
+			next[i] = sum
+		}
+		y, next = next, y
+		largest = math.Max(largest, math.Abs(y[0].hi))
+	}
+}
+
+// taylorWeights returns h^k/k!.
+func taylorWeights() []wide { return weightTable[:] }
+
+var weightTable = func() (t [128]wide) {
+	t[0] = wide{1, 0}
+	for i := 1; i < len(t); i++ {
+		t[i] = t[i-1].mulFloat(earlyStep).div(wide{float64(i), 0})
+	}
+	return t
+}()
+
+// roundingAt bounds the rounding of the modal sum at τ and, for a decaying signal, later.
+func (k *kernel) roundingAt(tau float64) float64 {
+	sum := 0.0
+	for i := len(k.drift) - 1; i >= 0; i-- {
+		sum = sum*tau + math.Abs(k.drift[i])
+	}
+	for i := range k.modes {
+		m := &k.modes[i]
+		e := math.Exp(m.re * tau)
+		if m.count == 1 {
+			sum += e * (math.Abs(m.ar) + math.Abs(m.ai))
+			continue
+		}
+		a := k.amplitudes[m.first : m.first+m.count]
+		size := 0.0
+		for j := len(a) - 1; j >= 0; j-- {
+			size = size*tau + math.Abs(real(a[j])) + math.Abs(imag(a[j]))
+		}
+		sum += e * size
+	}
+	return modalRounding * sum
+}
+
+// at returns the signal at t + lo, lo being below a unit in the last place of t.
+func (k *kernel) at(t, lo float64) float64 {
+	tau := t * k.w
+	lo *= k.w
+	if tau < k.earlyEnd {
+		return k.earlyAt(tau, lo)
+	}
+	return k.modalAt(tau, lo)
+}
+
+func (k *kernel) earlyAt(tau, lo float64) float64 {
+	piece := int(tau * (1 / earlyStep))
+	x := ((tau - earlyStep*float64(piece)) + lo) * (1 / earlyStep)
+	c := k.early[piece*earlyTerms:][:earlyTerms]
+	y := 0.0
+	for i := len(c) - 1; i >= 0; i-- {
+		y = y*x + c[i]
+	}
+	if piece == 0 && k.leading > 0 {
+		y *= math.Pow(x, float64(k.leading))
+	}
+	return y
+}
+
+func (k *kernel) modalAt(tau, lo float64) float64 {
+	y := 0.0
+	for i := len(k.drift) - 1; i >= 0; i-- {
+		y = y*tau + k.drift[i]
+	}
+	for i := range k.modes {
+		m := &k.modes[i]
+		re := m.re * tau
+		reLo := math.FMA(m.re, tau, -re) + m.reLo*tau + m.re*lo
+		e := math.Exp(re)
+		e += e * reLo
+		if m.im == 0 {
+			if m.count == 1 {
+				y += m.ar * e
+				continue
+			}
+			a := k.amplitudes[m.first : m.first+m.count]
+			sum := 0.0
+			for j := len(a) - 1; j >= 0; j-- {
+				sum = sum*tau + real(a[j])
+			}
+			y += sum * e
+			continue
+		}
+		im := m.im * tau
+		imLo := math.FMA(m.im, tau, -im) + m.imLo*tau + m.im*lo
+		sin, cos := math.Sincos(im)
+		sin, cos = sin+imLo*cos, cos-imLo*sin
+		ar, ai := m.ar, m.ai
+		if m.count > 1 {
+			a := k.amplitudes[m.first : m.first+m.count]
+			ar, ai = 0, 0
+			for j := len(a) - 1; j >= 0; j-- {
+				ar, ai = ar*tau+real(a[j]), ai*tau+imag(a[j])
+			}
+		}
+		y += e * (ar*cos - ai*sin)
+	}
+	return y
+}

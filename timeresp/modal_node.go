@@ -1,0 +1,154 @@
+package timeresp
+
+import "math"
+
+// limit returns the value that the signal tends to; NaN if there is none.
+func (k *kernel) limit() float64 {
+	for i := range k.modes {
+		m := &k.modes[i]
+		if m.re >= 0 {
+			return math.NaN()
+		}
+	}
+	for i := 1; i < len(k.drift); i++ {
+		if k.drift[i] != 0 {
+			return math.NaN()
+		}
+	}
+	if len(k.drift) > 0 {
+		return k.drift[0]
+	}
+	return 0
+}
+
+// node fills n with the signal at τ.
+func (k *kernel) node(tau float64, n *node) {
+	n.t = tau
+	if tau < k.earlyEnd {
+		k.earlyNode(tau, n)
+		return
+	}
+	n.y, n.d, n.c, n.spread, n.fourth = 0, 0, 0, 0, 0
+	if len(k.drift) > 0 {
+		n.y = k.drift[0]
+	}
+	for i := range k.modes {
+		m := &k.modes[i]
+		re := m.re * tau
+		reLo := math.FMA(m.re, tau, -re) + m.reLo*tau
+		e := math.Exp(re)
+		e += e * reLo
+		sin, cos := 0.0, 1.0
+		if m.im != 0 {
+			im := m.im * tau
+			imLo := math.FMA(m.im, tau, -im) + m.imLo*tau
+			sin, cos = math.Sincos(im)
+			sin, cos = sin+imLo*cos, cos-imLo*sin
+		}
+		if m.count == 1 {
+			vr, vi := e*(m.ar*cos-m.ai*sin), e*(m.ar*sin+m.ai*cos)
+			n.y += vr
+			dr, di := vr*m.re-vi*m.im, vr*m.im+vi*m.re
+			n.d += dr
+			n.c += dr*m.re - di*m.im
+			size := e * math.Sqrt(m.ar*m.ar+m.ai*m.ai)
+			square := m.re*m.re + m.im*m.im
+			n.spread += size
+			n.fourth += size * square * square
+			continue
+		}
+		k.confluentNode(m, tau, e, sin, cos, n)
+	}
+}
+
+// confluentNode adds the share of a multiple pole. With q(τ) = Σ a[k]τ^k its derivatives are
+// e^(pτ)·((D+p)ʲq).
+func (k *kernel) confluentNode(m *mode, tau, e, sin, cos float64, n *node) {
+	a := k.amplitudes[m.first : m.first+m.count]
+	p := complex(m.re, m.im)
+	var q [5]complex128 // derivatives of q
+	for j := len(a) - 1; j >= 0; j-- {
+		x := complex(tau, 0)
+		q[2] = q[2]*x + 2*q[1]
+		q[1] = q[1]*x + q[0]
+		q[0] = q[0]*x + a[j]
+	}
+	turn := complex(e*cos, e*sin)
+	y := q[0]
+	d := q[1] + p*q[0]
+	c := q[2] + p*(2*q[1]+p*q[0])
+	n.y += real(turn * y)
+	n.d += real(turn * d)
+	n.c += real(turn * c)
+	// Bounds from τ on: τ^k·e^(re·τ) is largest at k/|re|. The fourth derivative has the
+	// coefficients Σ C(4,j)·p^(4-j)·(k+j)!/k!·a[k+j].
+	size := math.Hypot(m.re, m.im)
+	binomial := [5]float64{1, 4, 6, 4, 1}
+	power := e // τ^j·e^(re·τ), or its largest value later on
+	for j := range a {
+		top := power
+		if m.re < 0 && float64(j) > -m.re*tau {
+			at := float64(j) / -m.re
+			top = math.Exp(float64(j) * (math.Log(at) - 1))
+		}
+		n.spread += top * abs(a[j])
+		sum, falling := 0.0, 1.0
+		for i := 0; i <= 4 && j+i < len(a); i++ {
+			if i > 0 {
+				falling *= float64(j + i)
+			}
+			sum += binomial[i] * math.Pow(size, float64(4-i)) * falling * abs(a[j+i])
+		}
+		n.fourth += top * sum
+		power *= tau
+	}
+}
+
+func abs(z complex128) float64 { return math.Hypot(real(z), imag(z)) }
+
+// earlyNode is node on the Taylor polynomials.
+func (k *kernel) earlyNode(tau float64, n *node) {
+	piece := int(tau * (1 / earlyStep))
+	x := (tau - earlyStep*float64(piece)) * (1 / earlyStep)
+	c := k.early[piece*earlyTerms:][:earlyTerms]
+	var y, d, s float64
+	for i := len(c) - 1; i >= 0; i-- {
+		s = s*x + 2*d
+		d = d*x + y
+		y = y*x + c[i]
+	}
+	if r := float64(k.leading); piece == 0 && r > 0 {
+		// (x^r·q)″ = x^r·q″ + 2r·x^(r-1)·q′ + r(r-1)·x^(r-2)·q
+		p2, p1 := 0.0, 1.0
+		if r > 1 {
+			p2 = math.Pow(x, r-2)
+			p1 = p2 * x
+		}
+		y, d, s = p1*x*y, p1*(x*d+r*y), p1*(x*s+2*r*d)+r*(r-1)*p2*y
+	}
+	n.y, n.d, n.c = y, d*(1/earlyStep), s*(1/(earlyStep*earlyStep))
+	n.spread, n.fourth = math.Inf(1), math.Inf(1)
+}
+
+// earlyFourth bounds |y⁗| between a and b, which lie in one piece.
+func (k *kernel) earlyFourth(a, b float64) float64 {
+	piece := int((a + (b-a)/2) * (1 / earlyStep))
+	x := (b - earlyStep*float64(piece)) * (1 / earlyStep)
+	c := k.early[piece*earlyTerms:][:earlyTerms]
+	lead := 0
+	if piece == 0 {
+		lead = k.leading
+	}
+	sum := 0.0
+	for i := len(c) - 1; i >= 0; i-- {
+		j := float64(i + lead)
+		if j < 4 {
+			break
+		}
+		sum = sum*x + j*(j-1)*(j-2)*(j-3)*math.Abs(c[i])
+	}
+	if lead > 4 {
+		sum *= math.Pow(x, float64(lead-4))
+	}
+	return sum * (1 / (earlyStep * earlyStep * earlyStep * earlyStep))
+}

@@ -1,0 +1,226 @@
+package timeresp
+
+import (
+	"fmt"
+	"math"
+	"math/big"
+
+	"github.com/polewright/polewright/poly"
+)
+
+// A factor is the transform of an input in real time, a ratio of small polynomials:
+// (first·s + constant)/(s^zeros·(s² + ω²)), the last one left out if ω = 0.
+type factor struct {
+	first, constant float64
+	zeros           int
+	omega           float64
+}
+
+// scaled returns wide coefficients of p in z = s/2^scale, by power, all times 2^-shift.
+func scaledCoefficients(p poly.Poly, scale int) []wide {
+	n := p.Degree() + 1
+	out := make([]wide, n)
+	inexact := false
+	for i := range out {
+		hi := p.Coefficient(i)
+		out[i].hi = math.Ldexp(hi, scale*i)
+		inexact = inexact || isRounded(hi)
+	}
+	if !inexact {
+		return out
+	}
+	integers, exponent := p.Integers()
+	for i, n := range integers {
+		out[i] = wideFromInteger(n, exponent+scale*i)
+	}
+	return out
+}
+
+// isRounded reports whether a coefficient may be a rounded one: one that fills all 53 bits,
+// or is out of range.
+func isRounded(x float64) bool {
+	return math.Float64bits(x)&0xff != 0 || math.IsInf(x, 0)
+}
+
+// wideFromInteger returns n·2^exponent to 106 bits.
+func wideFromInteger(n *big.Int, exponent int) wide {
+	if n.Sign() == 0 {
+		return wide{}
+	}
+	var f, rest big.Float
+	f.SetPrec(uint(max(n.BitLen(), 64))).SetInt(n)
+	f.SetMantExp(&f, exponent)
+	hi, _ := f.Float64()
+	if math.IsInf(hi, 0) {
+		return wide{hi, 0}
+	}
+	rest.SetPrec(f.Prec()).SetFloat64(hi)
+	rest.Sub(&f, &rest)
+	lo, _ := rest.Float64()
+	return wide{hi, lo}
+}
+
+// newTransform returns the transform of (numerator/denominator) driven by the factor, and
+// the constant part of the quotient where the product is biproper: the weight of a Dirac
+// impulse.
+func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Root, in factor) (f *transform, dirac float64, err error) {
+	largest := in.omega
+	for i := range roots {
+		s := roots[i].Value
+		largest = max(largest, math.Hypot(real(s), imag(s)))
+	}
+	f = &transform{}
+	if largest > 0 {
+		_, f.scale = math.Frexp(largest)
+	}
+	w := math.Ldexp(1, f.scale)
+
+	// Both are divided by the leading coefficient of the denominator; the power of w common
+	// to its coefficients leaves with it.
+	f.den = scaledCoefficients(denominator, f.scale)
+	f.num = scaledCoefficients(numerator, f.scale)
+	lead := f.den[len(f.den)-1]
+	if lead.hi == 0 || math.IsInf(lead.hi, 0) {
+		return nil, 0, &poly.RangeError{Call: call, Reason: "the coefficients of the denominator, with time in units of the fastest mode, leave the range of float64"}
+	}
+	inverse := wide{1, 0}.div(lead)
+	for i := range f.den {
+		f.den[i] = f.den[i].mul(inverse)
+	}
+	f.den[len(f.den)-1] = wide{1, 0}
+	for i := range f.num {
+		f.num[i] = f.num[i].mul(inverse)
+	}
+	for i := range f.num {
+		if math.IsNaN(f.num[i].hi - f.num[i].hi) {
+			return nil, 0, &poly.RangeError{Call: call, Reason: "the coefficients of the numerator, with time in units of the fastest mode, leave the range of float64"}
+		}
+	}
+
+	f.poles = make([]pole, 0, len(roots)+2)
+	for i := range roots {
+		r := &roots[i]
+		if imag(r.Value) < 0 {
+			continue
+		}
+		if r.Distinct > 1 {
+			return nil, 0, fmt.Errorf("%s: poles closer than float64 can part at %v", call, r.Value)
+		}
+		p := pole{multiplicity: r.Multiplicity}
+		p.at.re.hi = math.Ldexp(real(r.Value), -f.scale)
+		p.at.im.hi = math.Ldexp(imag(r.Value), -f.scale)
+		f.poles = append(f.poles, p)
+	}
+	for i, j := 0, 0; i < len(roots); i++ {
+		if imag(roots[i].Value) < 0 {
+			continue
+		}
+		if roots[i].Radius > 0 {
+			f.refine(j)
+		}
+		j++
+	}
+
+	f.apply(in, w)
+	if len(f.num) == len(f.den) {
+		// f.num = dirac·f.den + the rest
+		top := f.num[len(f.num)-1]
+		f.num = f.num[:len(f.num)-1]
+		for i := range f.num {
+			f.num[i] = f.num[i].sub(top.mul(f.den[i]))
+		}
+		dirac = top.float() / w
+	}
+	for len(f.num) > 0 && f.num[len(f.num)-1].hi == 0 {
+		f.num = f.num[:len(f.num)-1]
+	}
+	return f, dirac, nil
+}
+
+// apply multiplies the transform by that of the input.
+func (f *transform) apply(in factor, w float64) {
+	// c/s^q is (c/w^q)/z^q in scaled s; another w belongs to the scaled time.
+	unit := wide{1, 0}
+	for range in.zeros {
+		unit = unit.mulFloat(1 / w)
+	}
+	if in.omega != 0 {
+		unit = unit.mulFloat(1 / w).mulFloat(1 / w)
+	}
+	unit = unit.mulFloat(w)
+	constant, first := unit.mulFloat(in.constant), unit.mulFloat(w).mulFloat(in.first)
+	if first.hi != 0 {
+		f.num = append(f.num, wide{})
+	}
+	for i := len(f.num) - 1; i >= 0; i-- {
+		f.num[i] = f.num[i].mul(constant)
+		if i > 0 && first.hi != 0 {
+			var below wide
+			below = f.num[i-1]
+			f.num[i] = f.num[i].add(below.mul(first))
+		}
+	}
+	if in.zeros > 0 {
+		f.den = append(make([]wide, in.zeros, in.zeros+len(f.den)+2), f.den...)
+		f.addPole(pole{multiplicity: in.zeros})
+	}
+	if in.omega != 0 {
+		o := in.omega / w
+		var p pole
+		p.at.im.hi = o
+		p.multiplicity = 1
+		square := wide{o, 0}.mulFloat(o)
+		f.den = append(f.den, wide{}, wide{})
+		for i := len(f.den) - 1; i >= 0; i-- {
+			c := f.den[i].mul(square)
+			if i >= 2 {
+				c = c.add(f.den[i-2])
+			}
+			f.den[i] = c
+		}
+		f.addPole(p)
+	}
+}
+
+// addPole adds a pole that is known exactly.
+func (f *transform) addPole(p pole) {
+	for i := range f.poles {
+		if f.poles[i].at == p.at {
+			f.poles[i].multiplicity += p.multiplicity
+			return
+		}
+	}
+	f.poles = append(f.poles, p)
+}
+
+// refine improves pole j, known to 2⁻⁵⁰, by one step of Newton's method on the derivative
+// of den of which it is a simple root.
+func (f *transform) refine(j int) {
+	p := &f.poles[j]
+	den := f.den
+	if m := p.multiplicity; m > 1 {
+		den = append([]wide(nil), den...)
+		for ; m > 1; m-- {
+			for i := 1; i < len(den); i++ {
+				den[i-1] = den[i].mulFloat(float64(i))
+			}
+			den = den[:len(den)-1]
+		}
+	}
+	for range 2 {
+		var y, d wideComplex
+		for i := len(den) - 1; i >= 0; i-- {
+			d = d.mul(p.at).add(y)
+			y = y.mul(p.at)
+			y.re = y.re.add(den[i])
+		}
+		if d.abs() == 0 {
+			return
+		}
+		step := y.div(d)
+		p.at = p.at.sub(step)
+		if step.abs() <= 0x1p-80*p.at.abs() {
+			return
+		}
+	}
+}
