@@ -10,7 +10,7 @@ func (r Isolated) Nearest() (value float64, side int) {
 		return value, r.Lo.Cmp(Float(value))
 	}
 	if r.poly.Degree() > 1 {
-		r = r.narrow()
+		r = r.narrow(54)
 	}
 	if r.Exact() {
 		value = r.Lo.Float64()
@@ -96,23 +96,23 @@ func (r Isolated) cut(x Dyadic) Isolated {
 	return r
 }
 
-// narrow shrinks the interval around the zero of the secant as long as that pays: until it is
-// about as wide as a float64's last place.
+// narrow shrinks the interval around the zero of the secant as long as that pays: until its
+// width is about 2^-precision times the greater end.
 //
 // Method: quadratic interval refinement (J. Abbott, Quadratic interval refinement for real
 // roots, ACM Commun. Comput. Algebra 48 (2014) 3–12): the interval is cut into N parts, the
 // root is looked for in the one that the secant names, and N is squared on success.
-func (r Isolated) narrow() Isolated {
+func (r Isolated) narrow(precision int) Isolated {
 	bits := 1 // N = 2^bits
 	// Each failure halves the interval at least, so that the bound is never met before the
 	// width is; it keeps intervals with ends of very different size from being cut in vain.
-	for range 200 {
+	for range 200 + 2*precision {
 		if r.Exact() {
 			return r
 		}
 		width := r.Hi.Sub(r.Lo)
 		size := max(r.Lo.magnitudeOrLowest(), r.Hi.magnitudeOrLowest())
-		if width.magnitude() < size-54 {
+		if width.magnitude() < size-precision {
 			return r
 		}
 		if size-width.magnitude() < 2 {

@@ -98,15 +98,8 @@ func (p Poly) signBeside(x Dyadic, side int) int {
 	}
 }
 
-// Index returns the Cauchy index of f₁/f₀ on the open interval (lo, hi): the number of poles
-// where it jumps from -∞ to +∞ less the number where it jumps from +∞ to -∞.
-func (c Chain) Index(lo, hi Dyadic) int {
+// Count returns the number of distinct real roots of p in the open interval (lo, hi), if the
+// chain is p's own; in general the Cauchy index of f₁/f₀ there.
+func (c Chain) Count(lo, hi Dyadic) int {
 	return c.variations(lo, +1) - c.variations(hi, -1)
 }
-
-// Count returns the number of distinct real roots of p in the open interval (lo, hi), if the
-// chain is p's own.
-func (c Chain) Count(lo, hi Dyadic) int { return c.Index(lo, hi) }
-
-// CauchyIndex returns the Cauchy index of p/q on the open interval (lo, hi); q is not zero.
-func CauchyIndex(p, q Poly, lo, hi Dyadic) int { return NewChain(q, p).Index(lo, hi) }

@@ -1,0 +1,140 @@
+package exact
+
+import (
+	"math"
+	"math/big"
+	"math/rand/v2"
+	"testing"
+)
+
+// A piece is a real factor with known roots: which sides they lie on is decided by comparing
+// dyadic numbers.
+type piece struct {
+	poly Poly
+	at   Count
+}
+
+func (c Count) add(d Count, times int) Count {
+	return Count{c.Inside + times*d.Inside, c.Boundary + times*d.Boundary, c.Outside + times*d.Outside}
+}
+
+// place returns a Count of n roots on the side that the sign tells: negative is inside.
+func place(n, side int) Count {
+	switch {
+	case side < 0:
+		return Count{Inside: n}
+	case side > 0:
+		return Count{Outside: n}
+	}
+	return Count{Boundary: n}
+}
+
+func product(r *rand.Rand, draw func() piece) (Poly, Count) {
+	p, want := integers(int64(1-2*r.IntN(2))*3), Count{}
+	for range r.IntN(6) {
+		f, times := draw(), 1+r.IntN(3)
+		p = p.Mul(f.poly.Power(times))
+		want = want.add(f.at, times)
+	}
+	return p, want
+}
+
+// eighths draws a number with few bits, so that equal ones are drawn often.
+func eighths(r *rand.Rand) float64 { return float64(r.IntN(41)-20) / 8 }
+
+func TestLeftOf(t *testing.T) {
+	r := rand.New(rand.NewPCG(1, 1))
+	for range 1000 {
+		sigma := eighths(r)
+		p, want := product(r, func() piece {
+			a := eighths(r)
+			if r.IntN(3) == 0 {
+				a = sigma
+			}
+			if r.IntN(2) == 0 {
+				return piece{fromRoots(a), place(1, sign(a-sigma))}
+			}
+			w := 1 + eighths(r)
+			return piece{FromFloats(a*a+w*w, -2*a, 1), place(2, sign(a-sigma))}
+		})
+		if got := LeftOf(p, Float(sigma)); got != want {
+			t.Fatalf("LeftOf(%v, %v) = %+v, want %+v", p, sigma, got, want)
+		}
+	}
+}
+
+func TestInDisc(t *testing.T) {
+	r := rand.New(rand.NewPCG(2, 1))
+	for range 1000 {
+		radius := float64(1+r.IntN(16)) / 8
+		p, want := product(r, func() piece {
+			if r.IntN(2) == 0 {
+				a := eighths(r)
+				if r.IntN(3) == 0 {
+					a = math.Copysign(radius, a)
+				}
+				return piece{fromRoots(a), place(1, sign(math.Abs(a)-radius))}
+			}
+			m := float64(1+r.IntN(16)) / 8
+			if r.IntN(3) == 0 {
+				m = radius
+			}
+			return piece{FromFloats(m*m, 2*m*float64(r.IntN(15)-7)/8, 1), place(2, sign(m-radius))}
+		})
+		if got := InDisc(p, Float(radius)); got != want {
+			t.Fatalf("InDisc(%v, %v) = %+v, want %+v", p, radius, got, want)
+		}
+	}
+}
+
+func TestInSector(t *testing.T) {
+	r := rand.New(rand.NewPCG(3, 1))
+	zetas := []float64{0.5, math.Nextafter(0.5, 0), math.Nextafter(0.5, 1), 0.25, 0.125, 0.875, 0.75,
+		math.Sqrt2 / 2, math.Cos(math.Pi / 5), math.Cos(math.Pi / 9), 1e-9, 1 - 1.0/(1<<53), 1e-300}
+	for range 1000 {
+		zeta := zetas[r.IntN(len(zetas))]
+		p, want := product(r, func() piece {
+			switch r.IntN(4) {
+			case 0:
+				a := eighths(r)
+				return piece{fromRoots(a), place(1, sign(a))}
+			case 1: // the damping of the sector itself
+				m := float64(1+r.IntN(16)) / 8
+				return piece{FromFloats(m*m, 0, 1).Add(integers(0, 1).Scale(Float(2 * m).Mul(Float(zeta)))), place(2, 0)}
+			case 2: // the third roots of a number
+				a := eighths(r)
+				if a == 0 {
+					return piece{integers(0, 1), place(1, 0)}
+				}
+				// s³ = a: angles 0 and ±120° for a > 0, 180° and ±60° for a < 0.
+				at := place(2, sign(0.5-zeta)).opposite()
+				if a > 0 {
+					return piece{FromFloats(-a, 0, 0, 1), at.add(Count{Outside: 1}, 1)}
+				}
+				return piece{FromFloats(-a, 0, 0, 1), Count{Inside: 1, Outside: 2}}
+			}
+			d := zetas[r.IntN(len(zetas))]
+			m := float64(1+r.IntN(16)) / 8
+			return piece{FromFloats(m*m, 0, 1).Add(integers(0, 1).Scale(Float(2 * m).Mul(Float(d)))), place(2, sign(zeta-d))}
+		})
+		if got := InSector(p, Float(zeta)); got != want {
+			t.Fatalf("InSector(%v, %v) = %+v, want %+v", p, zeta, got, want)
+		}
+	}
+}
+
+func (c Count) opposite() Count { return Count{c.Outside, c.Boundary, c.Inside} }
+
+func TestCountsOfFew(t *testing.T) {
+	for _, p := range []Poly{{}, New([]*big.Int{big.NewInt(7)}, 3)} {
+		if c := LeftOf(p, Float(1)); c != (Count{}) {
+			t.Errorf("LeftOf of a constant: %+v", c)
+		}
+		if c := InSector(p, Float(0.5)); c != (Count{}) {
+			t.Errorf("InSector of a constant: %+v", c)
+		}
+		if c := InDisc(p, Float(1)); c != (Count{}) {
+			t.Errorf("InDisc of a constant: %+v", c)
+		}
+	}
+}
