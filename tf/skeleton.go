@@ -62,11 +62,10 @@ type Loop struct {
 }
 type Limits struct{ Amplitude, Rate float64 }
 
-func (l Loop) WithGain(k float64) Loop                { return l }
-func (l Loop) Open() (Function, error)                { return Function{}, errSkeleton }
-func (l Loop) Closed() (Function, error)              { return Function{}, errSkeleton }
-func (l Loop) Path(from, to Point) (Path, error)      { return Path{}, errSkeleton }
-func (l Loop) Margins(opt ...Option) (Margins, error) { return Margins{}, errSkeleton }
+func (l Loop) WithGain(k float64) Loop           { return l }
+func (l Loop) Open() (Function, error)           { return Function{}, errSkeleton }
+func (l Loop) Closed() (Function, error)         { return Function{}, errSkeleton }
+func (l Loop) Path(from, to Point) (Path, error) { return Path{}, errSkeleton }
 
 type Point int
 
@@ -83,17 +82,6 @@ const (
 type Path struct{}
 
 func (p Path) At(s complex128) complex128 { return 0 }
-
-type Margins struct {
-	GainCrossovers    []Crossover
-	PhaseCrossovers   []Crossover
-	CompleteTo        float64
-	Delay             float64
-	SensitivityPeak   float64
-	SensitivityPeakAt float64
-	Stable            poly.Verdict
-}
-type Crossover struct{ Frequency, Margin float64 }
 
 func DampingRatio(pole complex128) float64     { return 0 }
 func NaturalFrequency(pole complex128) float64 { return 0 }

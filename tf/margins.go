@@ -1,0 +1,163 @@
+package tf
+
+import (
+	"math"
+
+	"github.com/polewright/polewright/poly"
+)
+
+// Margins say how far a loop is from instability, and where. They are of the open loop
+// L = controller·plant·sensor with negative feedback, dead time included.
+//
+// Every crossing is found: they are roots of polynomials, isolated with proof, and with dead
+// time lie between such roots. Frequencies and margins are right to about 1e-11 relative.
+// A margin speaks of safety only if Stable is [poly.Holds].
+type Margins struct {
+	GainCrossovers  []Crossover // |L| = 1, ascending, with the signed phase margin arg(-L) in (-π, π], rad
+	PhaseCrossovers []Crossover // L real and negative, finite and > 0, ascending, with the gain margin -1/L, a ratio
+	CompleteTo      float64     // rad/s: phase crossovers are listed up to here; +Inf without dead time
+
+	// Delay is the smallest added delay that destabilises, s: 0 if the loop is not stable
+	// already or |L(j∞)| ≥ 1, +Inf if no delay does. In z it is the smallest angle/ω, nominal,
+	// since a delay between samples is no function of z.
+	Delay float64
+
+	SensitivityPeak     float64 // supremum over frequency of |1/(1+L)|; +Inf with a closed-loop pole on the boundary
+	SensitivityPeakAt   float64 // rad/s; 0 or +Inf where it is only approached
+	ComplementaryPeak   float64 // supremum of |L/(1+L)|
+	ComplementaryPeakAt float64 // rad/s, likewise
+
+	// GainIncrease is the smallest gain margin above 1, at any frequency with 0 and +Inf
+	// included: a stable loop stays stable until its gain has grown by this ratio. +Inf for a
+	// stable loop that no increase destabilises; NaN if there is none and the loop is not stable.
+	GainIncrease float64
+
+	// GainDecrease is the largest gain margin below 1, likewise: a stable loop stays stable until
+	// its gain has fallen to this fraction. 0 for a stable loop that no decrease destabilises,
+	// NaN if there is none and the loop is not stable.
+	GainDecrease float64
+
+	// PhaseMargin is the phase margin of least magnitude, with its sign. +Inf for a stable loop
+	// without gain crossover, NaN if there is none and the loop is not stable.
+	PhaseMargin float64
+
+	// Stable tells whether every closed-loop pole lies inside the region of stability, before
+	// any cancellation: a hidden unstable mode fails it. A pole on the boundary is not inside.
+	Stable poly.Verdict
+}
+
+// margins computes everything that Margins has.
+func (a *axisForm) margins(upTo float64) (Margins, error) {
+	var m Margins
+	var err error
+	if m.GainCrossovers, err = a.gainCrossovers(); err != nil {
+		return Margins{}, err
+	}
+	m.Stable = a.stable()
+	m.CompleteTo = math.Inf(1)
+	m.GainIncrease, m.GainDecrease = math.Inf(1), 0
+	tail := 0.0
+	if a.deadTime == 0 {
+		if m.PhaseCrossovers, err = a.phaseCrossovers(); err != nil {
+			return Margins{}, err
+		}
+		for _, c := range m.PhaseCrossovers {
+			m.account(c.Margin)
+		}
+		m.account(a.marginAtInfinity())
+	} else {
+		d, err := a.delayedPhaseCrossovers(upTo)
+		if err != nil {
+			return Margins{}, err
+		}
+		m.PhaseCrossovers, m.CompleteTo = d.crossovers, d.completeTo
+		m.account(d.smallest)
+		m.account(d.largest)
+		tail = d.tail
+	}
+	m.account(a.marginAtZero())
+	s, err := a.closedLoopPeak(sensitivityCurve, tail)
+	if err != nil {
+		return Margins{}, err
+	}
+	m.SensitivityPeak, m.SensitivityPeakAt = s.Magnitude, s.Frequency
+	t, err := a.closedLoopPeak(complementaryCurve, tail)
+	if err != nil {
+		return Margins{}, err
+	}
+	m.ComplementaryPeak, m.ComplementaryPeakAt = t.Magnitude, t.Frequency
+	m.PhaseMargin = smallestPhase(m.GainCrossovers)
+	m.Delay = a.delayMargin(m.GainCrossovers, m.Stable)
+	if m.Stable != poly.Holds {
+		if math.IsInf(m.GainIncrease, 1) {
+			m.GainIncrease = math.NaN()
+		}
+		if m.GainDecrease == 0 {
+			m.GainDecrease = math.NaN()
+		}
+		if math.IsInf(m.PhaseMargin, 1) {
+			m.PhaseMargin = math.NaN()
+		}
+	}
+	return m, nil
+}
+
+// account takes a gain margin into the two that are nearest to 1.
+func (m *Margins) account(margin float64) {
+	switch {
+	case margin > 1:
+		m.GainIncrease = min(m.GainIncrease, margin)
+	case margin > 0 && margin < 1:
+		m.GainDecrease = max(m.GainDecrease, margin)
+	}
+}
+
+func (a *axisForm) closedLoopPeak(c curve, tail float64) (Peak, error) {
+	if a.deadTime == 0 {
+		return a.peak(c)
+	}
+	return a.delayedPeak(c, tail)
+}
+
+// smallestPhase returns the margin of least magnitude, +Inf if there is none.
+func smallestPhase(list []Crossover) float64 {
+	least := math.Inf(1)
+	for _, c := range list {
+		if math.Abs(c.Margin) < math.Abs(least) {
+			least = c.Margin
+		}
+	}
+	return least
+}
+
+// delayMargin returns what [Margins] says of Delay.
+func (a *axisForm) delayMargin(list []Crossover, stable poly.Verdict) float64 {
+	if stable != poly.Holds || a.period == 0 && a.gainAtInfinityReaches1() {
+		return 0
+	}
+	least := math.Inf(1)
+	for _, c := range list {
+		angle := c.Margin
+		if angle <= 0 {
+			angle += 2 * math.Pi
+		}
+		least = min(least, angle/c.Frequency)
+	}
+	return least
+}
+
+// Margins returns the margins of the loop. A loop whose |L| is 1 at every frequency, or whose
+// L is real and negative over a whole range of frequencies, gets a [*DegenerateError]; what
+// [Loop.Open] refuses is refused.
+func (l Loop) Margins(opt ...Option) (Margins, error) {
+	open, err := l.Open()
+	if err != nil {
+		return Margins{}, err
+	}
+	return open.axis().margins(0)
+}
+
+// axis returns g ready for questions on frequency.
+func (g Function) axis() *axisForm {
+	return newAxisForm(g.Numerator(), g.Denominator(), g.DeadTime(), g.Period())
+}

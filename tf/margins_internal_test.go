@@ -1,0 +1,193 @@
+package tf
+
+import (
+	"math"
+	"testing"
+
+	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/internal/refdata"
+	"github.com/polewright/polewright/poly"
+)
+
+type decimals = []refdata.Decimal
+
+type marginCase struct {
+	ID, Title, Domain      string
+	Numerator, Denominator decimals
+	Delay                  refdata.Decimal
+	Period                 refdata.Decimal
+	ListedUpTo             refdata.Decimal `json:"phase_crossovers_listed_up_to_w"`
+	Stable                 bool
+	Gain                   []struct {
+		W     refdata.Decimal `json:"w"`
+		Phase refdata.Decimal `json:"phase_margin_rad"`
+		Delay refdata.Decimal `json:"delay_margin"`
+	} `json:"gain_crossovers"`
+	Phase []struct {
+		W    refdata.Decimal `json:"w"`
+		Gain refdata.Decimal `json:"gain_margin"`
+		At   string
+	} `json:"phase_crossovers"`
+	Figures struct {
+		Increase        refdata.Decimal `json:"gain_margin_increase"`
+		Decrease        refdata.Decimal `json:"gain_margin_decrease"`
+		SmallestDegrees refdata.Decimal `json:"smallest_phase_margin_deg"`
+		Delay           refdata.Decimal `json:"delay_margin"`
+		Sensitivity     refdata.Decimal `json:"sensitivity_peak"`
+		SensitivityAt   refdata.Decimal `json:"sensitivity_peak_frequency"`
+		Complementary   refdata.Decimal `json:"complementary_peak"`
+		ComplementaryAt refdata.Decimal `json:"complementary_peak_frequency"`
+	}
+}
+
+func marginCases(t testing.TB) []marginCase {
+	var file struct{ Cases []marginCase }
+	refdata.Read(t, "testdata/margin.json", &file)
+	return file.Cases
+}
+
+func (c marginCase) form(t testing.TB) *axisForm {
+	period := 0.0
+	if c.Domain == "z" {
+		period = c.Period.Float(t)
+	}
+	return newAxisForm(poly.New(refdata.Floats(t, c.Numerator)...), poly.New(refdata.Floats(t, c.Denominator)...), c.Delay.Float(t), period)
+}
+
+// bar is the relative error that the references are met with.
+const bar = 1e-10
+
+func check(t *testing.T, what string, got float64, want refdata.Decimal) {
+	t.Helper()
+	if off := refdata.Off(t, got, want); !(off <= bar) {
+		t.Errorf("%s = %v, want %s: off by %.2g", what, got, want, off)
+	}
+}
+
+// The float64 stage and the exact one must both reproduce the references.
+func TestCrossoversOfReferences(t *testing.T) {
+	for _, c := range marginCases(t) {
+		a := c.form(t)
+		if a.deadTime != 0 {
+			continue
+		}
+		if !a.ok {
+			t.Errorf("%s: not in range of the float64 stages", c.ID)
+			continue
+		}
+		for _, stage := range []string{"float64", "exact"} {
+			t.Run(c.ID+"/"+stage, func(t *testing.T) {
+				var gain, phase []Crossover
+				var okG, okP, okS, okC bool
+				var s, comp Peak
+				if stage == "float64" {
+					gain, okG = a.gainCrossoversFast()
+					phase, okP = a.phaseCrossoversFast()
+					s, okS = a.peakFast(sensitivityCurve)
+					comp, okC = a.peakFast(complementaryCurve)
+				} else {
+					e := a.exactly()
+					var err [4]error
+					gain, err[0] = e.gainCrossovers()
+					phase, err[1] = e.phaseCrossovers()
+					s, err[2] = e.peak(sensitivityCurve)
+					comp, err[3] = e.peak(complementaryCurve)
+					okG, okP, okS, okC = err[0] == nil, err[1] == nil, err[2] == nil, err[3] == nil
+				}
+				if !okG || !okP || !okS || !okC {
+					t.Log("this stage passes on", okG, okP, okS, okC)
+				}
+				if okG {
+					if len(gain) != len(c.Gain) {
+						t.Fatalf("gain crossovers %v, want %v", gain, c.Gain)
+					}
+					for i, w := range c.Gain {
+						check(t, "frequency", gain[i].Frequency, w.W)
+						check(t, "phase margin", gain[i].Margin, w.Phase)
+					}
+				}
+				if okP {
+					if len(phase) != len(c.Phase) {
+						t.Fatalf("phase crossovers %v, want %v", phase, c.Phase)
+					}
+					for i, w := range c.Phase {
+						check(t, "frequency", phase[i].Frequency, w.W)
+						check(t, "gain margin", phase[i].Margin, w.Gain)
+					}
+				}
+				if okS {
+					check(t, "sensitivity peak", s.Magnitude, c.Figures.Sensitivity)
+					check(t, "its frequency", s.Frequency, c.Figures.SensitivityAt)
+				}
+				if okC {
+					check(t, "complementary peak", comp.Magnitude, c.Figures.Complementary)
+					check(t, "its frequency", comp.Frequency, c.Figures.ComplementaryAt)
+				}
+			})
+		}
+		if got := a.stable() == poly.Holds; got != c.Stable {
+			t.Errorf("%s: stable %v, want %v", c.ID, got, c.Stable)
+		}
+		n := a.degree
+		f := newIntervalPoly(n + 1)
+		joinInto(f, a.f)
+		fast, ok := routh(f)
+		count := exact.LeftOf(exactPoly(a.numerator).Add(exactPoly(a.denominator)), exact.Dyadic{})
+		if ok && (count.Boundary != 0 || count.Outside != fast) {
+			t.Errorf("%s: %d roots right by Routh's table, %v exactly", c.ID, fast, count)
+		}
+	}
+}
+
+// Every figure of the references, dead time included.
+func TestMarginsOfReferences(t *testing.T) {
+	for _, c := range marginCases(t) {
+		t.Run(c.ID, func(t *testing.T) {
+			m, err := c.form(t).margins(0)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if len(m.GainCrossovers) != len(c.Gain) {
+				t.Fatalf("gain crossovers %v, want %v", m.GainCrossovers, c.Gain)
+			}
+			for i, w := range c.Gain {
+				check(t, "frequency", m.GainCrossovers[i].Frequency, w.W)
+				check(t, "phase margin", m.GainCrossovers[i].Margin, w.Phase)
+			}
+			i := 0
+			for _, w := range c.Phase {
+				if f := w.W.Float(t); !(f > 0) || math.IsInf(f, 1) {
+					continue
+				}
+				if i >= len(m.PhaseCrossovers) {
+					t.Fatalf("phase crossovers %v, want %v", m.PhaseCrossovers, c.Phase)
+				}
+				check(t, "frequency", m.PhaseCrossovers[i].Frequency, w.W)
+				check(t, "gain margin", m.PhaseCrossovers[i].Margin, w.Gain)
+				i++
+			}
+			if i != len(m.PhaseCrossovers) {
+				t.Fatalf("phase crossovers %v, want %v", m.PhaseCrossovers, c.Phase)
+			}
+			if got := m.Stable == poly.Holds; got != c.Stable || m.Stable == poly.Undecided {
+				t.Errorf("stable %v, want %v", m.Stable, c.Stable)
+			}
+			check(t, "sensitivity peak", m.SensitivityPeak, c.Figures.Sensitivity)
+			check(t, "its frequency", m.SensitivityPeakAt, c.Figures.SensitivityAt)
+			check(t, "complementary peak", m.ComplementaryPeak, c.Figures.Complementary)
+			check(t, "its frequency", m.ComplementaryPeakAt, c.Figures.ComplementaryAt)
+			if w := c.Figures.Delay; w != "" {
+				check(t, "delay margin", m.Delay, w)
+			}
+			if w := c.Figures.SmallestDegrees; w != "" {
+				check(t, "smallest phase margin", m.PhaseMargin*180/math.Pi, w)
+			}
+			if w := c.Figures.Decrease; w != "" {
+				check(t, "gain decrease", m.GainDecrease, w)
+			}
+			if w := c.Figures.Increase; w != "" {
+				check(t, "gain increase", m.GainIncrease, w)
+			}
+		})
+	}
+}
