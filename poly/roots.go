@@ -3,6 +3,8 @@ package poly
 import (
 	"fmt"
 	"sort"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // MaxDegree is the highest degree that [Poly.Roots] and [FromRoots] accept.
@@ -11,7 +13,9 @@ const MaxDegree = 500
 // Option adjusts a call of this package; the zero number of options is the tested default.
 type Option func(*settings)
 
-type settings struct{}
+type settings struct {
+	ends exact.Ends // of the interval of RealRoots
+}
 
 // A Root is one distinct root of a polynomial, located to within a disc.
 //

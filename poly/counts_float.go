@@ -1,0 +1,200 @@
+package poly
+
+import "math"
+
+// countByRouth counts by the signs of the first column of Routh's table of p(s + sigma), and is
+// ok only if all of them are certain: then no root is on the line.
+//
+// Source: E. J. Routh, A Treatise on the Stability of a Given State of Motion, Macmillan 1877;
+// in today's form Gantmacher, The Theory of Matrices, vol. 2, Chelsea 1959, ch. XV, § 3.
+func (p Poly) countByRouth(sigma float64) (Count, bool) {
+	n := p.Degree()
+	var storage [fastDegree + 1]bounded
+	if n > fastDegree {
+		return Count{}, false
+	}
+	c := storage[:n+1]
+	k, ok := p.boundedCoefficients(c)
+	if !ok {
+		return Count{}, false
+	}
+	if sigma != 0 {
+		shift := bounded{math.Ldexp(sigma, -k), 0}
+		if math.Abs(shift.v) < minNormal {
+			shift.e = tiny
+		}
+		for i := 0; i < n; i++ {
+			for j := n - 1; j >= i; j-- {
+				c[j] = c[j].add(c[j+1].mul(shift))
+			}
+		}
+	}
+	// The rows of the table stand interleaved in c, from the highest power down: row i has the
+	// entries i, i-2, …, and the next row the entries i-1, i-3, …; each step turns row i into
+	// row i-2.
+	zeros := 0
+	if sigma == 0 {
+		zeros = exactZeros(c)
+		c, n = c[zeros:], n-zeros
+	}
+	right := 0
+	last := c[n].sign()
+	for i := n; i > 0; i-- {
+		s := c[i-1].sign()
+		if s == 0 || last == 0 {
+			return Count{}, false
+		}
+		if s != last {
+			right++
+		}
+		last = s
+		if i > 1 {
+			q := c[i].div(c[i-1])
+			for j := i - 2; j > 0; j -= 2 {
+				c[j] = c[j].sub(q.mul(c[j-1]))
+			}
+		}
+	}
+	return Count{Inside: n - right, Boundary: zeros, Outside: right}, true
+}
+
+// countBySchurCohn counts by the Schur–Cohn reduction, and is ok only if all its signs are
+// certain: then no root is on the circle.
+//
+// With p* the reversal of p, |p| = |p*| on the unit circle, so that q = p(0)·p - p*(0)·p* has as
+// many zeros inside as the one of p and p* that has the greater factor (Rouché), and p* has
+// as many as p has outside. The degree of q is lower.
+// Source: A. Cohn, Über die Anzahl der Wurzeln einer algebraischen Gleichung in einem Kreise,
+// Math. Z. 14 (1922) 110–148; M. Marden, Geometry of Polynomials, 2nd ed., AMS 1966, § 42.
+func (p Poly) countBySchurCohn(radius float64) (Count, bool) {
+	n := p.Degree()
+	var storage [fastDegree + 1]bounded
+	if n > fastDegree {
+		return Count{}, false
+	}
+	c := storage[:n+1]
+	k, ok := p.boundedCoefficients(c)
+	if !ok {
+		return Count{}, false
+	}
+	r := math.Ldexp(radius, -k)
+	if r < minNormal || math.IsInf(r, 0) {
+		return Count{}, false
+	}
+	power := bounded{1, 0}
+	for i := 1; i <= n; i++ {
+		power = power.mul(bounded{r, 0})
+		c[i] = c[i].mul(power)
+	}
+	// inside(p) = offset + direction·inside(c[:i+1])
+	offset, direction := 0, 1
+	for i := n; i > 0; i-- {
+		a, b := c[0], c[i]
+		// A scale by the greater of the two keeps numbers in range.
+		scale := math.Ldexp(1, -math.Ilogb(max(math.Abs(a.v), math.Abs(b.v))))
+		if scale == 0 || math.IsInf(scale, 0) {
+			return Count{}, false
+		}
+		a, b = a.scaled(scale), b.scaled(scale)
+		for j, m := 0, i; j <= m; j, m = j+1, m-1 {
+			x, y := c[j], c[m]
+			c[j] = a.mul(x).sub(b.mul(y))
+			c[m] = a.mul(y).sub(b.mul(x))
+		}
+		switch c[0].sign() {
+		case 0:
+			return Count{}, false
+		case -1:
+			offset, direction = offset+direction*i, -direction
+		}
+	}
+	return Count{Inside: offset, Outside: n - offset}, true
+}
+
+// exactZeros returns how many coefficients from the lowest on are known to be zero.
+func exactZeros(c []bounded) int {
+	n := 0
+	for c[n] == (bounded{}) {
+		n++
+	}
+	return n
+}
+
+// countAlongRay counts the roots in a sector by the argument principle, as [exact.InSector] does
+// (the letters are explained there), with the chain of remainders of V and U in place of the
+// Cauchy index. It is ok only if all signs are certain: then no root but 0 is on the boundary.
+func (p Poly) countAlongRay(zeta float64) (Count, bool) {
+	n := p.Degree()
+	var storage [3][fastDegree + 1]bounded
+	if n > fastDegree {
+		return Count{}, false
+	}
+	c := storage[0][:n+1]
+	if _, ok := p.boundedCoefficients(c); !ok {
+		return Count{}, false
+	}
+	zeros := exactZeros(c)
+	c = c[zeros:]
+	m := n - zeros
+	if m == 0 {
+		return Count{Boundary: zeros}, true
+	}
+
+	// a = U, b = -V/r
+	a, b := storage[1][:m+1], storage[2][:m]
+	x, twice := bounded{-zeta, 0}, bounded{-2 * zeta, 0}
+	t, tNext := bounded{1, 0}, x
+	w, wNext := bounded{1, 0}, twice
+	for i := range a {
+		a[i] = c[i].mul(t)
+		t, tNext = tNext, twice.mul(tNext).sub(t)
+	}
+	for i := range b {
+		b[i] = c[i+1].mul(w)
+		b[i].v = -b[i].v
+		w, wNext = wNext, twice.mul(wNext).sub(w)
+	}
+
+	// The chain V/r, U, -V/r, and so on: sign changes at 0 less those at infinity.
+	atZero, atInfinity := a[0].sign(), a[m].sign()
+	lowB, highB := b[0].sign(), b[m-1].sign()
+	if atZero*atInfinity*lowB*highB == 0 {
+		return Count{}, false
+	}
+	// One of the two first pairs in the chain always changes sign: V/r, U, -V/r.
+	index := 0
+	branch := 0
+	if atZero == lowB { // U·V < 0
+		branch = -1
+	}
+	lastZero, lastInfinity := lowB, highB
+	for d := m - 1; d > 0; d-- {
+		// a has degree d+1, b degree d; a becomes -rem(a, b).
+		q := a[d+1].div(b[d])
+		for i := 1; i <= d; i++ {
+			a[i] = a[i].sub(q.mul(b[i-1]))
+		}
+		q = a[d].div(b[d])
+		for i := 0; i < d; i++ {
+			a[i] = q.mul(b[i]).sub(a[i])
+		}
+		a, b = b, a[:d]
+		s, h := b[0].sign(), b[d-1].sign()
+		if s*h == 0 {
+			return Count{}, false
+		}
+		if s != lastZero {
+			index++
+		}
+		if h != lastInfinity {
+			index--
+		}
+		lastZero, lastInfinity = s, h
+	}
+	turns := float64(m) * math.Acos(zeta) / math.Pi
+	if math.Abs(turns-math.Round(turns)) < 1e-9 {
+		return Count{}, false
+	}
+	inside := branch + index + int(math.Floor(turns)) + 1
+	return Count{Inside: inside, Boundary: zeros, Outside: m - inside}, true
+}
