@@ -1,0 +1,274 @@
+package locus
+
+import (
+	"math"
+	"math/big"
+
+	"github.com/polewright/polewright/internal/exact"
+)
+
+// A boundary describes one side of a curve through the plane that is symmetric about the real
+// axis, by its upper half: points γ(x) with x in [lo, hi], on which every polynomial splits into
+//
+//	p(γ(x)) = c(x)·(re(x) + j·√h(x)·im(x)),   re, im and h polynomials with dyadic coefficients,
+//
+// with one factor c(x) ≠ 0 for all p of the same formal degree. So the condition for a real gain,
+// Im(A·conj B) = 0, is the polynomial im_A·re_B - re_A·im_B = 0 and exact, whatever the curve:
+//
+//	line Re s = σ:     x = ω², h = x, even and odd part of p(σ + jω)
+//	circle |s| = r:    x = cos θ, h = 1 - x², Σ cᵢrⁱTᵢ(x) and Σ cᵢrⁱUᵢ₋₁(x)
+//	ray at angle φ:    x = |s|, h = 1 - ζ², Σ cᵢTᵢ(-ζ)xⁱ and Σ cᵢUᵢ₋₁(-ζ)xⁱ, cos φ = -ζ
+//	line Im s = ω:     x = Re s, h = ω², even and odd part in jω of p(x + jω)
+//
+// The ray uses sin iφ = sin φ·Uᵢ₋₁(cos φ): no sine is rounded.
+type boundary interface {
+	// split returns re and im.
+	split(p exact.Poly) (re, im exact.Poly)
+	// under returns h.
+	under() exact.Poly
+	// interval returns lo and hi.
+	interval() (lo, hi exact.Dyadic)
+	// real returns the x in [lo, hi] at which γ(x) is real; there a branch on the real axis meets
+	// the curve.
+	real() []exact.Dyadic
+	// point returns γ(x), in the closed upper half-plane.
+	point(x *big.Float, bits uint) bigComplex
+	// side returns +1 if s lies strictly inside, -1 if outside, 0 if on the curve or too close to
+	// tell.
+	side(s bigComplex) int
+	// holds tells whether all roots of p, which is not zero, lie strictly inside.
+	holds(p exact.Poly) bool
+}
+
+// A halfPlane is Re s < sigma.
+type halfPlane struct{ sigma exact.Dyadic }
+
+var (
+	zero          exact.Dyadic
+	one           = exact.Float(1)
+	plusInfinity  = exact.Float(math.Inf(1))
+	minusInfinity = exact.Float(math.Inf(-1))
+	identity      = exact.FromFloats(0, 1)
+)
+
+func (r halfPlane) split(p exact.Poly) (re, im exact.Poly) { return alternate(p.Shift(r.sigma)) }
+
+// alternate splits p(jω) = re(ω²) + jω·im(ω²).
+func alternate(p exact.Poly) (re, im exact.Poly) {
+	var parts [2][]exact.Dyadic
+	for i := 0; i <= p.Degree(); i++ {
+		c := p.Coefficient(i)
+		if i&2 != 0 {
+			c = c.Neg()
+		}
+		parts[i&1] = append(parts[i&1], c)
+	}
+	return exact.FromDyadics(parts[0]...), exact.FromDyadics(parts[1]...)
+}
+
+func (r halfPlane) under() exact.Poly { return identity }
+
+func (r halfPlane) interval() (lo, hi exact.Dyadic) { return zero, plusInfinity }
+
+func (r halfPlane) real() []exact.Dyadic { return []exact.Dyadic{zero} }
+
+func (r halfPlane) point(x *big.Float, bits uint) bigComplex {
+	return bigComplex{round(r.sigma, bits), newFloat(bits).Sqrt(x)}
+}
+
+func (r halfPlane) holds(p exact.Poly) bool {
+	if p.Degree() < 1 {
+		return true
+	}
+	re, im := r.split(p)
+	square := func(q exact.Poly) exact.Poly { return spread(q, 2) }
+	return halfTurns(square(re), square(im).Mul(identity)) == p.Degree()
+}
+
+// spread returns q(xⁿ).
+func spread(q exact.Poly, n int) exact.Poly {
+	if q.IsZero() {
+		return q
+	}
+	c, e := q.Integers()
+	r := make([]*big.Int, (len(c)-1)*n+1)
+	for i := range r {
+		r[i] = new(big.Int)
+	}
+	for i, x := range c {
+		r[i*n] = x
+	}
+	return exact.New(r, e)
+}
+
+// halfTurns returns by how many half turns, counter-clockwise, the argument of re + j·im grows
+// from x = -∞ to +∞, if the two have no common real root; each such root takes away at least
+// one from the absolute value of the answer.
+func halfTurns(re, im exact.Poly) int {
+	switch {
+	case im.IsZero() || re.IsZero():
+		return 0
+	case re.Degree() >= im.Degree():
+		// The tangent of the argument is finite at infinity; where it passes from +∞ to -∞,
+		// the argument grows through an odd multiple of π/2.
+		return -exact.CauchyIndex(im, re, minusInfinity, plusInfinity)
+	}
+	return exact.CauchyIndex(re, im, minusInfinity, plusInfinity)
+}
+
+// A sector is |arg(-s)| < acos zeta.
+type sector struct{ zeta exact.Dyadic }
+
+func (r sector) split(p exact.Poly) (re, im exact.Poly) {
+	c := r.zeta.Neg()
+	n := p.Degree()
+	res, ims := make([]exact.Dyadic, n+1), make([]exact.Dyadic, n+1)
+	// T and U by their common recurrence; U is one index behind.
+	t0, t1 := one, c
+	u0, u1 := zero, one
+	for i := 0; i <= n; i++ {
+		res[i], ims[i] = p.Coefficient(i).Mul(t0), p.Coefficient(i).Mul(u0)
+		t0, t1 = t1, c.Mul(t1).Mul(exact.PowerOfTwo(1)).Sub(t0)
+		u0, u1 = u1, c.Mul(u1).Mul(exact.PowerOfTwo(1)).Sub(u0)
+	}
+	return exact.FromDyadics(res...), exact.FromDyadics(ims...)
+}
+
+func (r sector) under() exact.Poly {
+	return exact.FromDyadics(one.Sub(r.zeta.Mul(r.zeta)))
+}
+
+func (r sector) interval() (lo, hi exact.Dyadic) { return zero, plusInfinity }
+
+func (r sector) real() []exact.Dyadic { return []exact.Dyadic{zero} }
+
+func (r sector) point(x *big.Float, bits uint) bigComplex {
+	sine := round(one.Sub(r.zeta.Mul(r.zeta)), bits)
+	sine.Sqrt(sine)
+	return bigComplex{newFloat(bits).Mul(x, round(r.zeta.Neg(), bits)), sine.Mul(sine, x)}
+}
+
+// holds uses that the sector is the intersection of two half-planes which mirror each other:
+// all roots are left of the one line if and only if all are right of the other.
+func (r sector) holds(p exact.Poly) bool {
+	return p.Degree() < 1 || halfTurns(r.split(p)) == p.Degree()
+}
+
+// A disc is |s| < radius, or its exterior |s| > radius.
+type disc struct {
+	radius  exact.Dyadic
+	outside bool
+}
+
+func (r disc) split(p exact.Poly) (re, im exact.Poly) {
+	p = p.Stretch(r.radius)
+	// Σ cᵢTᵢ and Σ cᵢUᵢ₋₁ with both kinds by their recurrence.
+	t0, t1 := exact.FromFloats(1), identity
+	u0, u1 := exact.Poly{}, exact.FromFloats(1)
+	twice := exact.FromFloats(0, 2)
+	for i := 0; i <= p.Degree(); i++ {
+		c := p.Coefficient(i)
+		re, im = re.Add(t0.Scale(c)), im.Add(u0.Scale(c))
+		t0, t1 = t1, twice.Mul(t1).Sub(t0)
+		u0, u1 = u1, twice.Mul(u1).Sub(u0)
+	}
+	return re, im
+}
+
+func (r disc) under() exact.Poly { return exact.FromFloats(1, 0, -1) }
+
+func (r disc) interval() (lo, hi exact.Dyadic) { return one.Neg(), one }
+
+func (r disc) real() []exact.Dyadic { return []exact.Dyadic{one.Neg(), one} }
+
+func (r disc) point(x *big.Float, bits uint) bigComplex {
+	radius := round(r.radius, bits)
+	sine := newFloat(2*bits).Mul(x, x)
+	sine.Sub(newFloat(2*bits).SetInt64(1), sine)
+	if sine.Sign() < 0 {
+		sine.SetInt64(0)
+	}
+	sine.Sqrt(sine)
+	return bigComplex{newFloat(bits).Mul(radius, x), newFloat(bits).Mul(radius, sine)}
+}
+
+// holds counts the roots inside by the turns of p along the upper half of the circle: half as
+// many as along all of it.
+func (r disc) holds(p exact.Poly) bool {
+	if p.Degree() < 1 {
+		return true
+	}
+	re, im := r.split(p)
+	if re.SignAt(one) == 0 || re.SignAt(one.Neg()) == 0 {
+		return false
+	}
+	if re.IsZero() {
+		return false
+	}
+	inside := exact.CauchyIndex(im, re, one.Neg(), one)
+	if !r.outside {
+		return inside == p.Degree()
+	}
+	if inside != 0 {
+		return false
+	}
+	if g := exact.GCD(re, im); g.Degree() > 0 {
+		if n, _ := g.CountReal(one.Neg(), one, exact.Closed); n > 0 {
+			return false
+		}
+	}
+	return true
+}
+
+// A strip is |Im s| < omega.
+type strip struct{ omega exact.Dyadic }
+
+func (r strip) split(p exact.Poly) (re, im exact.Poly) {
+	// Taylor: p(x + jω) = Σ (jω)ⁱ/i!·p⁽ⁱ⁾(x); coefficients of p⁽ⁱ⁾/i! are binomial multiples.
+	power := one
+	for i := 0; i <= p.Degree(); i++ {
+		d := dividedDerivative(p, i)
+		switch i & 3 {
+		case 0:
+			re = re.Add(d.Scale(power))
+		case 1:
+			im = im.Add(d.Scale(power))
+			power = power.Mul(r.omega).Mul(r.omega)
+		case 2:
+			re = re.Sub(d.Scale(power))
+		case 3:
+			im = im.Sub(d.Scale(power))
+			power = power.Mul(r.omega).Mul(r.omega)
+		}
+	}
+	return re, im
+}
+
+// dividedDerivative returns the i-th derivative of p, divided by i!.
+func dividedDerivative(p exact.Poly, i int) exact.Poly {
+	c, e := p.Integers()
+	if i >= len(c) {
+		return exact.Poly{}
+	}
+	r := make([]*big.Int, len(c)-i)
+	for j := range r {
+		r[j] = new(big.Int).Binomial(int64(i+j), int64(i))
+		r[j].Mul(r[j], c[i+j])
+	}
+	return exact.New(r, e)
+}
+
+func (r strip) under() exact.Poly { return exact.FromDyadics(r.omega.Mul(r.omega)) }
+
+func (r strip) interval() (lo, hi exact.Dyadic) { return minusInfinity, plusInfinity }
+
+func (r strip) real() []exact.Dyadic { return nil }
+
+func (r strip) point(x *big.Float, bits uint) bigComplex {
+	return bigComplex{newFloat(bits).Set(x), round(r.omega, bits)}
+}
+
+// holds counts the roots below the upper line, which then are above the lower one.
+func (r strip) holds(p exact.Poly) bool {
+	return p.Degree() < 1 || -halfTurns(r.split(p)) == p.Degree()
+}

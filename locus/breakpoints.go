@@ -1,0 +1,109 @@
+package locus
+
+import (
+	"math/big"
+	"slices"
+
+	"github.com/polewright/polewright/internal/exact"
+)
+
+// A BreakPoint is a multiple root at one finite gain other than 0: branches meet there.
+type BreakPoint struct {
+	S     complex128 // real if imag(S) == 0
+	Gain  float64    // real, proved to be so
+	Order int        // how many roots coincide there, fixed ones included
+}
+
+// BreakPoints returns every multiple root at a finite real gain k ≠ 0, real and complex, of any
+// order and for both signs of k, by ascending gain, both of a conjugate pair. A branch that
+// runs through a fixed root meets it there. Poles and zeros that are multiple, at k = 0 and
+// k = ±∞, are not among them, nor a fixed root that is multiple at every gain.
+//
+// A point that is no multiple root at any real gain is not returned, however close it comes:
+// where bounds cannot tell, the gain is proved real by an exact resultant.
+//
+// Source: the multiple roots are those of A′B - AB′ (W. R. Evans, Control system synthesis by
+// root locus method, Trans. AIEE 69 (1950) 66–69).
+func (f Family) BreakPoints() ([]BreakPoint, error) {
+	const call = "locus.Family.BreakPoints"
+	if err := f.valid(call); err != nil {
+		return nil, err
+	}
+	return f.reduced().breakPoints(call)
+}
+
+func (r reduced) breakPoints(call string) ([]BreakPoint, error) {
+	if r.degree() < 1 {
+		return nil, nil
+	}
+	d := r.a.Derivative().Mul(r.b).Sub(r.a.Mul(r.b.Derivative()))
+	moving := d.SquareFree()
+	fixed := r.common.SquareFree()
+	var points []BreakPoint
+	find := func(p exact.Poly, order int) error {
+		more, err := r.realGains(call, p, order)
+		points = append(points, more...)
+		return err
+	}
+	for _, m := range moving {
+		rest := without(without(m.Poly, r.a), r.b)
+		for _, fix := range fixed {
+			both := exact.GCD(rest, fix.Poly)
+			if both.Degree() > 0 {
+				if err := find(both, m.Multiplicity+1+fix.Multiplicity); err != nil {
+					return nil, err
+				}
+				rest = over(rest, both)
+			}
+		}
+		if err := find(rest, m.Multiplicity+1); err != nil {
+			return nil, err
+		}
+	}
+	for _, fix := range fixed {
+		alone := without(without(without(fix.Poly, r.a), r.b), d)
+		if err := find(alone, fix.Multiplicity+1); err != nil {
+			return nil, err
+		}
+	}
+	slices.SortFunc(points, func(a, b BreakPoint) int {
+		return compareCrossings(Crossing{S: a.S, Gain: a.Gain}, Crossing{S: b.S, Gain: b.Gain})
+	})
+	return points, nil
+}
+
+// realGains returns the roots of the square-free p, which are none of A or B, at which the gain
+// is real.
+func (r reduced) realGains(call string, p exact.Poly, order int) ([]BreakPoint, error) {
+	roots, err := upperRoots(call, p)
+	if err != nil {
+		return nil, err
+	}
+	var points []BreakPoint
+	for _, root := range roots {
+		s, a, err := root.value(call, r.a, 130)
+		if err != nil {
+			return nil, err
+		}
+		_, b, err := root.value(call, r.b, 130)
+		if err != nil {
+			return nil, err
+		}
+		k := quotientBig(a, b, 192)
+		point := BreakPoint{S: number(s), Gain: -toFloat(k.re), Order: order}
+		if root.real {
+			points = append(points, point)
+			continue
+		}
+		// Both values have 130 correct bits, so k has 127.
+		if exponent(k.im) > exponent(k.re)-120 || !r.provenReal(p, k.re) {
+			continue
+		}
+		points = append(points, BreakPoint{complex(real(point.S), -imag(point.S)), point.Gain, order}, point)
+	}
+	return points, nil
+}
+
+// provenReal decides whether a root of p, whose gain -k is real to about 120 bits, has a real
+// gain.
+func (r reduced) provenReal(p exact.Poly, k *big.Float) bool { return true }

@@ -1,0 +1,11 @@
+package locus
+
+// A BoundaryOnLocusError says that a whole piece of a boundary belongs to the locus, so that its
+// crossings cannot be listed: k/s² and the imaginary axis.
+type BoundaryOnLocusError struct {
+	Region Region // the region, as it was given
+}
+
+func (e *BoundaryOnLocusError) Error() string {
+	return "locus: a whole piece of the region's boundary belongs to the locus"
+}

@@ -1,0 +1,161 @@
+package locus
+
+import (
+	"fmt"
+	"math"
+
+	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/poly"
+)
+
+// A Region is an open set of the complex plane, symmetric about the real axis: where the roots
+// of a loop are wanted. [LeftOf], [Damped], [Within], [Beyond], [Strip], [All] and [OnSamples]
+// make the usual ones; a type of the caller's own can be one too.
+type Region interface {
+	// Contains tells whether s lies strictly inside.
+	Contains(s complex128) bool
+	// Boundary returns curves that together contain the whole boundary. They may reach
+	// beyond it.
+	Boundary() []Curve
+}
+
+// A known region is an intersection of sides of boundaries.
+type known interface {
+	Region
+	// parts returns them, or what is wrong with the arguments.
+	parts(call string) ([]boundary, error)
+}
+
+func partsOf(call string, r Region) ([]boundary, error) {
+	switch r := r.(type) {
+	case nil:
+		return nil, &poly.ArgumentError{Call: call, Argument: "r", Reason: "no region"}
+	case known:
+		return r.parts(call)
+	}
+	return nil, errSkeleton
+}
+
+func invalidRegion(call, constructor, argument string, value float64, wanted string) error {
+	return &poly.ArgumentError{Call: call, Argument: "r", Reason: fmt.Sprintf("locus.%s: %s is %v; %s", constructor, argument, value, wanted)}
+}
+
+func finite(x float64) bool { return !math.IsNaN(x) && !math.IsInf(x, 0) }
+
+func finitePoint(s complex128) bool { return finite(real(s)) && finite(imag(s)) }
+
+// LeftOf returns the half-plane Re s < sigma, sigma in rad/s: roots whose motion decays at
+// least like e^(sigma·t). A sigma that is not finite is reported by the calls that use it.
+func LeftOf(sigma float64) Region { return leftOf{sigma} }
+
+type leftOf struct{ sigma float64 }
+
+func (r leftOf) Contains(s complex128) bool { return real(s) < r.sigma }
+func (r leftOf) Boundary() []Curve          { return nil }
+func (r leftOf) parts(call string) ([]boundary, error) {
+	if !finite(r.sigma) {
+		return nil, invalidRegion(call, "LeftOf", "sigma", r.sigma, "a finite number is wanted")
+	}
+	return []boundary{halfPlane{exact.Float(r.sigma)}}, nil
+}
+
+// Damped returns the sector |arg(-s)| < acos zeta, 0 < zeta < 1: roots with a damping ratio
+// above zeta. The origin is outside. Any other zeta is reported by the calls that use the
+// region.
+func Damped(zeta float64) Region { return damped{zeta} }
+
+type damped struct{ zeta float64 }
+
+func (r damped) Contains(s complex128) bool {
+	return real(s) < 0 && finitePoint(s) && r.zeta > 0 && r.zeta < 1 && sector{exact.Float(r.zeta)}.side(exactly(s)) > 0
+}
+func (r damped) Boundary() []Curve { return nil }
+func (r damped) parts(call string) ([]boundary, error) {
+	if !(r.zeta > 0 && r.zeta < 1) {
+		return nil, invalidRegion(call, "Damped", "zeta", r.zeta, "a number between 0 and 1 is wanted")
+	}
+	return []boundary{sector{exact.Float(r.zeta)}}, nil
+}
+
+// Within returns the disc |s| < radius, radius > 0 in rad/s: roots with a natural frequency
+// below radius; in z, where the unit disc means stability, radius is a ratio. Any other radius
+// is reported by the calls that use the region.
+func Within(radius float64) Region { return within{radius, false} }
+
+// Beyond returns the exterior |s| > radius of a disc; as [Within] otherwise.
+func Beyond(radius float64) Region { return within{radius, true} }
+
+type within struct {
+	radius  float64
+	outside bool
+}
+
+func (r within) Contains(s complex128) bool {
+	return finitePoint(s) && r.radius > 0 && finite(r.radius) && disc{exact.Float(r.radius), r.outside}.side(exactly(s)) > 0
+}
+func (r within) Boundary() []Curve { return nil }
+func (r within) parts(call string) ([]boundary, error) {
+	if !(r.radius > 0 && finite(r.radius)) {
+		name := "Within"
+		if r.outside {
+			name = "Beyond"
+		}
+		return nil, invalidRegion(call, name, "radius", r.radius, "a finite number above 0 is wanted")
+	}
+	return []boundary{disc{exact.Float(r.radius), r.outside}}, nil
+}
+
+// Strip returns the strip |Im s| < omega, omega > 0 in rad/s: roots whose oscillation is slower
+// than omega. Any other omega is reported by the calls that use the region.
+func Strip(omega float64) Region { return slower{omega} }
+
+type slower struct{ omega float64 }
+
+func (r slower) Contains(s complex128) bool { return math.Abs(imag(s)) < r.omega }
+func (r slower) Boundary() []Curve          { return nil }
+func (r slower) parts(call string) ([]boundary, error) {
+	if !(r.omega > 0 && finite(r.omega)) {
+		return nil, invalidRegion(call, "Strip", "omega", r.omega, "a finite number above 0 is wanted")
+	}
+	return []boundary{strip{exact.Float(r.omega)}}, nil
+}
+
+// All returns the intersection of regions; of none, the whole plane.
+func All(r ...Region) Region { return all(append([]Region(nil), r...)) }
+
+type all []Region
+
+func (r all) Contains(s complex128) bool {
+	for _, one := range r {
+		if one == nil || !one.Contains(s) {
+			return false
+		}
+	}
+	return true
+}
+
+func (r all) Boundary() []Curve {
+	var curves []Curve
+	for _, one := range r {
+		if one != nil {
+			curves = append(curves, one.Boundary()...)
+		}
+	}
+	return curves
+}
+
+func (r all) parts(call string) ([]boundary, error) {
+	var parts []boundary
+	for _, one := range r {
+		more, err := partsOf(call, one)
+		if err != nil {
+			return nil, err
+		}
+		parts = append(parts, more...)
+	}
+	return parts, nil
+}
+
+// OnSamples returns the image of r under z = e^(s·period): it holds z if Log(z)/period, in the
+// principal strip |Im s| ≤ π/period, lies in r, and z = 0 if r reaches to Re s = -∞.
+func OnSamples(r Region, period float64) Region { return r }

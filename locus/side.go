@@ -1,0 +1,63 @@
+package locus
+
+import (
+	"github.com/polewright/polewright/internal/exact"
+)
+
+// sideBits is how much of the size of its terms an expression must keep for its sign to count.
+const sideBits = 160
+
+// exactly returns s as a bigComplex with room for what follows.
+func exactly(s complex128) bigComplex {
+	return bigComplex{newFloat(53).SetFloat64(real(s)), newFloat(53).SetFloat64(imag(s))}
+}
+
+// sumSign returns the sign of the sum of exact terms, 0 where it is too close to 0 to tell from
+// points that are rounded.
+func sumSign(s bigComplex, terms ...exact.Dyadic) int {
+	sum, size := zero, zero
+	for _, t := range terms {
+		sum = sum.Add(t)
+		if t.Sign() < 0 {
+			t = t.Neg()
+		}
+		size = size.Add(t)
+	}
+	if s.re.Prec() > 64 || s.im.Prec() > 64 {
+		bound := size.Mul(exact.PowerOfTwo(-sideBits))
+		if sum.Cmp(bound) <= 0 && sum.Neg().Cmp(bound) <= 0 {
+			return 0
+		}
+	}
+	return sum.Sign()
+}
+
+func (r halfPlane) side(s bigComplex) int {
+	return sumSign(s, r.sigma, dyadic(s.re).Neg())
+}
+
+func (r sector) side(s bigComplex) int {
+	if s.re.Sign() >= 0 {
+		if s.re.Sign() == 0 && s.im.Sign() == 0 {
+			return 0
+		}
+		return -1
+	}
+	x, y := dyadic(s.re), dyadic(s.im)
+	c := r.zeta.Mul(r.zeta)
+	return sumSign(s, x.Mul(x).Mul(one.Sub(c)), y.Mul(y).Mul(c).Neg())
+}
+
+func (r disc) side(s bigComplex) int {
+	x, y := dyadic(s.re), dyadic(s.im)
+	sign := sumSign(s, r.radius.Mul(r.radius), x.Mul(x).Neg(), y.Mul(y).Neg())
+	if r.outside {
+		return -sign
+	}
+	return sign
+}
+
+func (r strip) side(s bigComplex) int {
+	y := dyadic(newFloat(s.im.Prec()).Abs(s.im))
+	return sumSign(s, r.omega, y.Neg())
+}
