@@ -294,7 +294,7 @@ func (s *scan) run() {
 				return
 			}
 		}
-		b := s.node(a.t + h)
+		b := s.node(min(a.t+h, s.k.cellEnd(a.t)))
 		s.forward(&a, &b, 0)
 		a = b
 	}
@@ -334,7 +334,7 @@ func (s *scan) settle() float64 {
 		if b.t > s.k.earlyEnd {
 			h = min(stepFor(&b), b.t-s.k.earlyEnd)
 		}
-		a := s.node(max(b.t-h, 0))
+		a := s.node(max(b.t-h, s.k.cellStart(b.t)))
 		if n, found := s.backward(&a, &b, 0); found {
 			return n
 		}

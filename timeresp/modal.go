@@ -2,6 +2,8 @@ package timeresp
 
 import (
 	"math"
+
+	"github.com/polewright/polewright/poly"
 )
 
 // Letters of this file: τ = w·t scaled time, w a power of two not below the largest pole;
@@ -12,11 +14,15 @@ type transform struct {
 	scale    int    // w = 2^scale
 	num, den []wide // by power of z; the last of den is 1
 	poles    []pole // of den; one of each conjugate pair
+
+	numerator, denominator poly.Poly // of the function, exact
+	in                     factor
 }
 
 // A pole has im ≥ 0; one with im > 0 stands for itself and its conjugate.
 type pole struct {
 	at           wideComplex
+	exact        wideComplex // equal to at if that is the pole exactly
 	multiplicity int
 }
 
@@ -28,19 +34,23 @@ type mode struct {
 	first, count       int32   // of the a; count is 1 for a simple pole
 }
 
+// A modal is a sum of modes and of a polynomial, the share of a pole at 0.
+type modal struct {
+	drift      []float64 // by power of τ
+	modes      []mode
+	amplitudes []complex128 // of multiple poles
+}
+
 // A kernel is a signal that is zero before t = 0 and has a rational Laplace transform
 // after. Early on, where the modes nearly cancel, it is a chain of Taylor polynomials; then
 // it is the sum of its modes.
 type kernel struct {
-	w          float64
-	drift      []float64 // polynomial in τ, by power: the share of a pole at 0
-	modes      []mode
-	amplitudes []complex128 // of multiple poles
-	dirac      float64      // weight of the Dirac impulse at t = 0
-	early      []float64    // len(early) = pieces·earlyTerms coefficients of (τ - τᵢ)/h
-	earlyEnd   float64      // scaled; the modes are used from here on
-	leading    int          // the first piece is this power times its polynomial
-	bound      float64      // of the modal sum, per unit of envelope
+	modal
+	w        float64
+	early    []float64 // len(early) = pieces·earlyTerms coefficients of (τ - τᵢ)/h
+	earlyEnd float64   // scaled; the modes are used from here on
+	leading  int       // the first piece is this power times its polynomial
+	stages   []stage   // if not empty, they and not the modes are used from earlyEnd on
 }
 
 const (
@@ -56,11 +66,15 @@ const (
 )
 
 // newKernel inverts a strictly proper transform.
-func newKernel(f *transform) *kernel {
+func newKernel(f *transform) (*kernel, error) {
 	k := &kernel{w: math.Ldexp(1, f.scale)}
 	k.expand(f)
-	k.begin(f)
-	return k
+	if largest, ok := k.begin(f); !ok {
+		if err := k.extend(f, largest); err != nil {
+			return nil, err
+		}
+	}
+	return k, nil
 }
 
 // expand finds the amplitudes of the modes: those of the Laurent series at each pole.
@@ -160,10 +174,12 @@ func divideSeries(a []wideComplex, d wideComplex, m int) {
 
 // begin lays Taylor polynomials from t = 0 on until the modal sum is good enough. The
 // derivatives come from the differential equation den(d/dτ)y = 0, in wide arithmetic.
-func (k *kernel) begin(f *transform) {
+// It returns the largest value at the ends of the polynomials, and is not ok if the sum of
+// the modes is not good enough there.
+func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	n := len(f.den) - 1
 	if n == 0 {
-		return
+		return 0, true
 	}
 	terms := earlyTerms + n
 	buffer := make([]wide, 2*terms)
@@ -184,17 +200,26 @@ func (k *kernel) begin(f *transform) {
 	}
 	if k.leading == n { // the zero signal
 		k.leading = 0
-		return
+		return 0, true
 	}
 	weights := taylorWeights()
-	largest := 0.0
+	sizes := make([]float64, n)
 	for piece := 0; ; piece++ {
 		start := earlyStep * float64(piece)
 		if k.roundingAt(start) <= tolerance*largest {
-			return
+			return largest, true
 		}
-		if piece == maxPieces {
-			return
+		// An error of 2⁻⁹⁸ of the k-th derivative comes back at most as τ^k/k! of it, the share
+		// of slow poles; den has none in the right half-plane that are not slow, or the signal
+		// itself grows.
+		lost, power := 0.0, 0x1p-98
+		for i := range n {
+			sizes[i] = max(sizes[i], math.Abs(y[i].hi))
+			lost += sizes[i] * power
+			power *= start / float64(i+1)
+		}
+		if piece == maxPieces || lost > tolerance/32*largest && piece > 0 {
+			return largest, false
 		}
 		for i := n; i < terms; i++ {
 			var c wide
@@ -235,7 +260,7 @@ var weightTable = func() (t [128]wide) {
 }()
 
 // roundingAt bounds the rounding of the modal sum at τ and, for a decaying signal, later.
-func (k *kernel) roundingAt(tau float64) float64 {
+func (k *modal) roundingAt(tau float64) float64 {
 	sum := 0.0
 	for i := len(k.drift) - 1; i >= 0; i-- {
 		sum = sum*tau + math.Abs(k.drift[i])
@@ -264,6 +289,9 @@ func (k *kernel) at(t, lo float64) float64 {
 	if tau < k.earlyEnd {
 		return k.earlyAt(tau, lo)
 	}
+	if len(k.stages) > 0 {
+		return k.stageOf(tau).at(tau, lo)
+	}
 	return k.modalAt(tau, lo)
 }
 
@@ -281,7 +309,7 @@ func (k *kernel) earlyAt(tau, lo float64) float64 {
 	return y
 }
 
-func (k *kernel) modalAt(tau, lo float64) float64 {
+func (k *modal) modalAt(tau, lo float64) float64 {
 	y := 0.0
 	for i := len(k.drift) - 1; i >= 0; i-- {
 		y = y*tau + k.drift[i]

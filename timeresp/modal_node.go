@@ -28,6 +28,15 @@ func (k *kernel) node(tau float64, n *node) {
 		k.earlyNode(tau, n)
 		return
 	}
+	if len(k.stages) > 0 {
+		k.stageOf(tau).node(tau, n)
+		return
+	}
+	k.modalNode(tau, n)
+}
+
+// modalNode is node on the sum of the modes.
+func (k *modal) modalNode(tau float64, n *node) {
 	n.y, n.d, n.c, n.spread, n.fourth = 0, 0, 0, 0, 0
 	if len(k.drift) > 0 {
 		n.y = k.drift[0]
@@ -63,7 +72,7 @@ func (k *kernel) node(tau float64, n *node) {
 
 // confluentNode adds the share of a multiple pole. With q(τ) = Σ a[k]τ^k its derivatives are
 // e^(pτ)·((D+p)ʲq).
-func (k *kernel) confluentNode(m *mode, tau, e, sin, cos float64, n *node) {
+func (k *modal) confluentNode(m *mode, tau, e, sin, cos float64, n *node) {
 	a := k.amplitudes[m.first : m.first+m.count]
 	p := complex(m.re, m.im)
 	var q [5]complex128 // derivatives of q

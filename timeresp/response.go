@@ -21,19 +21,25 @@ type arc struct {
 	signal *kernel
 }
 
+var (
+	impulseFactor = factor{num: []float64{1}}
+	stepFactor    = factor{num: []float64{1}, zeros: 1}
+	rampFactor    = factor{num: []float64{1}, zeros: 2}
+)
+
 // Step returns the response of g to a unit step at t = 0, g at rest before.
 func Step(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Step", g, factor{constant: 1, zeros: 1})
+	return respond("timeresp.Step", g, stepFactor)
 }
 
 // Impulse returns the response of g to a unit Dirac impulse at t = 0.
 func Impulse(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Impulse", g, factor{constant: 1})
+	return respond("timeresp.Impulse", g, impulseFactor)
 }
 
 // Ramp returns the response of g to the input t, from t = 0 on.
 func Ramp(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Ramp", g, factor{constant: 1, zeros: 2})
+	return respond("timeresp.Ramp", g, rampFactor)
 }
 
 func respond(call string, g tf.Function, in factor) (*Response, error) {
@@ -58,7 +64,10 @@ func rational(call string, numerator, denominator poly.Poly, roots []poly.Root, 
 	if err != nil {
 		return nil, err
 	}
-	k := newKernel(f)
+	k, err := newKernel(f)
+	if err != nil {
+		return nil, err
+	}
 	r := &Response{arcs: []arc{{from: deadTime, signal: k}}, dirac: dirac}
 	r.final = k.limit()
 	return r, nil

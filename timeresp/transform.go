@@ -8,12 +8,12 @@ import (
 	"github.com/polewright/polewright/poly"
 )
 
-// A factor is the transform of an input in real time, a ratio of small polynomials:
-// (first·s + constant)/(s^zeros·(s² + ω²)), the last one left out if ω = 0.
+// A factor is the transform of an input in real time: num(s)/(s^zeros·(s² + ω²)), num by
+// power, the last factor left out if ω = 0.
 type factor struct {
-	first, constant float64
-	zeros           int
-	omega           float64
+	num   []float64
+	zeros int
+	omega float64
 }
 
 // scaled returns wide coefficients of p in z = s/2^scale, by power, all times 2^-shift.
@@ -69,7 +69,7 @@ func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Ro
 		s := roots[i].Value
 		largest = max(largest, math.Hypot(real(s), imag(s)))
 	}
-	f = &transform{}
+	f = &transform{numerator: numerator, denominator: denominator, in: in}
 	if largest > 0 {
 		_, f.scale = math.Frexp(largest)
 	}
@@ -109,6 +109,11 @@ func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Ro
 		p := pole{multiplicity: r.Multiplicity}
 		p.at.re.hi = math.Ldexp(real(r.Value), -f.scale)
 		p.at.im.hi = math.Ldexp(imag(r.Value), -f.scale)
+		if r.Radius == 0 {
+			p.exact = p.at
+		} else {
+			p.exact.re.hi = math.NaN()
+		}
 		f.poles = append(f.poles, p)
 	}
 	for i, j := 0, 0; i < len(roots); i++ {
@@ -121,7 +126,7 @@ func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Ro
 		j++
 	}
 
-	f.apply(in, w)
+	f.apply(in)
 	if len(f.num) == len(f.den) {
 		// f.num = dirac·f.den + the rest
 		top := f.num[len(f.num)-1]
@@ -137,27 +142,27 @@ func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Ro
 	return f, dirac, nil
 }
 
-// apply multiplies the transform by that of the input.
-func (f *transform) apply(in factor, w float64) {
-	// c/s^q is (c/w^q)/z^q in scaled s; another w belongs to the scaled time.
-	unit := wide{1, 0}
-	for range in.zeros {
-		unit = unit.mulFloat(1 / w)
-	}
+// exponents returns e with num(s)/(s^zeros·(s²+ω²)) = Σ num[k]·2^e[k]·z^k/(z^zeros·(z²+ω²/w²)),
+// times the w that the change to scaled time brings.
+func (in *factor) exponent(k, scale int) int {
+	e := (k + 1 - in.zeros) * scale
 	if in.omega != 0 {
-		unit = unit.mulFloat(1 / w).mulFloat(1 / w)
+		e -= 2 * scale
 	}
-	unit = unit.mulFloat(w)
-	constant, first := unit.mulFloat(in.constant), unit.mulFloat(w).mulFloat(in.first)
-	if first.hi != 0 {
-		f.num = append(f.num, wide{})
-	}
-	for i := len(f.num) - 1; i >= 0; i-- {
-		f.num[i] = f.num[i].mul(constant)
-		if i > 0 && first.hi != 0 {
-			var below wide
-			below = f.num[i-1]
-			f.num[i] = f.num[i].add(below.mul(first))
+	return e
+}
+
+// apply multiplies the transform by that of the input.
+func (f *transform) apply(in factor) {
+	old := f.num
+	f.num = make([]wide, max(0, len(old)+len(in.num)-1))
+	for k, c := range in.num {
+		if c == 0 {
+			continue
+		}
+		c = math.Ldexp(c, in.exponent(k, f.scale))
+		for i := range old {
+			f.num[i+k] = f.num[i+k].add(old[i].mulFloat(c))
 		}
 	}
 	if in.zeros > 0 {
@@ -165,10 +170,7 @@ func (f *transform) apply(in factor, w float64) {
 		f.addPole(pole{multiplicity: in.zeros})
 	}
 	if in.omega != 0 {
-		o := in.omega / w
-		var p pole
-		p.at.im.hi = o
-		p.multiplicity = 1
+		o := math.Ldexp(in.omega, -f.scale)
 		square := wide{o, 0}.mulFloat(o)
 		f.den = append(f.den, wide{}, wide{})
 		for i := len(f.den) - 1; i >= 0; i-- {
@@ -178,6 +180,9 @@ func (f *transform) apply(in factor, w float64) {
 			}
 			f.den[i] = c
 		}
+		p := pole{multiplicity: 1}
+		p.at.im.hi = o
+		p.exact = p.at
 		f.addPole(p)
 	}
 }
