@@ -181,7 +181,7 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	if n == 0 {
 		return 0, true
 	}
-	terms := earlyTerms + n
+	terms := earlyTerms + 2*n
 	buffer := make([]wide, 2*terms)
 	y, next := buffer[:terms], buffer[terms:]
 	for i := 0; i < n; i++ { // y⁽ⁱ⁾(0+) by long division
@@ -204,15 +204,16 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	}
 	weights := taylorWeights()
 	sizes := make([]float64, n)
+	// What is lost of a derivative in a step: the roundings, and the terms left out.
+	lossOfStep := max(0x1p-98, weightTable[terms+1-n].hi)
 	for piece := 0; ; piece++ {
 		start := earlyStep * float64(piece)
 		if k.roundingAt(start) <= tolerance*largest {
 			return largest, true
 		}
-		// An error of 2⁻⁹⁸ of the k-th derivative comes back at most as τ^k/k! of it, the share
-		// of slow poles; den has none in the right half-plane that are not slow, or the signal
-		// itself grows.
-		lost, power := 0.0, 0x1p-98
+		// What is lost of the k-th derivative comes back at most as τ^k/k! of it: the share of
+		// poles near 0. Where poles lie far in the right half-plane the signal grows as well.
+		lost, power := 0.0, lossOfStep
 		for i := range n {
 			sizes[i] = max(sizes[i], math.Abs(y[i].hi))
 			lost += sizes[i] * power
