@@ -1,8 +1,235 @@
 package locus
 
-// traceSettings are the adjustments of [Family.Trace].
-type traceSettings struct{}
+import (
+	"math"
+	"math/cmplx"
+	"sort"
 
-func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) { return nil, errSkeleton }
+	"github.com/polewright/polewright/poly"
+)
 
-type Locus struct{ Branches []Branch }
+// A Locus is what [Family.Trace] returns: the branches of a family over an interval of gains,
+// and what a picture of them needs.
+type Locus struct {
+	Branches []Branch
+
+	family Family // as traced; common factors are taken out of its reduced form
+	lo, hi float64
+	plane  *plane
+}
+
+// Trace follows all roots of the family while the gain goes from lo to hi, which may be -Inf
+// and +Inf; zero may lie between them. Every root of every gain in [lo, hi] is on exactly one
+// branch, but for those that never move: factors common to both polynomials are fixed roots
+// and no branches.
+//
+// Guarantee: that a branch is the same root all along is proven, not guessed from distances.
+// Each step covers an interval of gains with one disc about each root that provably holds
+// this root and no other all the time.
+//
+// Break points, and multiple roots at gain zero, are points of the branches that meet there,
+// reached exactly. Through a point where m of them meet each turns by π/m, counter-clockwise
+// for Im s ≥ 0 and clockwise below. A branch that passes through infinity, which happens at
+// the gain where the leading coefficient vanishes, ends there and another begins. For lo = -Inf
+// and hi = +Inf branches begin and end at the roots of the polynomial that the gain multiplies,
+// with a gain of ±Inf there, or lead towards infinity; those are drawn as far as several times the
+// size of the figure, while [Branch.At] answers for every finite gain.
+//
+// Points stand where the shape needs them: every true point of a branch is within 5e-4 of the
+// diagonal of [Locus.Frame] of the polyline.
+//
+// The branches are sorted by the gain at which they begin, and then by their first point: real
+// part, imaginary part.
+//
+// The error is a [*poly.ArgumentError] for a gain that is NaN or an empty interval and for a
+// family that is invalid, a [*poly.RangeError] for roots outside the range of float64, an
+// [*UnresolvedError] where the proof fails within the arithmetic or the limit on the
+// number of steps, and the error of the context given by [Interrupted].
+//
+// Sources: the discs are those of K. Weierstrass and W. Börsch-Supan, see certify; for the
+// tracking of paths with proof C. Beltrán and A. Leykin, Robust certified numerical homotopy
+// tracking, Found. Comput. Math. 13 (2013) 253–295.
+func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) {
+	const call = "locus.Family.Trace"
+	var s settings
+	for _, o := range opt {
+		o(&s)
+	}
+	switch {
+	case math.IsNaN(lo) || math.IsInf(lo, 1):
+		return nil, &poly.ArgumentError{Call: call, Argument: "lo", Reason: "a gain below +Inf is needed"}
+	case math.IsNaN(hi) || math.IsInf(hi, -1):
+		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: "a gain above -Inf is needed"}
+	case lo > hi:
+		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: "must not be below lo"}
+	}
+	for _, p := range []poly.Poly{f.fixed, f.scaled} {
+		if err := p.Err(); err != nil {
+			return nil, err
+		}
+	}
+	l := &Locus{family: f, lo: lo, hi: hi}
+	if f.fixed.Degree() < 0 && f.scaled.Degree() < 0 {
+		return nil, &poly.ArgumentError{Call: call, Argument: "f", Reason: "both polynomials are zero: every number is a root"}
+	}
+	if f.fixed.Degree() < 0 || f.scaled.Degree() < 0 {
+		return l, nil // all roots are fixed
+	}
+	fixed, scaled := coprime(f.fixed, f.scaled)
+	if fixed.Degree() < 1 && scaled.Degree() < 1 {
+		return l, nil
+	}
+	t := &tracker{family: Family{fixed: fixed, scaled: scaled}, plane: newPlane(fixed, scaled), ctx: s.trace.ctx, budget: s.trace.steps}
+	if t.budget <= 0 {
+		t.budget = defaultSteps
+	}
+	t.pencil = newPencil(t.plane)
+	l.plane = t.plane
+	if err := t.trace(lo, hi); err != nil {
+		return nil, err
+	}
+	return l, t.draw(l)
+}
+
+// trace fills in chains and branches.
+func (t *tracker) trace(lo, hi float64) error {
+	p := t.plane
+	first, last := p.toK(lo), p.toK(hi)
+	t.from, t.end = first, last
+	if math.Max(-first, last) > farGain {
+		limit, err := t.findEnds()
+		if err != nil {
+			return err
+		}
+		t.from, t.end = max(first, -limit), min(last, limit)
+		if t.end < t.from { // the whole interval is beyond
+			if first > 0 {
+				t.from, t.end = first, first
+			} else {
+				t.from, t.end = last, last
+			}
+		}
+	}
+	if err := t.foresee(); err != nil {
+		return err
+	}
+	if err := t.begin(); err != nil {
+		return err
+	}
+	if first < t.from {
+		tips, ok := t.tips()
+		if !ok {
+			return t.fail("the ends of the branches at infinite gain cannot be told apart")
+		}
+		for i := range t.rows {
+			c := &t.chains[t.rows[i].chain]
+			c.head, c.from = tips[i], first
+		}
+		for i := range t.branches {
+			t.branches[i].birth = first
+		}
+	}
+	if err := t.walk(); err != nil {
+		return err
+	}
+	if last > t.end {
+		tips, ok := t.tips()
+		if !ok {
+			return t.fail("the ends of the branches at infinite gain cannot be told apart")
+		}
+		for i := range t.rows {
+			c := &t.chains[t.rows[i].chain]
+			c.tail, c.upto = tips[i], last
+		}
+	}
+	return nil
+}
+
+// foresee enters the vertices that are no break points: multiple roots at gain zero, and roots
+// that pass through infinity.
+func (t *tracker) foresee() error {
+	p := t.plane
+	if p.dropAt > t.from && p.dropAt <= t.end {
+		c := p.dropCell()
+		if c == nil {
+			return t.fail("the roots near infinity cannot be told from the others")
+		}
+		t.addVertex(c)
+	}
+	if t.from < 0 && t.end >= 0 {
+		poles, err := t.family.fixed.Roots()
+		if err != nil {
+			return err
+		}
+		for _, pole := range poles {
+			x := p.toX(pole.Value)
+			if pole.Multiplicity == 1 || imag(x) < 0 {
+				continue
+			}
+			if pole.Distinct > 1 {
+				return t.fail("different roots at gain 0 are closer than float64 can part")
+			}
+			c := p.multipleCell(x, 0, pole.Multiplicity, math.Ldexp(pole.Radius, -p.stretch))
+			if c == nil {
+				return t.fail("a multiple root at gain 0 cannot be told from its neighbours")
+			}
+			t.addVertex(c)
+		}
+	}
+	return nil
+}
+
+// draw places the points of all branches.
+func (t *tracker) draw(l *Locus) error {
+	size := t.size(l)
+	points := make([][]point, len(t.chains))
+	s := shaper{tracker: t, tolerance: 2e-4 * size, far: 8 * size}
+	for i := range t.chains {
+		points[i] = s.points(&t.chains[i])
+	}
+	order := make([]int, len(t.branches))
+	l.Branches = make([]Branch, len(t.branches))
+	for i, b := range t.branches {
+		order[i] = i
+		l.Branches[i] = t.branch(b, points)
+	}
+	sort.SliceStable(l.Branches, func(i, j int) bool { return l.Branches[i].before(&l.Branches[j]) })
+	return nil
+}
+
+// size returns the extent of the figure: what tolerances refer to.
+func (t *tracker) size(l *Locus) float64 {
+	lo, hi := complex(math.Inf(1), math.Inf(1)), complex(math.Inf(-1), math.Inf(-1))
+	put := func(x, y float64) {
+		lo = complex(min(real(lo), x), min(imag(lo), y))
+		hi = complex(max(real(hi), x), max(imag(hi), y))
+	}
+	roots := func(p poly.Poly) {
+		if found, err := marksOf(p); err == nil {
+			for _, r := range found {
+				x := t.plane.toX(r.Value)
+				put(real(x), imag(x))
+			}
+		}
+	}
+	roots(t.family.fixed)
+	roots(t.family.scaled)
+	if d := cmplx.Abs(hi - lo); d > 0 && !math.IsInf(d, 0) {
+		return d
+	}
+	for i := range t.chains {
+		c := &t.chains[i]
+		for _, end := range []tip{c.head, c.tail} {
+			if end.cell != nil && !end.cell.atInfinity {
+				put(real(end.cell.centre), imag(end.cell.centre))
+			}
+		}
+		for j := range c.knots {
+			put(c.knots[j].zx, c.knots[j].zy)
+		}
+	}
+	if d := cmplx.Abs(hi - lo); d > 0 && !math.IsInf(d, 0) {
+		return d
+	}
+	return 1
+}

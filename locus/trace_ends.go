@@ -1,0 +1,188 @@
+package locus
+
+import (
+	"math"
+	"math/cmplx"
+
+	"github.com/polewright/polewright/poly"
+)
+
+// farGain is where, in gains of the plane, the neighbourhood of κ = ±∞ is worth looking at.
+const farGain = 0x1p20
+
+// begin places the rows at the start of the walk.
+func (t *tracker) begin() error {
+	p := t.plane
+	at := t.family.fixed.Add(t.family.scaled.Scale(p.fromK(t.from)))
+	roots, err := at.Roots()
+	if err != nil {
+		return err
+	}
+	t.κ, t.limiting = t.from, -1
+	t.pencil.set(p, t.from)
+	var rows []row
+	var group []*cell
+	for _, root := range roots {
+		x := p.toX(root.Value)
+		if imag(x) < 0 {
+			continue
+		}
+		if root.Distinct > 1 {
+			return t.fail("different roots at the first gain are closer than float64 can part")
+		}
+		if root.Multiplicity > 1 {
+			c := p.multipleCell(x, t.from, root.Multiplicity, math.Ldexp(root.Radius, -p.stretch))
+			if c == nil {
+				return t.fail("a multiple root at the first gain cannot be told from its neighbours")
+			}
+			group = append(group, c)
+			continue
+		}
+		rows = append(rows, row{x: real(x), y: imag(x), chain: -1})
+	}
+	if at.Degree() < p.n {
+		c := p.dropCell()
+		if c == nil {
+			return t.fail("the roots near infinity cannot be told from the others")
+		}
+		c.gain, c.gainLow, c.slack = t.from, 0, 0
+		group = append(group, c)
+	}
+	for i := range rows {
+		r := &rows[i]
+		real := r.y == 0
+		owner, mirror := t.newBranch(t.from), -1
+		if !real {
+			mirror = t.newBranch(t.from)
+			// the lower one comes first, as in the order of roots
+			owner, mirror = mirror, owner
+		}
+		r.chain = t.newChain(real, owner, mirror, t.from, tip{})
+		near := math.Inf(1)
+		for j := range rows {
+			if j != i {
+				near = min(near, math.Hypot(r.x-rows[j].x, r.y-rows[j].y))
+			}
+		}
+		if !real {
+			near = min(near, 2*r.y)
+		}
+		for _, c := range group {
+			if !c.atInfinity {
+				near = min(near, cmplx.Abs(c.local(complex(r.x, r.y))))
+			}
+		}
+		if math.IsInf(near, 1) {
+			near = math.Hypot(r.x, r.y) + 1
+		}
+		if !t.correct(r, near) {
+			return t.fail("a root at the first gain cannot be improved")
+		}
+	}
+	reach := math.Inf(1)
+	if len(rows) > 0 {
+		reach = t.certify(rows, obstacles(group))
+		if reach == 0 {
+			return t.fail("the roots at the first gain cannot be told apart")
+		}
+	}
+	if len(group) == 0 {
+		t.commit(t.from, reach, rows)
+		return nil
+	}
+	for _, c := range group {
+		reach = min(reach, c.width)
+	}
+	t.rows = rows
+	members := make([]int, len(rows))
+	for i := range members {
+		members[i] = -1
+	}
+	exit := min(t.from+0.98*reach, t.end)
+	return t.leave(group, members, nil, rows, t.from, exit)
+}
+
+// findEnds makes the cells about κ = ±∞ and returns the gain of the plane beyond which they
+// explain all roots.
+func (t *tracker) findEnds() (float64, error) {
+	p := t.plane
+	zeros, err := t.family.scaled.Roots()
+	if err != nil {
+		return 0, err
+	}
+	width := math.Inf(1)
+	add := func(c *cell) error {
+		if c == nil {
+			return t.fail("the ends of the branches at infinite gain cannot be told apart")
+		}
+		t.endCells = append(t.endCells, c)
+		width = min(width, c.width)
+		return nil
+	}
+	for _, z := range zeros {
+		x := p.toX(z.Value)
+		if imag(x) < 0 {
+			continue
+		}
+		if z.Distinct > 1 {
+			return 0, t.fail("different zeros are closer than float64 can part")
+		}
+		if err := add(p.endCell(x, z.Multiplicity, math.Ldexp(z.Radius, -p.stretch))); err != nil {
+			return 0, err
+		}
+	}
+	if p.escaping > 0 {
+		if err := add(p.escapeCell()); err != nil {
+			return 0, err
+		}
+	}
+	// Off the border, and where the members are well within their discs.
+	return 2 / width, nil
+}
+
+// tips matches the rows with the end cells, one for each.
+func (t *tracker) tips() ([]tip, bool) {
+	// The rows may be much nearer to their ends than to each other.
+	t.pencil.set(t.plane, t.κ)
+	for range 2 {
+		for i := range t.rows {
+			r := &t.rows[i]
+			r.x, r.y = r.zx, r.zy
+			if !t.correct(r, r.near) {
+				return nil, false
+			}
+		}
+	}
+	if t.certify(t.rows, nil) == 0 {
+		return nil, false
+	}
+	tips := make([]tip, len(t.rows))
+	count := make(map[tip]bool)
+	for i := range t.rows {
+		r := &t.rows[i]
+		for _, c := range t.endCells {
+			l, ok := c.place(r, t.κ)
+			if !ok {
+				continue
+			}
+			if count[tip{c, l}] {
+				return nil, false
+			}
+			tips[i] = tip{c, l}
+			count[tips[i]] = true
+			break
+		}
+		if tips[i].cell == nil {
+			return nil, false
+		}
+	}
+	return tips, true
+}
+
+// marksOf returns the distinct roots of p with multiplicities.
+func marksOf(p poly.Poly) ([]poly.Root, error) {
+	if p.Degree() < 1 {
+		return nil, nil
+	}
+	return p.Roots()
+}

@@ -1,0 +1,134 @@
+package locus
+
+import (
+	"math"
+	"math/cmplx"
+	"sort"
+)
+
+// at returns where the root of a chain is at a gain of the plane.
+func (c *chain) at(p *plane, κ float64) (complex128, bool) {
+	if v := c.tail.cell; v != nil && (len(c.knots) == 0 || κ > c.knots[len(c.knots)-1].upto) {
+		return c.tail.at(p, κ)
+	}
+	if v := c.head.cell; v != nil && (len(c.knots) == 0 || κ < c.knots[0].from) {
+		return c.head.at(p, κ)
+	}
+	i := sort.Search(len(c.knots), func(i int) bool { return c.knots[i].from > κ }) - 1
+	if i < 0 {
+		return 0, false
+	}
+	q := newPencil(p)
+	q.set(p, κ)
+	x, ok := c.near(q, i, κ)
+	if !ok {
+		return 0, false
+	}
+	return p.polish(x, κ), true
+}
+
+// near computes the root at a gain that knot i covers, by Newton's method, and makes sure
+// that it is in the disc of the knot. The pencil q stands at that gain.
+func (c *chain) near(q *pencil, i int, κ float64) (complex128, bool) {
+	k := &c.knots[i]
+	// Hermite's cubic to the next knot, or the tangent.
+	d := κ - k.κ
+	x, y := k.zx+k.vx*d, k.zy+k.vy*d
+	if i+1 < len(c.knots) && d > 0 {
+		n := &c.knots[i+1]
+		h := n.κ - k.κ
+		x = hermite(k.zx, k.vx, n.zx, n.vx, d/h, h)
+		y = hermite(k.zy, k.vy, n.zy, n.vy, d/h, h)
+	}
+	if c.real {
+		y = 0
+	}
+	inside := func(x, y float64) bool { return math.Hypot(x-k.x, y-k.y) < k.radius }
+	if !inside(x, y) {
+		x, y = k.x, k.y
+	}
+	var v value
+	for range 50 {
+		q.at(x, y, &v)
+		dx, dy, ok := v.newton()
+		if !ok {
+			return 0, false
+		}
+		if c.real {
+			dy = 0
+		}
+		for range 20 {
+			if inside(x+dx, y+dy) {
+				break
+			}
+			dx, dy = dx/2, dy/2
+		}
+		x, y = x+dx, y+dy
+		if size := math.Abs(dx) + math.Abs(dy); size <= 1e-8*k.radius || size <= 4*unitRoundoff*(math.Abs(x)+math.Abs(y)) {
+			// One more costs little and gives what float64 has.
+			q.at(x, y, &v)
+			if dx, dy, ok := v.newton(); ok && inside(x+dx, y+dy) {
+				x += dx
+				if !c.real {
+					y += dy
+				}
+			}
+			// n·|F/F′| about the point holds a root; being inside the disc of the knot it is this one.
+			n := float64(len(q.f) - 1)
+			miss := n * (math.Hypot(v.re, v.im) + v.errF) / math.Hypot(v.dRe, v.dIm)
+			return complex(x, y), math.Hypot(x-k.x, y-k.y)+miss < k.radius*(1+1e-9)
+		}
+	}
+	return 0, false
+}
+
+// hermite returns the cubic with values z, p and derivatives v, q at the ends of an interval
+// of length h, at t of it.
+func hermite(z, v, p, q, t, h float64) float64 {
+	u := 1 - t
+	return u*u*(z*(1+2*t)+v*h*t) + t*t*(p*(1+2*u)-q*h*u)
+}
+
+// at returns where the root is that a tip describes.
+func (e tip) at(p *plane, κ float64) (complex128, bool) {
+	c := e.cell
+	if κ == c.gain || c.reciprocal && math.IsInf(κ, 0) {
+		return c.centre, !c.atInfinity
+	}
+	h, ok := c.solve(e.sector, c.offset(κ))
+	if !ok {
+		return 0, false
+	}
+	x := c.point(h)
+	if c.reciprocal {
+		κ = 1 / c.offset(κ)
+	}
+	return p.polish(x, κ), true
+}
+
+// polish takes the rounding errors of float64 out of a root: Newton's method with F in twice
+// the precision. It keeps a real root real.
+func (p *plane) polish(x complex128, κ float64) complex128 {
+	for range 3 {
+		a := precise(p.a, p.tailA, real(x), imag(x))
+		b := precise(p.b, p.tailB, real(x), imag(x))
+		f := a.plus(b.timesReal(twofold{κ, 0})).value()
+		var d, y complex128
+		for i := p.n; i >= 0; i-- {
+			d = d*x + y
+			y = y*x + complex(p.a[i]+float64(κ*p.b[i]), 0)
+		}
+		step := f / d
+		if cmplx.IsNaN(step) || cmplx.IsInf(step) || cmplx.Abs(step) > 1e-4*cmplx.Abs(x) && cmplx.Abs(x) > 0 {
+			return x
+		}
+		if imag(x) == 0 {
+			step = complex(real(step), 0)
+		}
+		x -= step
+		if cmplx.Abs(step) <= unitRoundoff*cmplx.Abs(x) {
+			break
+		}
+	}
+	return x
+}
