@@ -266,7 +266,7 @@ func (t *tracker) correct(r *row, near float64) bool {
 			r.zy = 0
 		}
 		size := math.Abs(dx) + math.Abs(dy)
-		if size <= 1e-6*near {
+		if size <= 1e-6*near || size*(math.Abs(r.v.dRe)+math.Abs(r.v.dIm)) <= r.v.errF {
 			return r.y == 0 || r.zy > 0
 		}
 		if size > near {
