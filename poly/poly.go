@@ -169,6 +169,22 @@ func fromScaled(x scaled) Poly {
 	return p
 }
 
+// low returns what c lacks to the exact coefficients, rounded to nearest.
+func (x scaled) low(c []float64) []float64 {
+	lo := make([]float64, len(c))
+	for i, n := range x.integers {
+		if math.IsInf(c[i], 0) {
+			continue // of no use, and found out later
+		}
+		f := new(big.Float).SetInt(n)
+		f.SetMantExp(f, x.exponent)
+		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(c[i])
+		rest.Sub(f, rest)
+		lo[i], _ = rest.Float64()
+	}
+	return lo
+}
+
 // nearest returns the float64 nearest to n·2^e and whether it is exactly that.
 func nearest(n *big.Int, e int) (float64, bool) {
 	if n.Sign() == 0 {

@@ -46,22 +46,25 @@ type Root struct {
 // number is a root) and beyond [MaxDegree], and a [*RangeError] for a root that is no
 // float64, being too large or, without being zero, too small.
 func (p Poly) Roots(opt ...Option) ([]Root, error) {
-	const call = "poly.Poly.Roots"
+	var s Solver
+	roots, err := s.find(nil, p, "poly.Poly.Roots")
+	if err != nil {
+		return nil, err
+	}
+	return roots, nil
+}
+
+// solvable returns the error of a polynomial whose roots cannot be had.
+func (p Poly) solvable(call string) error {
 	switch {
 	case p.err != nil:
-		return nil, p.err
+		return p.err
 	case len(p.c) == 0:
-		return nil, &ArgumentError{Call: call, Argument: "p", Reason: "every number is a root of the zero polynomial"}
-	case len(p.c) == 1:
-		return nil, nil
+		return &ArgumentError{Call: call, Argument: "p", Reason: "every number is a root of the zero polynomial"}
+	case p.Degree() > MaxDegree && len(p.given) == 0:
+		return &ArgumentError{Call: call, Argument: "p", Reason: fmt.Sprintf("degree %d; at most %d", p.Degree(), MaxDegree)}
 	}
-	if given, ok := p.GivenRoots(); ok {
-		return groupGiven(given), nil
-	}
-	if p.Degree() > MaxDegree {
-		return nil, &ArgumentError{Call: call, Argument: "p", Reason: fmt.Sprintf("degree %d; at most %d", p.Degree(), MaxDegree)}
-	}
-	return p.rootsExact(call)
+	return nil
 }
 
 // groupGiven makes the answer out of roots that are known exactly.

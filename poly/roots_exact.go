@@ -1,6 +1,10 @@
 package poly
 
-import "math/big"
+import (
+	"math/big"
+
+	"github.com/polewright/polewright/internal/exact"
+)
 
 // The last stage works on integers and math/big. It splits the polynomial into square-free
 // factors, moves points towards the roots of each by the Ehrlich–Aberth iteration, proves
@@ -32,9 +36,9 @@ func (p Poly) rootsExact(call string) ([]Root, error) {
 		return roots, nil
 	}
 	var found []location
-	for _, f := range squareFree(x.integers[zeros:]) {
-		for _, part := range splitImaginary(f.factor) {
-			ls, err := locate(call, part, f.multiplicity)
+	for _, f := range exact.New(x.integers[zeros:], 0).SquareFree() {
+		for _, part := range splitImaginary(f.Poly) {
+			ls, err := locate(call, part, f.Multiplicity)
 			if err != nil {
 				return nil, err
 			}
@@ -47,20 +51,23 @@ func (p Poly) rootsExact(call string) ([]Root, error) {
 // splitImaginary splits a square-free polynomial, not zero at 0, into gcd(p(s), p(-s)) and
 // the rest. The roots of the first are symmetric about the imaginary axis, and all roots on
 // that axis are among them.
-func splitImaginary(a []*big.Int) [][]*big.Int {
+func splitImaginary(p exact.Poly) [][]*big.Int {
+	a, _ := p.Integers()
 	mirror := make([]*big.Int, len(a))
 	for i, n := range a {
-		mirror[i] = new(big.Int).Set(n)
+		mirror[i] = n
 		if i%2 == 1 {
-			mirror[i].Neg(mirror[i])
+			mirror[i] = new(big.Int).Neg(n)
 		}
 	}
-	g := gcd(a, mirror)
-	switch len(g) {
-	case 1, len(a):
+	g := exact.GCD(p, exact.New(mirror, 0))
+	if g.Degree() == 0 || g.Degree() == p.Degree() {
 		return [][]*big.Int{a}
 	}
-	return [][]*big.Int{g, quotient(a, g)}
+	rest, _ := p.Divide(g)
+	b, _ := g.Integers()
+	c, _ := rest.Integers()
+	return [][]*big.Int{b, c}
 }
 
 // symmetric reports whether p(-s) = ±p(s).

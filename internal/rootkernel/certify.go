@@ -1,0 +1,266 @@
+package rootkernel
+
+import "math"
+
+// u is half the distance from 1 to the next float64.
+const u = 0x1p-53
+
+// A Disc holds exactly one root, and neither another disc nor the conjugate of one meets it.
+// It stands for itself and its conjugate unless Y is 0: then its root is real.
+type Disc struct {
+	X, Y         float64 // the centre
+	Radius       float64
+	HalfX, HalfY float64 // bounds on the distance of the root from the centre, part by part
+}
+
+// A Failure says what Certify could not do.
+type Failure int8
+
+const (
+	None      Failure = iota
+	Imprecise         // a disc came out too wide, or two of them meet
+	OnAxis            // the real part of a root may be zero
+)
+
+// Certify moves the points once or twice more, with the polynomial evaluated in twice the
+// working precision, and proves a disc about each. It appends the discs to dst, the centres
+// by ascending X, then Y. The discs hold one root each, by this theorem: the disc of radius
+// n·|p(z)/p′(z)| about any z holds a root (P. Henrici, Applied and Computational Complex
+// Analysis, vol. 1, Wiley 1974, Theorem 6.4e); n disjoint ones hold all n roots, one each,
+// and one that is its own mirror image holds a real root.
+//
+// With origin, a disc of radius 0 at 0 stands among them for roots there that the
+// polynomial was divided by.
+func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
+	start := len(dst)
+	if origin {
+		dst = append(dst, Disc{})
+	}
+	for i := 0; i < k.pairs; i++ {
+		d, failure := k.certifyPair(k.x[i], k.y[i])
+		if failure != None {
+			return dst[:start], failure
+		}
+		dst = append(dst, d)
+	}
+	for i := 0; i < k.reals; i++ {
+		d, failure := k.certifyReal(k.r[i])
+		if failure != None {
+			return dst[:start], failure
+		}
+		dst = append(dst, d)
+	}
+	discs := dst[start:]
+	Sort(discs)
+	if !Disjoint(discs) {
+		return dst[:start], Imprecise
+	}
+	return dst, None
+}
+
+// Sort orders discs by X, then Y.
+func Sort(discs []Disc) {
+	for i := 1; i < len(discs); i++ {
+		d := discs[i]
+		j := i
+		for ; j > 0 && (discs[j-1].X > d.X || discs[j-1].X == d.X && discs[j-1].Y > d.Y); j-- {
+			discs[j] = discs[j-1]
+		}
+		discs[j] = d
+	}
+}
+
+// Disjoint reports whether sorted discs, and their conjugates, have no common point.
+func Disjoint(discs []Disc) bool {
+	largest := 0.0
+	for _, d := range discs {
+		if d.Y != 0 && !(d.Y > d.Radius) {
+			return false
+		}
+		largest = max(largest, d.Radius)
+	}
+	for i := range discs {
+		a := &discs[i]
+		reach := (a.Radius + largest) * (1 + 0x1p-50)
+		for j := i + 1; j < len(discs); j++ {
+			b := &discs[j]
+			dx, dy := b.X-a.X, b.Y-a.Y
+			if dx > reach {
+				break
+			}
+			if sum := (a.Radius + b.Radius) * (1 + 0x1p-50); math.Abs(dy) > sum || dx > sum {
+				continue
+			}
+			if math.Hypot(dx, dy) <= (a.Radius+b.Radius)*(1+0x1p-50) {
+				return false
+			}
+		}
+	}
+	return true
+}
+
+// The error bounds of the evaluation. With exact coefficients c + lo and m = Σ|cᵢ|·|z|ⁱ:
+//
+// Each step of Horner's rule y ← y·z + c errs by an ε that the transformations of Knuth
+// and (by fused multiply-add) of the product give exactly, |ε| ≤ 3u·(|y||z| + |c|) for a
+// complex z and up to terms in u² which the factors below have room for; p(z) is the last y
+// plus Σ ε·zⁱ (S. Graillat, V. Ménissier-Morain, Accurate summation, dot product and
+// polynomial evaluation in complex floating point arithmetic, Information and Computation
+// 216 (2012) 57–71). Since |y| ≤ m/|z|ⁱ, Σ|ε||z|ⁱ ≤ 6(n+1)·u·m; the parts of the ε
+// that are added up to it come to 8(n+1)·u·m at most. That sum is evaluated in float64
+// with a relative error of 4(n+2)·u per term, whether fused or not. So the compensated
+// value errs by less than 32(n+2)²·u²·m = 2⁻¹⁰¹(n+2)²·m, besides its own last rounding.
+//
+// The derivative, by Horner's rule on the same y, errs by 8(n+1)·u·Σ i|cᵢ||z|ⁱ⁻¹ at
+// most, and that sum is at most n·m/|z|.
+//
+// Moving to z + h, with τ = |h|/|z| ≤ 2⁻²⁰/n: by Taylor, p(z+h) differs from p + h·p′ by at
+// most n²·m·τ²/2·1.01, and p′(z+h) from p′ by at most n²·m/|z|·τ·1.01.
+//
+// floor joins m at each step: where products are so small that their losses are no float64
+// any more, m grows beyond what matters to it and the discs come out too wide, not wrong.
+const floor = 0x1p-960
+
+// discRadius returns the radius of a disc about z + h that holds a root, from |z|, the
+// compensated |p(z)|, |p′(z)| and m; it is infinite where nothing can be said. h is -p/p′
+// rounded (which adds 10u·|p|).
+func (k *Kernel) discRadius(r, p, d, m, tau float64) float64 {
+	n := float64(k.n)
+	if !(tau < 0x1p-20/n) {
+		return math.Inf(1)
+	}
+	n2 := (n + 2) * (n + 2) * 1.02
+	slope := d - n2*(m/r)*(10*u+tau)
+	if !(slope > d/2) {
+		return math.Inf(1)
+	}
+	residue := n2*m*(0x1p-101+tau*(tau/2+10*u)) + 10*u*p
+	return n * residue / slope * 1.01
+}
+
+// attempts limits the evaluations for one point.
+const attempts = 3
+
+func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
+	failure := Imprecise
+	for range attempts {
+		square := float64(x*x) + float64(y*y)
+		if !(square > 0x1p-900 && square < 0x1p900) {
+			return Disc{}, Imprecise
+		}
+		r := math.Sqrt(square)
+		pr, pi, dr, di, m := k.compensated(x, y, r)
+		d2 := dr*dr + di*di
+		t := 1 / d2
+		hx, hy := -(pr*dr+pi*di)*t, -(pi*dr-pr*di)*t
+		inverse := 1 / r
+		h := math.Sqrt(hx*hx + hy*hy)
+		d := math.Sqrt(d2)
+		rho := k.discRadius(r, h*d, d, m, h*inverse)
+		X, Y := x+hx, y+hy
+		if rho <= 0x1p-54*r && rho <= 0x1p-48*math.Abs(Y) && Y > 0 {
+			if rho <= 0x1p-48*math.Abs(X) {
+				lostX, lostY := (x-X)+hx, (y-Y)+hy
+				const up = 1 + 0x1p-48
+				return Disc{
+					X: X, Y: Y,
+					Radius: (math.Sqrt(lostX*lostX+lostY*lostY) + rho) * up,
+					HalfX:  (math.Abs(lostX) + rho) * up,
+					HalfY:  (math.Abs(lostY) + rho) * up,
+				}, None
+			}
+			failure = OnAxis
+		}
+		x, y = X, Y
+	}
+	return Disc{}, failure
+}
+
+func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
+	for range attempts {
+		r := math.Abs(x)
+		if !(r > 0x1p-450 && r < 0x1p450) {
+			return Disc{}, Imprecise
+		}
+		p, d, m := k.compensatedReal(x, r)
+		h := -p / d
+		rho := k.discRadius(r, math.Abs(p), math.Abs(d), m, math.Abs(h)/r)
+		X := x + h
+		if rho <= 0x1p-54*r {
+			half := (math.Abs((x-X)+h) + rho) * (1 + 0x1p-48)
+			return Disc{X: X, Radius: half, HalfX: half}, None
+		}
+		x = X
+	}
+	return Disc{}, Imprecise
+}
+
+// compensated returns p(z), p′(z) and m, as above.
+func (k *Kernel) compensated(x, y, r float64) (pr, pi, dr, di, m float64) {
+	var er, ei float64
+	n := k.n
+	c := k.c[:n+1]
+	mag := k.mag[:n+1]
+	lo := k.lo
+	pr = c[n]
+	m = mag[n] + floor
+	if lo != nil {
+		er = lo[n]
+	}
+	for i := n - 1; i >= 0; i-- {
+		dr, di = dr*x-di*y+pr, dr*y+di*x+pi
+		m = m*r + mag[i] + floor
+
+		p1, p2 := float64(pr*x), float64(pi*y)
+		p3, p4 := float64(pr*y), float64(pi*x)
+		e1, e2 := math.FMA(pr, x, -p1), math.FMA(pi, y, -p2)
+		e3, e4 := math.FMA(pr, y, -p3), math.FMA(pi, x, -p4)
+
+		s := p1 - p2
+		t := s - p1
+		f1 := (p1 - (s - t)) - (p2 + t)
+		q := s + c[i]
+		t = q - s
+		f2 := (s - (q - t)) + (c[i] - t)
+		w := p3 + p4
+		t = w - p3
+		f3 := (p3 - (w - t)) + (p4 - t)
+		pr, pi = q, w
+
+		local := (e1 - e2) + (f1 + f2)
+		if lo != nil {
+			local += lo[i]
+		}
+		er, ei = er*x-ei*y+local, er*y+ei*x+((e3+e4)+f3)
+	}
+	return pr + er, pi + ei, dr, di, m
+}
+
+// compensatedReal does the same on the real axis.
+func (k *Kernel) compensatedReal(x, r float64) (p, d, m float64) {
+	var e float64
+	n := k.n
+	c := k.c[:n+1]
+	mag := k.mag[:n+1]
+	lo := k.lo
+	p = c[n]
+	m = mag[n] + floor
+	if lo != nil {
+		e = lo[n]
+	}
+	for i := n - 1; i >= 0; i-- {
+		d = d*x + p
+		m = m*r + mag[i] + floor
+		p1 := float64(p * x)
+		e1 := math.FMA(p, x, -p1)
+		q := p1 + c[i]
+		t := q - p1
+		local := e1 + ((p1 - (q - t)) + (c[i] - t))
+		if lo != nil {
+			local += lo[i]
+		}
+		e = e*x + local
+		p = q
+	}
+	return p + e, d, m
+}

@@ -1,0 +1,353 @@
+package rootkernel
+
+import "math"
+
+// The iteration of Ehrlich and Aberth: each point moves by Newton's correction of
+// p(z)/∏(z - zⱼ), the product over all other points (O. Aberth, Iteration methods for finding
+// all zeros of a polynomial simultaneously, Math. Comp. 27 (1973) 339–344). It promises
+// nothing; Certify does.
+
+// settled says when a correction is so small, beside the point and beside its distance from
+// the others, that the cubic convergence of the iteration makes the next one negligible.
+const settled = 0x1p-17
+
+// Iterate moves the points until all are settled and reports whether they are, within so
+// many sweeps.
+func (k *Kernel) Iterate(sweeps int) bool {
+	for ; sweeps > 0; sweeps-- {
+		if k.sweep() {
+			return true
+		}
+	}
+	return false
+}
+
+// sweep moves every restless point once, and reports whether none is left.
+func (k *Kernel) sweep() bool {
+	all := true
+	// Backwards, so that what turns from pair into real points or back is met once.
+	for i := k.pairs - 1; i >= 0; i-- {
+		if k.restless[i] != 0 {
+			all = k.movePair(i) && all
+		}
+	}
+	// Neighbours among the restless real points move together; if their number is odd, the
+	// one moves alone that leaves the others closest.
+	count := 0
+	for i := 0; i < k.reals; i++ {
+		if k.restlessR[i] != 0 {
+			count++
+		}
+	}
+	if count == 0 {
+		return all
+	}
+	lone, shifted := -1, k.shift
+	if count%2 == 1 {
+		lone = k.loneReal(k.shift)
+		shifted = false
+	}
+	k.shift = !k.shift
+	waiting, first, left := -1, true, count+1
+	for i := 0; i < k.reals; i++ {
+		if k.restlessR[i] == 0 {
+			continue
+		}
+		left--
+		switch {
+		case i == lone:
+			all = k.moveLone(i) && all
+		case shifted && waiting < 0 && (first || left == 1):
+			all = k.moveLone(i) && all
+			first = false
+		case waiting < 0:
+			waiting = i
+		default:
+			removed, still := k.moveReals(waiting, i)
+			all = all && still
+			if removed {
+				i -= 2
+				if lone > i {
+					lone -= 2
+				}
+			}
+			waiting = -1
+		}
+	}
+	k.sortReals()
+	return all
+}
+
+// loneReal returns which of an odd number of restless real points leaves the gaps between
+// the paired others smallest in sum.
+func (k *Kernel) loneReal(ends bool) int {
+	// The sum of the gaps of pairs (1,2), (3,4), … before the lone one and of those after it:
+	// moving the lone one two places on replaces one gap by the gap before it.
+	best, at := math.Inf(1), -1
+	sum := 0.0
+	a, b := -1, -1 // the last two
+	place := 0
+	for i := 0; i < k.reals; i++ {
+		if k.restlessR[i] == 0 {
+			continue
+		}
+		if place%2 == 0 {
+			if place > 0 {
+				// The lone one was a; now it is i: the pair (b, i) is replaced by (a, b).
+				sum += (k.r[b] - k.r[a]) - (k.r[i] - k.r[b])
+			}
+			if sum < best {
+				best, at = sum, i
+			}
+		}
+		a, b = b, i
+		place++
+	}
+	return at
+}
+
+// sortReals restores the order after a sweep; it was nearly sorted before.
+func (k *Kernel) sortReals() {
+	for i := 1; i < k.reals; i++ {
+		for j := i; j > 0 && k.r[j-1] > k.r[j]; j-- {
+			k.r[j-1], k.r[j] = k.r[j], k.r[j-1]
+			k.restlessR[j-1], k.restlessR[j] = k.restlessR[j], k.restlessR[j-1]
+		}
+	}
+}
+
+// movePair moves a conjugate pair z, z̄ by the correction w of z. To first order in w the
+// quadratic (s - z)(s - z̄) changes by the real linear function that is (z - z̄)·w at z; the
+// new centre is x - Re w and the new discriminant |w|² - (y - Im w)².
+func (k *Kernel) movePair(i int) bool {
+	x, y := k.x[i], k.y[i]
+	pr, pi, dr, di := k.quadratic(x, y)
+	if pr == 0 && pi == 0 {
+		k.restless[i] = 0
+		return true
+	}
+	sr, si, gr, gi := k.othersComplex(x, y, i)
+	fr, fi := pr*gr-pi*gi, pr*gi+pi*gr
+	if t := fi / (y * (fr*fr + fi*fi)); t-t == 0 {
+		sr += t * fr
+		si -= t * fi
+	} else {
+		si -= 0.5 / y // out of range: the plain term 1/(z - z̄)
+	}
+	// w = p/(d - p·s)
+	ar, ai := dr-(pr*sr-pi*si), di-(pr*si+pi*sr)
+	t := 1 / (ar*ar + ai*ai)
+	wr, wi := (pr*ar+pi*ai)*t, (pi*ar-pr*ai)*t
+	size := wr*wr + wi*wi
+	rest := y - wi
+	if size < 0x1p-10*y*y {
+		k.x[i], k.y[i], k.yy[i] = x-wr, rest, rest*rest
+		still := size*(sr*sr+si*si) < settled*settled && size < settled*settled*(x*x+y*y)
+		k.restless[i] = flag(!still)
+		return still
+	}
+	switch discriminant := size - rest*rest; {
+	case discriminant < 0:
+		k.x[i], k.y[i], k.yy[i] = x-wr, math.Sqrt(-discriminant), -discriminant
+	case discriminant >= 0:
+		h := math.Sqrt(discriminant)
+		k.removePair(i)
+		k.addReal(x-wr-h, 1)
+		k.addReal(x-wr+h, 1)
+	}
+	return false // also if it is NaN: stay, and fail in the end
+}
+
+// moveReals moves two real points by their corrections w₁, w₂. To first order the quadratic
+// changes by the linear function that takes (x₁ - x₂)·w₁ at x₁ and (x₂ - x₁)·w₂ at x₂; the
+// new centre is that of the moved points, the new discriminant that of the moved points
+// plus w₁·w₂.
+func (k *Kernel) moveReals(i, j int) (removed, still bool) {
+	x1, x2 := k.r[i], k.r[j]
+	gap := x1 - x2
+	if gap == 0 {
+		x1 += 0x1p-20 * x1
+		gap = x1 - x2
+	}
+	p1, d1, p2, d2 := k.horner2(x1, x2)
+	s1, s2, ratio := k.othersReal2(x1, x2, i, j)
+	inverse := 1 / gap
+	f := p2 / p1 * ratio // f(x₂)/f(x₁)
+	if f-f == 0 && f != 0 {
+		s1 += (1 - f) * inverse
+		s2 += (1/f - 1) * inverse
+	} else {
+		s1 += inverse
+		s2 -= inverse
+	}
+	var w1, w2 float64
+	if p1 != 0 {
+		w1 = p1 / (d1 - p1*s1)
+	}
+	if p2 != 0 {
+		w2 = p2 / (d2 - p2*s2)
+	}
+	half := (gap - w1 + w2) / 2
+	cross := w1 * w2
+	if math.Abs(cross) < 0x1p-10*half*half {
+		k.r[i], k.r[j] = x1-w1, x2-w2
+		w1, w2 = math.Abs(w1), math.Abs(w2)
+		still1 := w1*math.Abs(s1) < settled && w1 < settled*math.Abs(x1)
+		still2 := w2*math.Abs(s2) < settled && w2 < settled*math.Abs(x2)
+		k.restlessR[i], k.restlessR[j] = flag(!still1), flag(!still2)
+		return false, still1 && still2
+	}
+	centre := (x1 - w1 + x2 - w2) / 2
+	discriminant := half*half + cross
+	if discriminant < 0 {
+		// Move j down beside i, then drop both.
+		for ; j > i+1; j-- {
+			k.r[j], k.restlessR[j] = k.r[j-1], k.restlessR[j-1]
+		}
+		k.removeReals(i)
+		k.addPair(centre, math.Sqrt(-discriminant))
+		return true, false
+	}
+	h := math.Sqrt(discriminant)
+	k.r[i], k.r[j] = centre-h, centre+h
+	return false, false
+}
+
+// moveLone moves a real point by itself.
+func (k *Kernel) moveLone(i int) bool {
+	x := k.r[i]
+	p, d := k.horner(x)
+	if p == 0 {
+		k.restlessR[i] = 0
+		return true
+	}
+	s := k.othersReal(x, i)
+	w := p / (d - p*s)
+	k.r[i] = x - w
+	w = math.Abs(w)
+	still := w*math.Abs(s) < settled && w < settled*math.Abs(x)
+	k.restlessR[i] = flag(!still)
+	return still
+}
+
+func flag(b bool) float64 {
+	if b {
+		return 1
+	}
+	return 0
+}
+
+// horner returns p(x) and p′(x).
+func (k *Kernel) horner(x float64) (p, d float64) {
+	c := k.c
+	for i := len(c) - 1; i >= 0; i-- {
+		d = d*x + p
+		p = p*x + c[i]
+	}
+	return p, d
+}
+
+// horner2 does two at once: the processor waits for neither.
+func (k *Kernel) horner2(x1, x2 float64) (p1, d1, p2, d2 float64) {
+	c := k.c
+	for i := len(c) - 1; i >= 0; i-- {
+		d1 = d1*x1 + p1
+		d2 = d2*x2 + p2
+		p1 = p1*x1 + c[i]
+		p2 = p2*x2 + c[i]
+	}
+	return p1, d1, p2, d2
+}
+
+// quadratic returns p(z) and p′(z) from the remainders of division by the real quadratic
+// s² - 2x·s + |z|². Digits are lost near the real axis; the proof does not rest on it.
+func (k *Kernel) quadratic(x, y float64) (pr, pi, dr, di float64) {
+	u, v := 2*x, -(x*x + y*y)
+	c := k.c
+	// b: quotient and remainder of p; e: those of the quotient.
+	b1 := c[len(c)-1]
+	b0 := c[len(c)-2] + u*b1
+	var e1, e0 float64
+	e0 = b1
+	for i := len(c) - 3; i >= 1; i-- {
+		b0, b1 = (c[i]+v*b1)+u*b0, b0
+		e0, e1 = (b1+v*e1)+u*e0, e0
+	}
+	b0, b1 = (c[0]+v*b1)+u*b0, b0
+	pr, pi = b0-x*b1, y*b1
+	qr, qi := e0-x*e1, y*e1
+	return pr, pi, b1 - 2*y*qi, 2 * y * qr
+}
+
+// othersComplex returns Σ 1/(z - zⱼ) over the real points and all pairs but one.
+func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) {
+	gr = 1
+	xs := k.x[:k.pairs]
+	yys := k.yy[:len(xs)]
+	y2 := y * y
+	for j := range xs {
+		if j == skip {
+			continue
+		}
+		t := x - xs[j]
+		qr := t*t + (yys[j] - y2)
+		qi := 2 * y * t
+		inverse := 1 / (qr*qr + qi*qi)
+		vr, vi := qr*inverse, qi*inverse
+		sr += 2 * (t*vr + y*vi)
+		si += 2 * (y*vr - t*vi)
+		gr, gi = gr*vr+gi*vi, gi*vr-gr*vi
+	}
+	for _, r := range k.r[:k.reals] {
+		t := x - r
+		inverse := 1 / (t*t + y2)
+		vr, vi := t*inverse, y*inverse
+		sr += vr
+		si -= vi
+		gr, gi = gr*vr+gi*vi, gi*vr-gr*vi
+	}
+	return sr, si, gr, gi
+}
+
+// othersReal returns Σ 1/(x - zⱼ) over the pairs and all real points but one.
+func (k *Kernel) othersReal(x float64, skip int) (s float64) {
+	xs := k.x[:k.pairs]
+	yys := k.yy[:len(xs)]
+	for j := range xs {
+		t := x - xs[j]
+		s += 2 * t / (t*t + yys[j])
+	}
+	for j, r := range k.r[:k.reals] {
+		if j != skip {
+			s += 1 / (x - r)
+		}
+	}
+	return s
+}
+
+// othersReal2 does two at once, and skips both. ratio is ∏(x₁ - zⱼ)/∏(x₂ - zⱼ).
+func (k *Kernel) othersReal2(x1, x2 float64, skip1, skip2 int) (s1, s2, ratio float64) {
+	xs := k.x[:k.pairs]
+	yys := k.yy[:len(xs)]
+	ratio = 1
+	for j := range xs {
+		t1, t2 := x1-xs[j], x2-xs[j]
+		q1, q2 := t1*t1+yys[j], t2*t2+yys[j]
+		inverse := 1 / (q1 * q2)
+		v2 := q1 * inverse
+		s1 += 2 * t1 * (q2 * inverse)
+		s2 += 2 * t2 * v2
+		ratio *= q1 * v2
+	}
+	for j, r := range k.r[:k.reals] {
+		if j != skip1 && j != skip2 {
+			t1, t2 := x1-r, x2-r
+			inverse := 1 / (t1 * t2)
+			v2 := t1 * inverse
+			s1 += t2 * inverse
+			s2 += v2
+			ratio *= t1 * v2
+		}
+	}
+	return s1, s2, ratio
+}

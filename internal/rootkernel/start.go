@@ -1,0 +1,98 @@
+package rootkernel
+
+import "math"
+
+// roughLog returns log₂ x within 0.09, for normal x > 0: the exponent, and the fraction
+// taken as linear.
+func roughLog(x float64) float64 {
+	return float64(int64(math.Float64bits(x)))*0x1p-52 - 1023
+}
+
+// roughPower is the inverse of roughLog within its range, else 0 or a huge number.
+func roughPower(l float64) float64 {
+	if l < -1022 {
+		return 0x1p-1022
+	}
+	if l > 1023 {
+		return 0x1p1023
+	}
+	return math.Float64frombits(uint64((l + 1023) * 0x1p52))
+}
+
+// polygon finds the upper convex hull of the points (i, log₂|cᵢ|): the slopes of its edges
+// are the moduli of the roots, roughly (D. A. Bini, Numerical computation of polynomial
+// zeros by means of Aberth's method, Numerical Algorithms 13 (1996) 179–200, section 2).
+func (k *Kernel) polygon(hull []int) []int {
+	logs := k.logs[:len(k.mag)]
+	hull = hull[:0]
+	for i, m := range k.mag {
+		if m == 0 {
+			continue
+		}
+		l := roughLog(m)
+		logs[i] = l
+		for len(hull) >= 2 {
+			a, b := hull[len(hull)-2], hull[len(hull)-1]
+			if (logs[b]-logs[a])*float64(i-a) > (l-logs[a])*float64(b-a) {
+				break
+			}
+			hull = hull[:len(hull)-1]
+		}
+		hull = append(hull, i)
+	}
+	return hull
+}
+
+// turnCos and turnSin turn each starting point against the last one; the angle is the golden
+// section of a half turn, so that any number of points spreads evenly.
+const (
+	turnCos = -0.3623748900 // cos(π·0.618034)
+	turnSin = 0.9320333000
+)
+
+// Start places the points by the Newton polygon. Edges of odd length meet in a pair with
+// the next of their kind. A later attempt starts at other angles.
+func (k *Kernel) Start(attempt int) {
+	var room [32]int
+	hull := k.polygon(room[:0])
+	k.pairs, k.reals, k.shift = 0, 0, false
+	left := false // a real point of an earlier edge
+	var leftLog, leftSign float64
+	cos, sin := -0.4161468365471424, 0.9092974268256817
+	if attempt > 0 {
+		sin, cos = math.Sincos(2 + float64(attempt))
+	}
+	for h := 1; h < len(hull); h++ {
+		i, j := hull[h-1], hull[h]
+		m := j - i
+		l := (k.logs[i] - k.logs[j]) / float64(m)
+		r := roughPower(l)
+		for ; m >= 2; m -= 2 {
+			k.addPair(r*cos, r*math.Abs(sin))
+			cos, sin = cos*turnCos-sin*turnSin, cos*turnSin+sin*turnCos
+		}
+		if m == 0 {
+			continue
+		}
+		// The real root of cⱼ·x^odd + cᵢ has the sign of -cᵢ/cⱼ.
+		sign := 1.0
+		if (k.c[i] > 0) == (k.c[j] > 0) {
+			sign = -1
+		}
+		switch {
+		case !left:
+			left, leftLog, leftSign = true, l, sign
+		case l-leftLog < 2 && sign == leftSign:
+			g := roughPower((l + leftLog) / 2)
+			k.addPair(sign*g*0.8, g*0.6)
+			left = false
+		default:
+			k.addReal(leftSign*roughPower(leftLog), 1)
+			k.addReal(sign*r, 1)
+			left = false
+		}
+	}
+	if left {
+		k.addReal(leftSign*roughPower(leftLog), 1)
+	}
+}

@@ -1,0 +1,114 @@
+package poly
+
+import (
+	"github.com/polewright/polewright/internal/rootkernel"
+)
+
+// A Solver finds roots with working storage that it keeps from call to call: for loops that
+// solve many polynomials. On the fast path, with roots that are well apart, it allocates
+// nothing. The zero value is ready for use. One goroutine at a time may use a Solver.
+type Solver struct {
+	kernel rootkernel.Kernel
+	discs  []rootkernel.Disc
+	roots  []Root
+}
+
+// Roots returns all roots of p, exactly as [Poly.Roots] does. The slice is the solver's own
+// and holds until its next call.
+func (s *Solver) Roots(p Poly, opt ...Option) ([]Root, error) {
+	roots, err := s.find(s.roots[:0], p, "poly.Solver.Roots")
+	if err != nil {
+		return nil, err
+	}
+	s.roots = roots
+	return roots, nil
+}
+
+// find appends the roots of p to dst, which is empty.
+func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
+	if err := p.solvable(call); err != nil || len(p.c) < 2 {
+		return dst, err
+	}
+	if len(p.given) > 0 {
+		return append(dst, groupGiven(p.given)...), nil
+	}
+	zeros := 0
+	for p.sign(zeros) == 0 {
+		zeros++
+	}
+	var lo []float64
+	if p.exact != nil {
+		lo = p.exact.low(p.c)[zeros:]
+	}
+	if roots, ok := s.fast(dst, p.c[zeros:], lo, zeros); ok {
+		return roots, nil
+	}
+	roots, err := p.rootsExact(call)
+	return append(dst, roots...), err
+}
+
+// sweeps is how long the fast stage tries; it seldom needs half of it.
+const sweeps = 40
+
+// fast is the stage in float64 and double-double. It appends the roots of the polynomial
+// with the coefficients c + lo by power, the first not zero, and a root of so many zeros at
+// 0, or says that it cannot.
+func (s *Solver) fast(dst []Root, c, lo []float64, zeros int) ([]Root, bool) {
+	n := len(c) - 1
+	if c[0] == 0 || c[n] == 0 {
+		return dst, false // below the range of float64
+	}
+	if need := n + min(zeros, 1); cap(dst) < need {
+		dst = make([]Root, 0, need)
+	}
+	k := &s.kernel
+	if n > 0 {
+		k.Set(c, lo)
+		k.Start(0)
+		if !k.Iterate(sweeps) {
+			k.Start(1)
+			if !k.Iterate(sweeps) {
+				return dst, false
+			}
+		}
+	}
+	var room [32]rootkernel.Disc
+	discs := room[:0]
+	if n >= len(room) {
+		if cap(s.discs) < n+1 {
+			s.discs = make([]rootkernel.Disc, 0, n+1)
+		}
+		discs = s.discs[:0]
+	}
+	discs, failure := k.Certify(discs, zeros > 0)
+	if failure != rootkernel.None {
+		return dst, false
+	}
+	return appendDiscs(dst, discs, zeros), true
+}
+
+// appendDiscs turns sorted discs into roots, conjugates included. The disc at 0 with radius
+// 0 stands for so many roots there.
+func appendDiscs(dst []Root, discs []rootkernel.Disc, zeros int) []Root {
+	for i := 0; i < len(discs); {
+		// Those with the same real part: conjugates first, downwards, then upwards.
+		j := i
+		for j < len(discs) && discs[j].X == discs[i].X {
+			j++
+		}
+		for l := j - 1; l >= i; l-- {
+			if d := &discs[l]; d.Y > 0 {
+				dst = append(dst, Root{complex(d.X, -d.Y), d.Radius, d.HalfX, d.HalfY, 1, 1})
+			}
+		}
+		for ; i < j; i++ {
+			d := &discs[i]
+			m := 1
+			if d.Radius == 0 && d.X == 0 && d.Y == 0 {
+				m = zeros
+			}
+			dst = append(dst, Root{complex(d.X, d.Y), d.Radius, d.HalfX, d.HalfY, m, 1})
+		}
+	}
+	return dst
+}
