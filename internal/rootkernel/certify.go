@@ -36,15 +36,15 @@ func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
 	if origin {
 		dst = append(dst, Disc{})
 	}
-	for i := 0; i < k.pairs; i++ {
-		d, failure := k.certifyPair(k.x[i], k.y[i])
+	for _, q := range k.pairs() {
+		d, failure := k.certifyPair(q.x, q.y)
 		if failure != None {
 			return dst[:start], failure
 		}
 		dst = append(dst, d)
 	}
-	for i := 0; i < k.reals; i++ {
-		d, failure := k.certifyReal(k.r[i])
+	for _, q := range k.reals() {
+		d, failure := k.certifyReal(q.x)
 		if failure != None {
 			return dst[:start], failure
 		}
@@ -200,16 +200,15 @@ func (k *Kernel) compensated(x, y, r float64) (pr, pi, dr, di, m float64) {
 	var er, ei float64
 	n := k.n
 	c := k.c[:n+1]
-	mag := k.mag[:n+1]
 	lo := k.lo
 	pr = c[n]
-	m = mag[n] + floor
+	m = math.Abs(c[n]) + floor
 	if lo != nil {
 		er = lo[n]
 	}
 	for i := n - 1; i >= 0; i-- {
 		dr, di = dr*x-di*y+pr, dr*y+di*x+pi
-		m = m*r + mag[i] + floor
+		m = m*r + math.Abs(c[i]) + floor
 
 		p1, p2 := float64(pr*x), float64(pi*y)
 		p3, p4 := float64(pr*y), float64(pi*x)
@@ -241,16 +240,15 @@ func (k *Kernel) compensatedReal(x, r float64) (p, d, m float64) {
 	var e float64
 	n := k.n
 	c := k.c[:n+1]
-	mag := k.mag[:n+1]
 	lo := k.lo
 	p = c[n]
-	m = mag[n] + floor
+	m = math.Abs(c[n]) + floor
 	if lo != nil {
 		e = lo[n]
 	}
 	for i := n - 1; i >= 0; i-- {
 		d = d*x + p
-		m = m*r + mag[i] + floor
+		m = m*r + math.Abs(c[i]) + floor
 		p1 := float64(p * x)
 		e1 := math.FMA(p, x, -p1)
 		q := p1 + c[i]

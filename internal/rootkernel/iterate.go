@@ -26,40 +26,45 @@ func (k *Kernel) Iterate(sweeps int) bool {
 func (k *Kernel) sweep() bool {
 	all := true
 	// Backwards, so that what turns from pair into real points or back is met once.
-	for i := k.pairs - 1; i >= 0; i-- {
-		if k.restless[i] != 0 {
+	for i := k.pairCount - 1; i >= 0; i-- {
+		if k.pairs()[i].restless {
 			all = k.movePair(i) && all
 		}
 	}
-	// Neighbours among the restless real points move together; if their number is odd, the
-	// one moves alone that leaves the others closest.
+	if k.realCount > 0 {
+		all = k.sweepReals() && all
+	}
+	return all
+}
+
+// sweepReals moves neighbours among the restless real points together, from sweep to sweep
+// with the one neighbour or the other. If their number is odd, the one moves alone that
+// leaves the others closest.
+func (k *Kernel) sweepReals() bool {
 	count := 0
-	for i := 0; i < k.reals; i++ {
-		if k.restlessR[i] != 0 {
+	for _, q := range k.reals() {
+		if q.restless {
 			count++
 		}
 	}
 	if count == 0 {
-		return all
+		return true
 	}
+	all := true
 	lone, shifted := -1, k.shift
-	if count%2 == 1 {
-		lone = k.loneReal(k.shift)
-		shifted = false
-	}
 	k.shift = !k.shift
-	waiting, first, left := -1, true, count+1
-	for i := 0; i < k.reals; i++ {
-		if k.restlessR[i] == 0 {
+	if count%2 == 1 {
+		lone, shifted = k.loneReal(), false
+	}
+	waiting, left := -1, count
+	for i := 0; i < k.realCount; i++ {
+		if !k.reals()[i].restless {
 			continue
 		}
 		left--
 		switch {
-		case i == lone:
-			all = k.moveLone(i) && all
-		case shifted && waiting < 0 && (first || left == 1):
-			all = k.moveLone(i) && all
-			first = false
+		case i == lone || shifted && waiting < 0 && (left == count-1 || left == 0):
+			all = k.moveReal(i) && all
 		case waiting < 0:
 			waiting = i
 		default:
@@ -80,27 +85,24 @@ func (k *Kernel) sweep() bool {
 
 // loneReal returns which of an odd number of restless real points leaves the gaps between
 // the paired others smallest in sum.
-func (k *Kernel) loneReal(ends bool) int {
-	// The sum of the gaps of pairs (1,2), (3,4), … before the lone one and of those after it:
-	// moving the lone one two places on replaces one gap by the gap before it.
+func (k *Kernel) loneReal() int {
+	// Moving the lone one two places on replaces one gap by the gap before it.
 	best, at := math.Inf(1), -1
-	sum := 0.0
-	a, b := -1, -1 // the last two
-	place := 0
-	for i := 0; i < k.reals; i++ {
-		if k.restlessR[i] == 0 {
+	sum, place := 0.0, 0
+	var before, last float64
+	for i, q := range k.reals() {
+		if !q.restless {
 			continue
 		}
 		if place%2 == 0 {
 			if place > 0 {
-				// The lone one was a; now it is i: the pair (b, i) is replaced by (a, b).
-				sum += (k.r[b] - k.r[a]) - (k.r[i] - k.r[b])
+				sum += (last - before) - (q.x - last)
 			}
 			if sum < best {
 				best, at = sum, i
 			}
 		}
-		a, b = b, i
+		before, last = last, q.x
 		place++
 	}
 	return at
@@ -108,22 +110,30 @@ func (k *Kernel) loneReal(ends bool) int {
 
 // sortReals restores the order after a sweep; it was nearly sorted before.
 func (k *Kernel) sortReals() {
-	for i := 1; i < k.reals; i++ {
-		for j := i; j > 0 && k.r[j-1] > k.r[j]; j-- {
-			k.r[j-1], k.r[j] = k.r[j], k.r[j-1]
-			k.restlessR[j-1], k.restlessR[j] = k.restlessR[j], k.restlessR[j-1]
+	reals := k.reals()
+	for i := 1; i < len(reals); i++ {
+		for j := i; j > 0 && reals[j-1].x > reals[j].x; j-- {
+			reals[j-1], reals[j] = reals[j], reals[j-1]
 		}
 	}
 }
 
-// movePair moves a conjugate pair z, z̄ by the correction w of z. To first order in w the
-// quadratic (s - z)(s - z̄) changes by the real linear function that is (z - z̄)·w at z; the
-// new centre is x - Re w and the new discriminant |w|² - (y - Im w)².
+// movePair moves a conjugate pair z, z̄ by the correction w of z and reports whether it
+// settled. To first order in w the quadratic (s - z)(s - z̄) changes by the real linear
+// function that is (z - z̄)·w at z; the new centre is x - Re w and the new discriminant
+// |w|² - (y - Im w)².
+//
+// With f = p/∏(s - zⱼ), the product over all points but this pair, w is not Newton's
+// correction of f/(s - z̄) but Bairstow's of f, which takes both roots of a quadratic f home
+// at once, be they real or not: f/(f′ - r) with the slope r = Im f/y of the line through
+// f(z) and f(z̄) (L. Bairstow 1920; see Stoer, Bulirsch, Introduction to Numerical Analysis,
+// section 5.4). Only the phase of f matters.
 func (k *Kernel) movePair(i int) bool {
-	x, y := k.x[i], k.y[i]
+	q := &k.pairs()[i]
+	x, y := q.x, q.y
 	pr, pi, dr, di := k.quadratic(x, y)
 	if pr == 0 && pi == 0 {
-		k.restless[i] = 0
+		q.restless = false
 		return true
 	}
 	sr, si, gr, gi := k.othersComplex(x, y, i)
@@ -132,7 +142,7 @@ func (k *Kernel) movePair(i int) bool {
 		sr += t * fr
 		si -= t * fi
 	} else {
-		si -= 0.5 / y // out of range: the plain term 1/(z - z̄)
+		si -= 0.5 / y // out of range: Newton's term 1/(z - z̄)
 	}
 	// w = p/(d - p·s)
 	ar, ai := dr-(pr*sr-pi*si), di-(pr*si+pi*sr)
@@ -141,29 +151,29 @@ func (k *Kernel) movePair(i int) bool {
 	size := wr*wr + wi*wi
 	rest := y - wi
 	if size < 0x1p-10*y*y {
-		k.x[i], k.y[i], k.yy[i] = x-wr, rest, rest*rest
 		still := size*(sr*sr+si*si) < settled*settled && size < settled*settled*(x*x+y*y)
-		k.restless[i] = flag(!still)
+		*q = pair{x - wr, rest, rest * rest, !still}
 		return still
 	}
 	switch discriminant := size - rest*rest; {
 	case discriminant < 0:
-		k.x[i], k.y[i], k.yy[i] = x-wr, math.Sqrt(-discriminant), -discriminant
+		*q = pair{x - wr, math.Sqrt(-discriminant), -discriminant, true}
 	case discriminant >= 0:
 		h := math.Sqrt(discriminant)
 		k.removePair(i)
-		k.addReal(x-wr-h, 1)
-		k.addReal(x-wr+h, 1)
+		k.addReal(x - wr - h)
+		k.addReal(x - wr + h)
 	}
 	return false // also if it is NaN: stay, and fail in the end
 }
 
-// moveReals moves two real points by their corrections w₁, w₂. To first order the quadratic
-// changes by the linear function that takes (x₁ - x₂)·w₁ at x₁ and (x₂ - x₁)·w₂ at x₂; the
-// new centre is that of the moved points, the new discriminant that of the moved points
-// plus w₁·w₂.
+// moveReals moves two real points by their corrections w₁, w₂, as movePair. To first order
+// the quadratic changes by the linear function that takes (x₁ - x₂)·w₁ at x₁ and
+// (x₂ - x₁)·w₂ at x₂; the new centre is that of the moved points, the new discriminant that
+// of the moved points plus w₁·w₂.
 func (k *Kernel) moveReals(i, j int) (removed, still bool) {
-	x1, x2 := k.r[i], k.r[j]
+	a, b := &k.reals()[i], &k.reals()[j]
+	x1, x2 := a.x, b.x
 	gap := x1 - x2
 	if gap == 0 {
 		x1 += 0x1p-20 * x1
@@ -172,8 +182,7 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 	p1, d1, p2, d2 := k.horner2(x1, x2)
 	s1, s2, ratio := k.othersReal2(x1, x2, i, j)
 	inverse := 1 / gap
-	f := p2 / p1 * ratio // f(x₂)/f(x₁)
-	if f-f == 0 && f != 0 {
+	if f := p2 / p1 * ratio; f-f == 0 && f != 0 { // f(x₂)/f(x₁)
 		s1 += (1 - f) * inverse
 		s2 += (1/f - 1) * inverse
 	} else {
@@ -190,51 +199,44 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 	half := (gap - w1 + w2) / 2
 	cross := w1 * w2
 	if math.Abs(cross) < 0x1p-10*half*half {
-		k.r[i], k.r[j] = x1-w1, x2-w2
-		w1, w2 = math.Abs(w1), math.Abs(w2)
-		still1 := w1*math.Abs(s1) < settled && w1 < settled*math.Abs(x1)
-		still2 := w2*math.Abs(s2) < settled && w2 < settled*math.Abs(x2)
-		k.restlessR[i], k.restlessR[j] = flag(!still1), flag(!still2)
-		return false, still1 && still2
+		a.x, b.x = x1-w1, x2-w2
+		a.restless = !settledReal(x1, w1, s1)
+		b.restless = !settledReal(x2, w2, s2)
+		return false, !a.restless && !b.restless
 	}
 	centre := (x1 - w1 + x2 - w2) / 2
 	discriminant := half*half + cross
 	if discriminant < 0 {
-		// Move j down beside i, then drop both.
-		for ; j > i+1; j-- {
-			k.r[j], k.restlessR[j] = k.r[j-1], k.restlessR[j-1]
-		}
-		k.removeReals(i)
+		k.removeReals(i, j)
 		k.addPair(centre, math.Sqrt(-discriminant))
 		return true, false
 	}
 	h := math.Sqrt(discriminant)
-	k.r[i], k.r[j] = centre-h, centre+h
+	a.x, b.x = centre-h, centre+h
 	return false, false
 }
 
-// moveLone moves a real point by itself.
-func (k *Kernel) moveLone(i int) bool {
-	x := k.r[i]
+// moveReal moves a real point by itself.
+func (k *Kernel) moveReal(i int) bool {
+	q := &k.reals()[i]
+	x := q.x
 	p, d := k.horner(x)
 	if p == 0 {
-		k.restlessR[i] = 0
+		q.restless = false
 		return true
 	}
 	s := k.othersReal(x, i)
 	w := p / (d - p*s)
-	k.r[i] = x - w
-	w = math.Abs(w)
-	still := w*math.Abs(s) < settled && w < settled*math.Abs(x)
-	k.restlessR[i] = flag(!still)
-	return still
+	q.x = x - w
+	q.restless = !settledReal(x, w, s)
+	return !q.restless
 }
 
-func flag(b bool) float64 {
-	if b {
-		return 1
-	}
-	return 0
+// settledReal tells whether the correction w of a real point is negligible; s is about the
+// inverse of its distance from the others.
+func settledReal(x, w, s float64) bool {
+	w = math.Abs(w)
+	return w*math.Abs(s) < settled && w < settled*math.Abs(x)
 }
 
 // horner returns p(x) and p′(x).
@@ -279,18 +281,19 @@ func (k *Kernel) quadratic(x, y float64) (pr, pi, dr, di float64) {
 	return pr, pi, b1 - 2*y*qi, 2 * y * qr
 }
 
-// othersComplex returns Σ 1/(z - zⱼ) over the real points and all pairs but one.
+// othersComplex returns Σ 1/(z - zⱼ) and ∏ 1/(z - zⱼ) over the real points and all pairs
+// but one.
 func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) {
 	gr = 1
-	xs := k.x[:k.pairs]
-	yys := k.yy[:len(xs)]
 	y2 := y * y
-	for j := range xs {
+	pairs := k.pairs()
+	for j := range pairs {
 		if j == skip {
 			continue
 		}
-		t := x - xs[j]
-		qr := t*t + (yys[j] - y2)
+		q := &pairs[j]
+		t := x - q.x
+		qr := t*t + (q.yy - y2)
 		qi := 2 * y * t
 		inverse := 1 / (qr*qr + qi*qi)
 		vr, vi := qr*inverse, qi*inverse
@@ -298,8 +301,8 @@ func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) 
 		si += 2 * (y*vr - t*vi)
 		gr, gi = gr*vr+gi*vi, gi*vr-gr*vi
 	}
-	for _, r := range k.r[:k.reals] {
-		t := x - r
+	for _, q := range k.reals() {
+		t := x - q.x
 		inverse := 1 / (t*t + y2)
 		vr, vi := t*inverse, y*inverse
 		sr += vr
@@ -311,15 +314,13 @@ func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) 
 
 // othersReal returns Σ 1/(x - zⱼ) over the pairs and all real points but one.
 func (k *Kernel) othersReal(x float64, skip int) (s float64) {
-	xs := k.x[:k.pairs]
-	yys := k.yy[:len(xs)]
-	for j := range xs {
-		t := x - xs[j]
-		s += 2 * t / (t*t + yys[j])
+	for _, q := range k.pairs() {
+		t := x - q.x
+		s += 2 * t / (t*t + q.yy)
 	}
-	for j, r := range k.r[:k.reals] {
+	for j, q := range k.reals() {
 		if j != skip {
-			s += 1 / (x - r)
+			s += 1 / (x - q.x)
 		}
 	}
 	return s
@@ -327,21 +328,19 @@ func (k *Kernel) othersReal(x float64, skip int) (s float64) {
 
 // othersReal2 does two at once, and skips both. ratio is ∏(x₁ - zⱼ)/∏(x₂ - zⱼ).
 func (k *Kernel) othersReal2(x1, x2 float64, skip1, skip2 int) (s1, s2, ratio float64) {
-	xs := k.x[:k.pairs]
-	yys := k.yy[:len(xs)]
 	ratio = 1
-	for j := range xs {
-		t1, t2 := x1-xs[j], x2-xs[j]
-		q1, q2 := t1*t1+yys[j], t2*t2+yys[j]
+	for _, q := range k.pairs() {
+		t1, t2 := x1-q.x, x2-q.x
+		q1, q2 := t1*t1+q.yy, t2*t2+q.yy
 		inverse := 1 / (q1 * q2)
 		v2 := q1 * inverse
 		s1 += 2 * t1 * (q2 * inverse)
 		s2 += 2 * t2 * v2
 		ratio *= q1 * v2
 	}
-	for j, r := range k.r[:k.reals] {
+	for j, q := range k.reals() {
 		if j != skip1 && j != skip2 {
-			t1, t2 := x1-r, x2-r
+			t1, t2 := x1-q.x, x2-q.x
 			inverse := 1 / (t1 * t2)
 			v2 := t1 * inverse
 			s1 += t2 * inverse

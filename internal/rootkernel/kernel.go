@@ -10,87 +10,104 @@
 // discriminant turns one kind into the other.
 package rootkernel
 
-import "math"
-
 // A Kernel owns the working storage of a solution. The zero value is ready for use; it is
 // not for concurrent use.
 type Kernel struct {
-	n   int
-	c   []float64 // coefficients by power
-	lo  []float64 // what c lacks to the exact coefficients, to nearest; nil if nothing
-	mag []float64 // |c|
+	n  int
+	c  []float64 // coefficients by power
+	lo []float64 // what c lacks to the exact coefficients, to nearest; nil if nothing
 
-	pairs    int // conjugate pairs
-	x, y, yy []float64
-	restless []float64 // which pairs still move: 1, else 0
-
-	reals     int // real points, ascending
-	r         []float64
-	restlessR []float64
+	pairCount int  // conjugate pairs
+	realCount int  // real points, ascending
 	shift     bool // whether the next sweep pairs the real points the other way
 
-	logs []float64 // binary logarithms of mag, roughly
-
-	floats []float64
+	// The points stand in the small arrays if they fit, so that a Kernel may live on the
+	// stack.
+	smallPairs [smallDegree/2 + 1]pair
+	smallReals [smallDegree]real
+	largePairs []pair
+	largeReals []real
 }
 
-// grow makes room for degree n.
-func (k *Kernel) grow(n int) {
-	m := n/2 + 1
-	if need := 2*(n+1) + 4*m + 2*n; len(k.floats) < need {
-		k.floats = make([]float64, need)
-	}
-	f := k.floats
-	k.mag, f = f[:n+1], f[n+1:]
-	k.logs, f = f[:n+1], f[n+1:]
-	k.x, f = f[:m], f[m:]
-	k.y, f = f[:m], f[m:]
-	k.yy, f = f[:m], f[m:]
-	k.restless, f = f[:m], f[m:]
-	k.r, f = f[:n], f[n:]
-	k.restlessR = f[:n]
-	k.n = n
+const smallDegree = 24
+
+// A pair is the upper one of two conjugate points.
+type pair struct {
+	x, y, yy float64 // yy is y²
+	restless bool    // it still moves
+}
+
+// A real is a real point.
+type real struct {
+	x        float64
+	restless bool
 }
 
 // Set takes a polynomial: coefficients by power, the first and the last not zero, and what
 // they lack to the exact ones (nil if nothing). The kernel keeps the slices and never
 // changes them.
 func (k *Kernel) Set(c, lo []float64) {
-	k.grow(len(c) - 1)
-	k.c, k.lo = c, lo
-	mag := k.mag[:len(c)]
-	for i, x := range c {
-		mag[i] = math.Abs(x)
+	k.n = len(c) - 1
+	if k.n > smallDegree && len(k.largeReals) < k.n {
+		k.largePairs = make([]pair, k.n/2+1)
+		k.largeReals = make([]real, k.n)
 	}
+	k.c, k.lo = c, lo
+}
+
+// room returns the storage of all points.
+func (k *Kernel) room() ([]pair, []real) {
+	if k.n > smallDegree {
+		return k.largePairs, k.largeReals
+	}
+	return k.smallPairs[:], k.smallReals[:]
+}
+
+// pairs returns the conjugate pairs.
+func (k *Kernel) pairs() []pair {
+	if k.n > smallDegree {
+		return k.largePairs[:k.pairCount]
+	}
+	return k.smallPairs[:k.pairCount]
+}
+
+// reals returns the real points.
+func (k *Kernel) reals() []real {
+	if k.n > smallDegree {
+		return k.largeReals[:k.realCount]
+	}
+	return k.smallReals[:k.realCount]
 }
 
 // addPair adds a conjugate pair.
 func (k *Kernel) addPair(x, y float64) {
-	i := k.pairs
-	k.x[i], k.y[i], k.yy[i], k.restless[i] = x, y, y*y, 1
-	k.pairs++
+	pairs, _ := k.room()
+	pairs[k.pairCount] = pair{x, y, y * y, true}
+	k.pairCount++
 }
 
 // removePair removes a conjugate pair; the last one takes its place.
 func (k *Kernel) removePair(i int) {
-	k.pairs--
-	l := k.pairs
-	k.x[i], k.y[i], k.yy[i], k.restless[i] = k.x[l], k.y[l], k.yy[l], k.restless[l]
+	pairs, _ := k.room()
+	k.pairCount--
+	pairs[i] = pairs[k.pairCount]
 }
 
 // addReal adds a real point in its place.
-func (k *Kernel) addReal(x, restless float64) {
-	i := k.reals
-	k.reals++
-	for ; i > 0 && k.r[i-1] > x; i-- {
-		k.r[i], k.restlessR[i] = k.r[i-1], k.restlessR[i-1]
+func (k *Kernel) addReal(x float64) {
+	_, reals := k.room()
+	i := k.realCount
+	k.realCount++
+	for ; i > 0 && reals[i-1].x > x; i-- {
+		reals[i] = reals[i-1]
 	}
-	k.r[i], k.restlessR[i] = x, restless
+	reals[i] = real{x, true}
 }
 
-// removeReals removes the real points i and i+1.
-func (k *Kernel) removeReals(i int) {
-	copy(k.r[i:k.reals], k.r[i+2:k.reals])
-	copy(k.restlessR[i:k.reals], k.restlessR[i+2:k.reals])
-	k.reals -= 2
+// removeReals removes the real points i < j.
+func (k *Kernel) removeReals(i, j int) {
+	reals := k.reals()
+	copy(reals[j:], reals[j+1:])
+	copy(reals[i:], reals[i+1:])
+	k.realCount -= 2
 }

@@ -64,8 +64,8 @@ func TestStats(t *testing.T) {
 				ok := false
 				s := 0
 				for ; s < 60; s++ {
-					for _, d := range k.restless[:k.pairs] {
-						if d != 0 {
+					for _, d := range k.pairs() {
+						if d.restless {
 							moves++
 						}
 					}

@@ -19,26 +19,29 @@ func roughPower(l float64) float64 {
 	return math.Float64frombits(uint64((l + 1023) * 0x1p52))
 }
 
+// A corner is a corner of the Newton polygon.
+type corner struct {
+	power int
+	log   float64 // log₂ of the modulus of the coefficient, roughly
+}
+
 // polygon finds the upper convex hull of the points (i, log₂|cᵢ|): the slopes of its edges
 // are the moduli of the roots, roughly (D. A. Bini, Numerical computation of polynomial
 // zeros by means of Aberth's method, Numerical Algorithms 13 (1996) 179–200, section 2).
-func (k *Kernel) polygon(hull []int) []int {
-	logs := k.logs[:len(k.mag)]
-	hull = hull[:0]
-	for i, m := range k.mag {
-		if m == 0 {
+func polygon(hull []corner, c []float64) []corner {
+	for i, x := range c {
+		if x == 0 {
 			continue
 		}
-		l := roughLog(m)
-		logs[i] = l
+		l := roughLog(math.Abs(x))
 		for len(hull) >= 2 {
 			a, b := hull[len(hull)-2], hull[len(hull)-1]
-			if (logs[b]-logs[a])*float64(i-a) > (l-logs[a])*float64(b-a) {
+			if (b.log-a.log)*float64(i-a.power) > (l-a.log)*float64(b.power-a.power) {
 				break
 			}
 			hull = hull[:len(hull)-1]
 		}
-		hull = append(hull, i)
+		hull = append(hull, corner{i, l})
 	}
 	return hull
 }
@@ -53,9 +56,9 @@ const (
 // Start places the points by the Newton polygon. Edges of odd length meet in a pair with
 // the next of their kind. A later attempt starts at other angles.
 func (k *Kernel) Start(attempt int) {
-	var room [32]int
-	hull := k.polygon(room[:0])
-	k.pairs, k.reals, k.shift = 0, 0, false
+	var room [32]corner
+	hull := polygon(room[:0], k.c)
+	k.pairCount, k.realCount, k.shift = 0, 0, false
 	left := false // a real point of an earlier edge
 	var leftLog, leftSign float64
 	cos, sin := -0.4161468365471424, 0.9092974268256817
@@ -63,9 +66,9 @@ func (k *Kernel) Start(attempt int) {
 		sin, cos = math.Sincos(2 + float64(attempt))
 	}
 	for h := 1; h < len(hull); h++ {
-		i, j := hull[h-1], hull[h]
-		m := j - i
-		l := (k.logs[i] - k.logs[j]) / float64(m)
+		a, b := hull[h-1], hull[h]
+		m := b.power - a.power
+		l := (a.log - b.log) / float64(m)
 		r := roughPower(l)
 		for ; m >= 2; m -= 2 {
 			k.addPair(r*cos, r*math.Abs(sin))
@@ -76,7 +79,7 @@ func (k *Kernel) Start(attempt int) {
 		}
 		// The real root of cⱼ·x^odd + cᵢ has the sign of -cᵢ/cⱼ.
 		sign := 1.0
-		if (k.c[i] > 0) == (k.c[j] > 0) {
+		if (k.c[a.power] > 0) == (k.c[b.power] > 0) {
 			sign = -1
 		}
 		switch {
@@ -87,12 +90,12 @@ func (k *Kernel) Start(attempt int) {
 			k.addPair(sign*g*0.8, g*0.6)
 			left = false
 		default:
-			k.addReal(leftSign*roughPower(leftLog), 1)
-			k.addReal(sign*r, 1)
+			k.addReal(leftSign * roughPower(leftLog))
+			k.addReal(sign * r)
 			left = false
 		}
 	}
 	if left {
-		k.addReal(leftSign*roughPower(leftLog), 1)
+		k.addReal(leftSign * roughPower(leftLog))
 	}
 }
