@@ -12,6 +12,7 @@ type segment struct {
 	from, to     float64
 	mode         Mode
 	held, demand float64 // of a sampled controller: what the actuator gives and what was asked for
+	slope        float64 // of both, behind an extrapolating hold
 	states       []float64
 	delayed      *[lines]series // what comes out of the delay lines; nil without dead time
 }
@@ -33,7 +34,7 @@ type Result struct {
 }
 
 // mostSegments bounds the work of one simulation.
-const mostSegments = 2_000_000
+const mostSegments = 300_000
 
 // history is what went into a delay line, piece by piece.
 type history struct {
@@ -61,6 +62,7 @@ type sampling struct {
 	x, next []float64
 	applyAt float64 // when the pending output is put out; +Inf if nothing is pending
 	pending float64
+	last    float64 // put out before
 }
 
 // Simulate follows the loop from rest at t = 0 to until, in seconds. Progress, unless nil,
@@ -275,6 +277,8 @@ func (r *runner) finish(end float64) {
 		r.seg.states[i] = r.now.states[i].at(h)
 		r.scale[i] = math.Max(r.scale[i], math.Abs(r.seg.states[i]))
 	}
+	r.seg.held += r.seg.slope * h
+	r.seg.demand += r.seg.slope * h
 	r.seg.from = end
 }
 
@@ -309,6 +313,10 @@ func (r *runner) takeSample() {
 
 func (r *runner) put(v float64) {
 	r.seg.demand, r.seg.held = v, clip(v, r.loop.Amplitude)
+	if r.loop.Extrapolate {
+		r.seg.slope = (v - r.sample.last) / r.loop.Period
+		r.sample.last = v
+	}
 }
 
 func clip(v, limit float64) float64 {

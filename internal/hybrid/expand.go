@@ -46,12 +46,12 @@ func (m *machine) expand(seg *segment, out *seriesOf) {
 				in = delayed[linePlant][j]
 			}
 			y = m.plant.output(part(2, x), in) + disturbance
-			sensorIn = y + noise
+			sensorIn = y
 			in = sensorIn
 			if m.delays[lineSensor] > 0 {
 				in = delayed[lineSensor][j]
 			}
-			measured = m.sensor.output(part(3, x), in)
+			measured = m.sensor.output(part(3, x), in) + noise
 			e = filtered - measured
 			if m.loop.Period == 0 {
 				v = m.controller.output(part(1, x), e)
@@ -61,8 +61,11 @@ func (m *machine) expand(seg *segment, out *seriesOf) {
 		var u, w float64
 		switch {
 		case m.loop.Period > 0:
-			if j == 0 {
+			switch j {
+			case 0:
 				u, w = seg.held, seg.demand
+			case 1:
+				u, w = seg.slope, seg.slope
 			}
 		case seg.mode == Linear:
 			if m.delays[lineDemand] > 0 {

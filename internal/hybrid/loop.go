@@ -21,13 +21,14 @@ type Source interface {
 type Inputs struct{ Reference, Load, Disturbance, Noise Source }
 
 // A Loop is reference → prefilter → (−) → controller → actuator → (+ load) → plant →
-// (+ disturbance) = output, and output + noise → sensor → back.
+// (+ disturbance) = output → sensor → (+ noise) → back.
 type Loop struct {
 	Prefilter, Controller, Plant, Sensor Block
 	Amplitude                            float64 // |u| ≤ Amplitude; 0 means unlimited
 	Tracking                             float64 // s, time constant of back-calculation; 0 means none
 	Period                               float64 // s; if above 0 the controller is a function of z
-	ComputationDelay                     float64 // s, from sample to actuator, at most Period
+	ComputationDelay                     float64 // s, from sample to actuator, less than Period
+	Extrapolate                          bool    // hold with the slope of the last two samples, not the value; excludes Amplitude
 }
 
 // A Signal names a quantity of the loop.
@@ -40,7 +41,7 @@ const (
 	Demand                  // what the controller asks for
 	Effort                  // what the actuator gives
 	Output                  // of the plant, with the output disturbance
-	Measured                // what the sensor says
+	Measured                // what the sensor says, with the noise
 	Load
 	Disturbance
 	Noise
