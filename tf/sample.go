@@ -1,5 +1,7 @@
 package tf
 
+import "errors"
+
 // Method is a way from continuous time to samples.
 type Method int
 
@@ -10,3 +12,9 @@ const (
 	Trapezoidal                  // s = (2/period)·(z-1)/(z+1)
 	MatchedRoots                 // poles and zeros through exp(s·period)
 )
+
+var errSkeleton = errors.New("tf: skeleton")
+
+func (g Function) Sample(period float64, how Method, opt ...Option) (Function, error) {
+	return g, errSkeleton
+}
