@@ -20,8 +20,8 @@ func (a *axisForm) gainCrossovers() ([]Crossover, error) {
 	return a.exactly().gainCrossovers()
 }
 
-func (a *axisForm) gainCurve() intervalPoly {
-	g := newIntervalPoly(len(a.nn.c))
+func (a *axisForm) gainCurve(memory *slab) intervalPoly {
+	g := memory.takeZero(len(a.nn.c))
 	g.add(1, a.nn)
 	g.add(-1, a.dd)
 	return g
@@ -31,24 +31,32 @@ func (a *axisForm) gainCrossoversFast() (found []Crossover, ok bool) {
 	if !a.ok {
 		return nil, false
 	}
-	g := a.gainCurve()
+	memory := a.memory // a copy: what this question takes is free again after it
+	g := a.gainCurve(&memory)
 	if a.period != 0 && sign(g.c[a.degree], g.e[a.degree]) == 0 {
 		return nil, false // |g| may be 1 at half the sampling frequency
 	}
-	brackets, ok := g.positiveRoots()
+	brackets, ok := g.positiveRoots(memory)
 	if !ok {
 		return nil, false
 	}
 	for _, b := range brackets {
 		r, ok := a.refine(b, gainCurve, g)
-		if !ok {
+		if ok {
+			if m, ok := a.phaseMargin(r); ok {
+				found = append(found, Crossover{a.frequency(r.x), m})
+				continue
+			}
+		}
+		q, ok := a.precisely().refine(b, r.x, gainCurve)
+		if !ok || magnitude(q.dd()) < magnitude(q.dd0())-preciseBits/2 {
+			return nil, false // not simple, or a common root on the axis
+		}
+		m := a.turnBack(q.point())
+		if m == 0 || math.Abs(m) == math.Pi {
 			return nil, false
 		}
-		m, ok := a.phaseMargin(r)
-		if !ok {
-			return nil, false
-		}
-		found = append(found, Crossover{a.frequency(r.x), m})
+		found = append(found, Crossover{a.frequencyOf(q.point().v), m})
 	}
 	return found, true
 }
@@ -81,6 +89,22 @@ func (a *axisForm) phaseMargin(r axisRoot) (float64, bool) {
 	return m, e <= acceptMargin*math.Abs(m)
 }
 
+// gainMargin returns -1/g at a root where g is real, or its negative where g is positive.
+func (a *axisForm) gainMargin(r axisRoot) (float64, bool) {
+	p := a.at(r.x)
+	n, d, re := p.nn(), p.dd(), p.re()
+	moved := math.Abs(re.slope) * r.x * r.err
+	if sign(re.v, 4*(re.e+moved)) == 0 {
+		return 0, false // a pole or a zero on the axis, perhaps
+	}
+	m := math.Sqrt(d.v / n.v)
+	e := (d.e+math.Abs(d.slope)*r.x*r.err)/d.v + (n.e+math.Abs(n.slope)*r.x*r.err)/n.v
+	if re.v > 0 {
+		return -m, true
+	}
+	return m, e <= acceptMargin && !math.IsInf(m, 0) && m != 0
+}
+
 // wrap brings an angle into (-π, π].
 func wrap(angle float64) float64 {
 	if angle > -math.Pi && angle <= math.Pi {
@@ -105,30 +129,29 @@ func (a *axisForm) phaseCrossoversFast() (found []Crossover, ok bool) {
 	if !a.ok {
 		return nil, false
 	}
-	brackets, ok := a.im.positiveRoots()
+	brackets, ok := a.im.positiveRoots(a.memory)
 	if !ok {
 		return nil, false
 	}
 	for _, b := range brackets {
 		r, ok := a.refine(b, phaseCurve, a.im)
-		if !ok {
-			return nil, false
+		if ok {
+			m, ok := a.gainMargin(r)
+			if ok {
+				if m > 0 {
+					found = append(found, Crossover{a.frequency(r.x), m})
+				}
+				continue
+			}
 		}
-		p := a.at(r.x)
-		n, d, re := p.nn(), p.dd(), p.re()
-		moved := math.Abs(re.slope) * r.x * r.err
-		if sign(re.v, 4*(re.e+moved)) == 0 {
-			return nil, false // a pole or a zero on the axis, perhaps
+		q, ok := a.precisely().refine(b, r.x, phaseCurve)
+		if !ok || magnitude(q.dd()) < magnitude(q.dd0())-preciseBits/2 || magnitude(q.nn()) < magnitude(q.nn0())-preciseBits/2 {
+			return nil, false // not simple, or a pole or a zero on the axis
 		}
-		if re.v > 0 {
-			continue
+		if q.re().Sign() < 0 {
+			p := q.point()
+			found = append(found, Crossover{a.frequencyOf(p.v), p.ratio()})
 		}
-		m := math.Sqrt(d.v / n.v)
-		e := (d.e+math.Abs(d.slope)*r.x*r.err)/d.v + (n.e+math.Abs(n.slope)*r.x*r.err)/n.v
-		if !(e <= acceptMargin) || math.IsInf(m, 0) || m == 0 {
-			return nil, false
-		}
-		found = append(found, Crossover{a.frequency(r.x), m})
 	}
 	if a.period != 0 {
 		if m := a.marginAtInfinity(); m > 0 {

@@ -194,7 +194,7 @@ func (a *axisForm) looseRoots(p intervalPoly) ([]float64, bool) {
 	if q, _ := p.trim(); len(q.c) == 0 {
 		return nil, true // identically zero: nothing changes
 	}
-	brackets, ok := p.positiveRoots()
+	brackets, ok := p.positiveRoots(a.memory)
 	if !ok {
 		return nil, false
 	}

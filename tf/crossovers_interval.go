@@ -16,6 +16,27 @@ func newIntervalPoly(size int) intervalPoly {
 	return intervalPoly{make([]float64, size), make([]float64, size)}
 }
 
+// A slab hands out the polynomials of one call from one piece of memory.
+type slab struct{ free []float64 }
+
+// take returns a zero polynomial with size coefficients.
+func (m *slab) take(size int) intervalPoly {
+	if len(m.free) < 2*size {
+		m.free = make([]float64, 16*size)
+	}
+	p := intervalPoly{m.free[:size:size], m.free[size : 2*size : 2*size]}
+	m.free = m.free[2*size:]
+	return p
+}
+
+// takeZero returns a zero polynomial from memory that may have been used before.
+func (m *slab) takeZero(size int) intervalPoly {
+	p := m.take(size)
+	clear(p.c)
+	clear(p.e)
+	return p
+}
+
 // addProduct adds f·a·b·x^shift to p, f being ±1 or ±2. What rounding loses is collected in
 // the bounds, so that sums of small integers stay exact and are known to be.
 func (p intervalPoly) addProduct(f float64, a, b intervalPoly, shift int) {
@@ -153,7 +174,7 @@ const maxSplits = 96
 // carried along, and a sign counts only if it is beyond the bound. An interval is split where
 // the terms of two neighbouring changes of sign balance, so that roots of all scales are
 // parted equally fast.
-func (p intervalPoly) positiveRoots() (found []bracket, ok bool) {
+func (p intervalPoly) positiveRoots(memory slab) (found []bracket, ok bool) {
 	p, low := p.trim()
 	p = intervalPoly{p.c[low:], p.e[low:]}
 	n := len(p.c) - 1
@@ -166,27 +187,30 @@ func (p intervalPoly) positiveRoots() (found []bracket, ok bool) {
 	if sign(p.c[0], p.e[0]) == 0 || sign(p.c[n], p.e[n]) == 0 {
 		return nil, false
 	}
-	work := make([]float64, 0, 8*(n+1))
 	type node struct {
 		intervalPoly
 		m mobius
 	}
-	cut := func() intervalPoly {
-		if len(work)+2*(n+1) > cap(work) {
-			work = make([]float64, 0, 16*(n+1))
+	var nodes [8]node
+	stack := append(nodes[:0], node{p, mobius{1, 0, 0, 1}})
+	var used [8]intervalPoly
+	spare := used[:0]
+	take := func() (q intervalPoly) {
+		if k := len(spare); k > 0 {
+			q, spare = spare[k-1], spare[:k-1]
+			return q
 		}
-		k := len(work)
-		work = work[:k+2*(n+1)]
-		return intervalPoly{work[k : k+n+1 : k+n+1], work[k+n+1 : k+2*(n+1) : k+2*(n+1)]}
+		return memory.take(n + 1)
 	}
-	stack := make([]node, 1, 8)
-	stack[0] = node{p, mobius{1, 0, 0, 1}}
 	for splits := 0; len(stack) > 0; {
 		v := stack[len(stack)-1]
 		stack = stack[:len(stack)-1]
 		changes, balance, guess := v.variations()
 		switch changes {
 		case 0:
+			if splits > 0 {
+				spare = append(spare, v.intervalPoly)
+			}
 			continue
 		case 1:
 			b := bracket{lo: v.m.b / v.m.d, hi: v.m.a / v.m.c, guess: v.m.at(guess), below: sign(v.c[0], v.e[0])}
@@ -197,9 +221,12 @@ func (p intervalPoly) positiveRoots() (found []bracket, ok bool) {
 				return nil, false
 			}
 			found = append(found, b)
+			if splits > 0 {
+				spare = append(spare, v.intervalPoly)
+			}
 			continue
 		}
-		left, right := cut(), cut()
+		left, right := take(), take()
 		done := false
 		for try := 0; try < 6 && splits < maxSplits; try++ {
 			splits++
@@ -211,6 +238,9 @@ func (p intervalPoly) positiveRoots() (found []bracket, ok bool) {
 		}
 		if !done {
 			return nil, false
+		}
+		if splits > 1 || v.m.c != 0 || v.m.b != 0 {
+			spare = append(spare, v.intervalPoly)
 		}
 		// y = balance·y′/(2 + y′) on the left, balance·(1 + 2y′) on the right.
 		m := v.m
@@ -231,9 +261,9 @@ const maxFastDegree = 56
 // a point near the root; otherwise 2, and balance is a point at which to split.
 func (p intervalPoly) variations() (changes int, balance, guess float64) {
 	last, lastAt := sign(p.c[0], p.e[0]), 0
-	doubt := -1 // power whose sign is not known, between equal signs
-	pending := -1
-	var first, second, count = 0.0, 0.0, 0
+	var before, second [2]int // powers on both sides of the last change but one, and of the last
+	count, pending := 0, -1
+	doubt := [2]int{-1, -1} // equal signs with a power between whose sign is not known
 	for i := 1; i < len(p.c); i++ {
 		s := sign(p.c[i], p.e[i])
 		if s == 0 {
@@ -244,23 +274,62 @@ func (p intervalPoly) variations() (changes int, balance, guess float64) {
 		}
 		if s != last {
 			count++
-			first, second = second, math.Pow(math.Abs(p.c[lastAt]/p.c[i]), 1/float64(i-lastAt))
-		} else if pending > lastAt && doubt < 0 {
-			doubt = i
-			balance = math.Pow(math.Abs(p.c[lastAt]/p.c[i]), 1/float64(i-lastAt))
+			before, second = second, [2]int{lastAt, i}
+		} else if pending > lastAt && doubt[0] < 0 {
+			doubt = [2]int{lastAt, i}
 		}
 		last, lastAt = s, i
 	}
 	switch {
-	case count == 0 && doubt < 0:
+	case count == 0 && doubt[0] < 0:
 		return 0, 0, 0
-	case count == 1 && doubt < 0:
-		return 1, 0, second
+	case count == 1 && doubt[0] < 0:
+		return 1, 0, p.settle(math.Ldexp(1, int(p.balance(second))))
 	case count >= 2:
 		// The last two changes; deeper ones have their turn in the part below.
-		balance = math.Sqrt(first) * math.Sqrt(second)
+		return 2, math.Ldexp(1, int(math.Round((p.balance(before)+p.balance(second))/2))), 0
 	}
-	return 2, balance, 0
+	return 2, math.Ldexp(1, int(p.balance(doubt))), 0
+}
+
+// balance returns the binary logarithm of the point where the terms of two powers are equally
+// large, to about a unit.
+func (p intervalPoly) balance(powers [2]int) float64 {
+	i, k := powers[0], powers[1]
+	return float64(exponentOf(p.c[i])-exponentOf(p.c[k])) / float64(k-i)
+}
+
+// exponentOf returns the binary exponent of a normal number.
+func exponentOf(x float64) int { return int(math.Float64bits(x) >> 52 & 0x7ff) }
+
+// settle improves a guess y at the only positive root of a polynomial with one change of
+// sign. With P and Q the sums of its terms of either sign, log(P/Q) is monotone in log y, and
+// Newton's iteration on it comes near from any distance.
+func (p intervalPoly) settle(y float64) float64 {
+	for range 8 {
+		var plus, minus, dPlus, dMinus float64
+		power := 1.0
+		for i, c := range p.c {
+			t := c * power
+			power *= y
+			if c > 0 {
+				plus += t
+				dPlus += float64(i) * t
+			} else {
+				minus -= t
+				dMinus -= float64(i) * t
+			}
+		}
+		step := math.Log(plus/minus) / (dPlus/plus - dMinus/minus)
+		if math.IsNaN(step) || math.IsInf(step, 0) {
+			return y
+		}
+		y *= math.Exp(-step)
+		if math.Abs(step) < 0.05 {
+			break
+		}
+	}
+	return y
 }
 
 // split writes the polynomials of the parts below and above y, in variables that run through
@@ -268,43 +337,51 @@ func (p intervalPoly) variations() (changes int, balance, guess float64) {
 func (p intervalPoly) split(y float64, left, right intervalPoly) bool {
 	n := len(p.c) - 1
 	// Bernstein coefficients of the interval (0, ∞) with y in its middle.
-	power := 1.0
 	binomial := binomials(n)
-	scale := 1.0
+	power := 1.0
 	if y > 1 { // keep the largest power at 1
-		scale = math.Pow(y, -float64(n))
+		power = math.Pow(y, -float64(n))
 	}
-	if !(scale > 0x1p-900) {
+	if !(power > 0x1p-900) {
 		return false
 	}
-	for i := range p.c {
-		f := power * scale / binomial[i]
-		right.c[i] = p.c[i] * f
-		right.e[i] = p.e[i] * f
-		if right.c[i] != 0 || right.e[i] != 0 || p.c[i] != 0 {
-			// Relative error of power: (i-1)u, and four operations more. A common error of
-			// scale does not matter.
-			right.e[i] = (right.e[i] + float64(i+6)*unitRoundoff*math.Abs(right.c[i]) + minNormal) * (1 + 4*unitRoundoff)
+	pc, pe := p.c[:n+1], p.e[:n+1]
+	c, e := right.c[:n+1], right.e[:n+1]
+	lc, le := left.c[:n+1], left.e[:n+1]
+	for i, x := range pc {
+		f := power / binomial[i]
+		x *= f
+		// The powers of y, and three operations more; a common error of all does not matter.
+		bound := pe[i]*f + float64(i+3)*unitRoundoff*math.Abs(x)
+		if pc[i] != 0 || pe[i] != 0 {
+			bound += minNormal
 		}
+		c[i], e[i] = x, bound
 		power *= y
 	}
-	left.c[0], left.e[0] = right.c[0], right.e[0]
-	for r := 1; r <= n; r++ {
-		for i := 0; i <= n-r; i++ {
-			m := 0.5 * (right.c[i] + right.c[i+1])
-			right.e[i] = (0.5*(right.e[i]+right.e[i+1]) + unitRoundoff*math.Abs(m)) * (1 + 4*unitRoundoff)
-			right.c[i] = m
+	lc[0], le[0] = c[0], e[0]
+	for r := n; r > 0; r-- {
+		lastC, lastE := c[0], e[0]
+		for i := 1; i <= r; i++ {
+			nextC, nextE := c[i], e[i]
+			m := 0.5 * (lastC + nextC)
+			e[i-1] = 0.5*(lastE+nextE) + unitRoundoff*math.Abs(m)
+			c[i-1] = m
+			lastC, lastE = nextC, nextE
 		}
-		left.c[r], left.e[r] = right.c[0], right.e[0]
+		lc[n-r+1], le[n-r+1] = c[0], e[0]
 	}
-	if sign(right.c[0], right.e[0]) == 0 {
+	// The factor pays for the rounding of the bounds, which had n+8 operations each.
+	safety := 1 + float64(4*n+32)*unitRoundoff
+	if sign(c[0], e[0]*safety) == 0 {
 		return false
 	}
-	for i, b := range binomial[:n+1] {
-		left.c[i] *= b
-		left.e[i] = (left.e[i]*b + 2*unitRoundoff*math.Abs(left.c[i])) * (1 + 4*unitRoundoff)
-		right.c[i] *= b
-		right.e[i] = (right.e[i]*b + 2*unitRoundoff*math.Abs(right.c[i])) * (1 + 4*unitRoundoff)
+	for i := range c {
+		b := binomial[i]
+		x := lc[i] * b
+		lc[i], le[i] = x, (le[i]*b+unitRoundoff*math.Abs(x))*safety
+		x = c[i] * b
+		c[i], e[i] = x, (e[i]*b+unitRoundoff*math.Abs(x))*safety
 	}
 	return true
 }

@@ -50,7 +50,8 @@ func (c curve) value(p axisPoint) halfValue {
 	return halfValue{valueBound: valueBound{y, e}}
 }
 
-// refine returns the root in the bracket; it is not ok if float64 does not suffice.
+// refine returns the root in the bracket; it is not ok if float64 does not suffice, and x is
+// then only near.
 //
 // Method: Newton's iteration, kept inside the bracket by the sign of each proven value, so
 // that what it ends on is the root that was isolated.
@@ -65,7 +66,7 @@ func (a *axisForm) refine(b bracket, c curve, expanded intervalPoly) (axisRoot, 
 			g.slope = expanded.evaluate(x).slope
 		}
 		if math.IsNaN(g.v) || math.IsNaN(g.e) {
-			return axisRoot{}, false
+			return axisRoot{x: x}, false
 		}
 		step := g.v / g.slope
 		switch sign(g.v, g.e) {
@@ -76,7 +77,7 @@ func (a *axisForm) refine(b bracket, c curve, expanded intervalPoly) (axisRoot, 
 			}
 			next := x - step
 			if !(e <= acceptRoot) || !(next > 0) {
-				return axisRoot{}, false
+				return axisRoot{x: x}, false
 			}
 			return axisRoot{next, 2*e + 2*unitRoundoff}, true
 		case b.below:
@@ -94,7 +95,7 @@ func (a *axisForm) refine(b bracket, c curve, expanded intervalPoly) (axisRoot, 
 		}
 		x = next
 	}
-	return axisRoot{}, false
+	return axisRoot{x: x}, false
 }
 
 // between returns a point well inside (lo, hi), 0 ≤ lo < hi ≤ +Inf.

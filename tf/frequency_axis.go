@@ -24,9 +24,11 @@ type axisForm struct {
 	deadTime, period       float64
 	unit                   float64 // rad/s; of the tangent in z; a power of two
 
+	memory slab
 	ok     bool // false: coefficients span too much for the float64 stages
 	n, d   halves
 	f      halves
+	whole  intervalPoly // F by power of jv
 	nn, dd intervalPoly // |N|², |D|² in x
 	re, im intervalPoly // N·conj D = re + jv·im
 }
@@ -93,8 +95,10 @@ func (a *axisForm) prepare() {
 	if a.degree > maxFastDegree/2 {
 		return
 	}
-	n, topN, spanN, okN := scaledCoefficients(a.numerator, shift)
-	d, topD, spanD, okD := scaledCoefficients(a.denominator, shift)
+	size := a.degree + 1
+	a.memory.free = make([]float64, 96*size)
+	n, topN, spanN, okN := a.scaledCoefficients(a.numerator, shift)
+	d, topD, spanD, okD := a.scaledCoefficients(a.denominator, shift)
 	// Squares of squares must stay in range.
 	low := min(spanN, spanD) - max(topN, topD)
 	if !okN || !okD || low < -220 {
@@ -104,17 +108,13 @@ func (a *axisForm) prepare() {
 	n.shift(topN - common)
 	d.shift(topD - common)
 	a.ok = true
-	a.n, a.d = split(n), split(d)
-	f := newIntervalPoly(max(len(n.c), len(d.c)))
+	a.n, a.d = a.split(n), a.split(d)
+	f := a.memory.take(size)
 	f.add(1, n)
 	f.add(1, d)
-	a.f = split(f)
-	size := a.degree + 1
-	all := newIntervalPoly(4 * size)
-	part := func(i int) intervalPoly {
-		return intervalPoly{all.c[i*size : (i+1)*size : (i+1)*size], all.e[i*size : (i+1)*size : (i+1)*size]}
-	}
-	a.nn, a.dd, a.re, a.im = part(0), part(1), part(2), part(3)
+	a.f = a.split(f)
+	a.whole = f
+	a.nn, a.dd, a.re, a.im = a.memory.take(size), a.memory.take(size), a.memory.take(size), a.memory.take(size)
 	a.n.addSquare(a.nn)
 	a.d.addSquare(a.dd)
 	a.re.addProduct(1, a.n.even, a.d.even, 0)
@@ -168,11 +168,12 @@ func logarithm(x float64) float64 {
 // scaledCoefficients returns the coefficients of p in the variable jv, by power, without
 // the alternating signs of j, with the exponents of the largest and the smallest that is not
 // zero; they are divided by 2^top. It is not ok if one is out of range.
-func scaledCoefficients(p poly.Poly, shift int) (q intervalPoly, top, bottom int, ok bool) {
+func (a *axisForm) scaledCoefficients(p poly.Poly, shift int) (q intervalPoly, top, bottom int, ok bool) {
 	deg := p.Degree()
-	q = newIntervalPoly(deg + 1)
+	q = a.memory.take(deg + 1)
 	top, bottom = math.MinInt32, math.MaxInt32
-	descending := make([]float64, deg+1)
+	var array [maxFastDegree + 1]float64
+	descending := array[:deg+1]
 	for k := 0; k <= deg; k++ {
 		c := p.Coefficient(k)
 		descending[deg-k] = c
@@ -218,9 +219,9 @@ func (p intervalPoly) shift(e int) {
 }
 
 // split parts a polynomial in jv into real polynomials in x.
-func split(p intervalPoly) halves {
-	even := newIntervalPoly((len(p.c) + 1) / 2)
-	odd := newIntervalPoly(len(p.c) / 2)
+func (a *axisForm) split(p intervalPoly) halves {
+	even := a.memory.take((len(p.c) + 1) / 2)
+	odd := a.memory.take(len(p.c) / 2)
 	for i, c := range p.c {
 		if i&2 != 0 {
 			c = -c
@@ -284,18 +285,18 @@ func (p intervalPoly) evaluate(x float64) halfValue {
 	return halfValue{valueBound{y, (e+3*unitRoundoff*m)*(1+float64(4*len(p.c))*unitRoundoff) + minNormal}, dy}
 }
 
-// An axisPoint holds N, D and F at one x.
+// An axisPoint holds N and D at one x.
 type axisPoint struct {
-	x                      float64
-	ne, no, de, do, fe, fo halfValue
+	a              *axisForm
+	x              float64
+	ne, no, de, do halfValue
 }
 
 func (a *axisForm) at(x float64) axisPoint {
 	return axisPoint{
-		x:  x,
+		a: a, x: x,
 		ne: a.n.even.evaluate(x), no: a.n.odd.evaluate(x),
 		de: a.d.even.evaluate(x), do: a.d.odd.evaluate(x),
-		fe: a.f.even.evaluate(x), fo: a.f.odd.evaluate(x),
 	}
 }
 
@@ -317,7 +318,9 @@ func product(a, b, c, d halfValue, f float64) halfValue {
 
 func (p *axisPoint) nn() halfValue { return square(p.ne, p.no, p.x) } // |N|²
 func (p *axisPoint) dd() halfValue { return square(p.de, p.do, p.x) } // |D|²
-func (p *axisPoint) ff() halfValue { return square(p.fe, p.fo, p.x) } // |F|²
+func (p *axisPoint) ff() halfValue { // |F|²
+	return square(p.a.f.even.evaluate(p.x), p.a.f.odd.evaluate(p.x), p.x)
+}
 
 // re returns Re N·conj D, im the part of Im N·conj D that is multiplied by v.
 func (p *axisPoint) re() halfValue {

@@ -95,14 +95,20 @@ type bigPoly []*big.Float
 
 // inDigits converts p; the precision covers the longest coefficient and the digits beyond.
 func inDigits(p exact.Poly) bigPoly {
-	c, exponent := p.Integers()
+	c, _ := p.Integers()
 	longest := 0
 	for _, x := range c {
 		longest = max(longest, x.BitLen())
 	}
+	return inBits(p, uint(2*longest+digits))
+}
+
+// inBits converts p to a given precision.
+func inBits(p exact.Poly, prec uint) bigPoly {
+	c, exponent := p.Integers()
 	q := make(bigPoly, len(c))
 	for i, x := range c {
-		f := new(big.Float).SetPrec(uint(2*longest + digits)).SetInt(x)
+		f := new(big.Float).SetPrec(prec).SetInt(x)
 		q[i] = f.SetMantExp(f, exponent)
 	}
 	return q
@@ -277,12 +283,21 @@ func (p exactPoint) ratio() float64 {
 	return float(d.Quo(d, n).Sqrt(d))
 }
 
-// frequency returns ω at v.
-func (e *exactAxis) frequency(v *big.Float) float64 {
-	if e.a.period != 0 {
-		return 2 * math.Atan(float(v)) / e.a.period
+// frequencyOf returns ω at v, the unit being 1.
+func (a *axisForm) frequencyOf(v *big.Float) float64 { return a.frequencyAt(float(v)) }
+
+// turnBack returns arg(-g) in (-π, π], dead time included.
+func (a *axisForm) turnBack(p exactPoint) float64 {
+	re, im := p.minusProduct()
+	m := math.Atan2(im, re)
+	if a.deadTime > 0 {
+		turn := new(big.Float).SetPrec(p.v.Prec()).SetFloat64(a.deadTime)
+		m = wrap(m - reduceTurn(turn.Mul(turn, p.v)))
 	}
-	return float(v)
+	if m <= -math.Pi {
+		m = math.Pi
+	}
+	return m
 }
 
 func (e *exactAxis) gainCrossovers() ([]Crossover, error) {
@@ -293,15 +308,7 @@ func (e *exactAxis) gainCrossovers() ([]Crossover, error) {
 	var found []Crossover
 	for _, x := range positiveRoots(g) {
 		p := e.at(x)
-		re, im := p.minusProduct()
-		m := math.Atan2(im, re)
-		if e.a.deadTime > 0 {
-			m = e.minusTurn(m, p.v)
-		}
-		if m <= -math.Pi {
-			m = math.Pi
-		}
-		found = append(found, Crossover{e.frequency(p.v), m})
+		found = append(found, Crossover{e.a.frequencyOf(p.v), e.a.turnBack(p)})
 	}
 	if e.a.period != 0 && g.Degree() < e.degree() {
 		// |g| = 1 at z = -1, where g is real.
@@ -316,14 +323,6 @@ func (e *exactAxis) gainCrossovers() ([]Crossover, error) {
 
 // degree of |N|² and |D|² in x, formally.
 func (e *exactAxis) degree() int { return max(e.nn.Degree(), e.dd.Degree()) }
-
-// minusTurn returns the angle m less v·deadTime, in (-π, π], the turn reduced with all
-// digits.
-func (e *exactAxis) minusTurn(m float64, v *big.Float) float64 {
-	turn := new(big.Float).SetPrec(v.Prec()).SetFloat64(e.a.deadTime)
-	turn.Mul(turn, v)
-	return wrap(m - reduceTurn(turn))
-}
 
 // reduceTurn returns x - 2πk in [-π, π], rounded once.
 func reduceTurn(x *big.Float) float64 {
@@ -364,7 +363,7 @@ func (e *exactAxis) phaseCrossovers() ([]Crossover, error) {
 	for _, x := range positiveRoots(im) {
 		p := e.at(x)
 		if re, _ := p.minusProduct(); re > 0 {
-			found = append(found, Crossover{e.frequency(p.v), p.ratio()})
+			found = append(found, Crossover{e.a.frequencyOf(p.v), p.ratio()})
 		}
 	}
 	if e.a.period != 0 {

@@ -24,8 +24,6 @@ type Margins struct {
 
 	SensitivityPeak     float64 // supremum over frequency of |1/(1+L)|; +Inf with a closed-loop pole on the boundary
 	SensitivityPeakAt   float64 // rad/s; 0 or +Inf where it is only approached
-	ComplementaryPeak   float64 // supremum of |L/(1+L)|
-	ComplementaryPeakAt float64 // rad/s, likewise
 
 	// GainIncrease is the smallest gain margin above 1, at any frequency with 0 and +Inf
 	// included: a stable loop stays stable until its gain has grown by this ratio. +Inf for a
@@ -76,30 +74,36 @@ func (a *axisForm) margins(upTo float64) (Margins, error) {
 		tail = d.tail
 	}
 	m.account(a.marginAtZero())
-	s, err := a.closedLoopPeak(sensitivityCurve, tail)
+	var s Peak
+	if a.deadTime == 0 {
+		s, err = a.peak(sensitivityCurve)
+	} else {
+		s, err = a.delayedPeak(sensitivityCurve, tail)
+	}
 	if err != nil {
 		return Margins{}, err
 	}
 	m.SensitivityPeak, m.SensitivityPeakAt = s.Magnitude, s.Frequency
-	t, err := a.closedLoopPeak(complementaryCurve, tail)
-	if err != nil {
-		return Margins{}, err
-	}
-	m.ComplementaryPeak, m.ComplementaryPeakAt = t.Magnitude, t.Frequency
 	m.PhaseMargin = smallestPhase(m.GainCrossovers)
 	m.Delay = a.delayMargin(m.GainCrossovers, m.Stable)
 	if m.Stable != poly.Holds {
-		if math.IsInf(m.GainIncrease, 1) {
-			m.GainIncrease = math.NaN()
-		}
-		if m.GainDecrease == 0 {
-			m.GainDecrease = math.NaN()
-		}
-		if math.IsInf(m.PhaseMargin, 1) {
-			m.PhaseMargin = math.NaN()
-		}
+		m.withdraw()
 	}
 	return m, nil
+}
+
+// withdraw takes back what would claim safety for a loop that is not proven stable.
+func (m *Margins) withdraw() {
+	m.Delay = 0
+	if math.IsInf(m.GainIncrease, 1) {
+		m.GainIncrease = math.NaN()
+	}
+	if m.GainDecrease == 0 {
+		m.GainDecrease = math.NaN()
+	}
+	if math.IsInf(m.PhaseMargin, 1) {
+		m.PhaseMargin = math.NaN()
+	}
 }
 
 // account takes a gain margin into the two that are nearest to 1.
@@ -112,11 +116,16 @@ func (m *Margins) account(margin float64) {
 	}
 }
 
-func (a *axisForm) closedLoopPeak(c curve, tail float64) (Peak, error) {
+// closedLoopPeak returns the supremum of |D/F| or |N/F|.
+func (a *axisForm) closedLoopPeak(c curve) (Peak, error) {
 	if a.deadTime == 0 {
 		return a.peak(c)
 	}
-	return a.delayedPeak(c, tail)
+	d, err := a.delayedPhaseCrossovers(0)
+	if err != nil {
+		return Peak{}, err
+	}
+	return a.delayedPeak(c, d.tail)
 }
 
 // smallestPhase returns the margin of least magnitude, +Inf if there is none.
@@ -146,18 +155,116 @@ func (a *axisForm) delayMargin(list []Crossover, stable poly.Verdict) float64 {
 	return least
 }
 
-// Margins returns the margins of the loop. A loop whose |L| is 1 at every frequency, or whose
-// L is real and negative over a whole range of frequencies, gets a [*DegenerateError]; what
-// [Loop.Open] refuses is refused.
+// Margins returns the margins of the loop. A loop whose |L| is 1 at every frequency, whose L is
+// -1 at every frequency, or real and negative over a whole range of them, gets a
+// [*DegenerateError]; what [Loop.Open] refuses is refused. A prefilter stands outside the loop, but
+// an unstable one fails Stable.
 func (l Loop) Margins(opt ...Option) (Margins, error) {
-	open, err := l.Open()
+	const call = "tf.Loop.Margins"
+	o, err := l.openForm(call)
 	if err != nil {
 		return Margins{}, err
 	}
-	return open.axis().margins(0)
+	upTo, err := settingsOf(opt).crossoversUpTo(call)
+	if err != nil {
+		return Margins{}, err
+	}
+	m, err := o.margins(upTo)
+	if err != nil || m.Stable == poly.Fails {
+		return m, err
+	}
+	if v, err := l.prefilterStable(); err != nil {
+		return Margins{}, err
+	} else if v != poly.Holds {
+		m.Stable = v
+		m.withdraw()
+	}
+	return m, nil
+}
+
+// openForm makes the open loop ready.
+func (l Loop) openForm(call string) (*axisForm, error) {
+	open, err := l.Open()
+	if err != nil {
+		return nil, err
+	}
+	return open.axis(call)
+}
+
+// prefilterStable tells whether the poles of the prefilter lie in the region of stability.
+func (l Loop) prefilterStable() (poly.Verdict, error) {
+	if l.Prefilter.isWire() || l.Prefilter.Denominator().Degree() < 1 {
+		return poly.Holds, nil
+	}
+	a := newAxisForm(poly.Poly{}, l.Prefilter.Denominator(), 0, l.Prefilter.Period())
+	return a.stable(), nil
 }
 
 // axis returns g ready for questions on frequency.
-func (g Function) axis() *axisForm {
-	return newAxisForm(g.Numerator(), g.Denominator(), g.DeadTime(), g.Period())
+func (g Function) axis(call string) (*axisForm, error) {
+	if g.err != nil {
+		return nil, g.err
+	}
+	if g.period == 0 {
+		return newAxisForm(g.Numerator(), g.Denominator(), g.DeadTime(), 0), nil
+	}
+	h, err := g.Rational()
+	if err != nil {
+		return nil, err
+	}
+	if h.Numerator().Degree() > h.Denominator().Degree() {
+		return nil, badArgument(call, "loop", "is not causal: the numerator in z has degree %d, the denominator %d", h.Numerator().Degree(), h.Denominator().Degree())
+	}
+	return newAxisForm(h.Numerator(), h.Denominator(), 0, g.period), nil
+}
+
+// GainCrossovers returns every frequency > 0, ascending, at which |L| = 1, with the signed
+// phase margin there, as [Margins] has them. It takes less time than all margins.
+func (l Loop) GainCrossovers() ([]Crossover, error) {
+	a, err := l.openForm("tf.Loop.GainCrossovers")
+	if err != nil {
+		return nil, err
+	}
+	return a.gainCrossovers()
+}
+
+// SensitivityPeak returns the supremum of |1/(1+L)| over frequency.
+func (l Loop) SensitivityPeak() (Peak, error) {
+	a, err := l.openForm("tf.Loop.SensitivityPeak")
+	if err != nil {
+		return Peak{}, err
+	}
+	return a.closedLoopPeak(sensitivityCurve)
+}
+
+// ComplementaryPeak returns the supremum of |L/(1+L)| over frequency.
+func (l Loop) ComplementaryPeak() (Peak, error) {
+	a, err := l.openForm("tf.Loop.ComplementaryPeak")
+	if err != nil {
+		return Peak{}, err
+	}
+	return a.closedLoopPeak(complementaryCurve)
+}
+
+// CrossoversUpTo makes [Loop.Margins] list the phase crossovers of a loop with dead time up to
+// this frequency, rad/s, instead of down to |L| = 0.02. It must be positive and finite; a list
+// does not grow beyond twenty thousand, and CompleteTo says how far it goes.
+func CrossoversUpTo(frequency float64) Option {
+	return func(s *settings) { s.upTo, s.upToGiven = frequency, true }
+}
+
+func settingsOf(opt []Option) (s settings) {
+	for _, o := range opt {
+		if o != nil {
+			o(&s)
+		}
+	}
+	return s
+}
+
+func (s settings) crossoversUpTo(call string) (float64, error) {
+	if s.upToGiven && !(s.upTo > 0 && !math.IsInf(s.upTo, 1)) {
+		return 0, badArgument(call, "CrossoversUpTo", "%v is not a positive finite frequency", s.upTo)
+	}
+	return s.upTo, nil
 }

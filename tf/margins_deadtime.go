@@ -152,7 +152,7 @@ func (a *axisForm) directedCrossings() ([]directedCrossing, bool) {
 			if m <= -math.Pi {
 				m = math.Pi
 			}
-			found = append(found, directedCrossing{e.frequency(p.v), m, false, f.Multiplicity&1 == 0})
+			found = append(found, directedCrossing{e.a.frequencyOf(p.v), m, false, f.Multiplicity&1 == 0})
 		}
 	}
 	sortBy(found, func(c directedCrossing) float64 { return c.frequency })

@@ -18,9 +18,7 @@ type halfPlaneCount struct {
 // countRight counts the roots of N + D in the right half-plane and on the axis.
 func (a *axisForm) countRight() halfPlaneCount {
 	if a.ok {
-		f := newIntervalPoly(a.degree + 1)
-		joinInto(f, a.f)
-		if right, ok := routh(f); ok {
+		if right, ok := routh(a.whole, a.memory); ok {
 			return halfPlaneCount{right: right}
 		}
 	}
@@ -29,35 +27,19 @@ func (a *axisForm) countRight() halfPlaneCount {
 	return halfPlaneCount{right: c.Outside, axis: c.Boundary + a.degree - f.Degree()}
 }
 
-// joinInto writes the coefficients by power of the polynomial in s whose halves h are.
-func joinInto(p intervalPoly, h halves) {
-	for i := range h.even.c {
-		p.c[2*i], p.e[2*i] = h.even.c[i], h.even.e[i]
-		if i&1 != 0 {
-			p.c[2*i] = -p.c[2*i]
-		}
-	}
-	for i := range h.odd.c {
-		p.c[2*i+1], p.e[2*i+1] = h.odd.c[i], h.odd.e[i]
-		if i&1 != 0 {
-			p.c[2*i+1] = -p.c[2*i+1]
-		}
-	}
-}
-
 // routh counts the roots with positive real part by the signs of the first column of Routh's
 // table, and is ok only if every one of them is proven. The degree is that of the slice: a
 // leading coefficient that may be zero is not ok.
 //
 // Source: F. R. Gantmacher, The Theory of Matrices, vol. 2, Chelsea 1959, chapter XV, § 3;
 // bounds on the errors are carried along.
-func routh(p intervalPoly) (right int, ok bool) {
+func routh(p intervalPoly, memory slab) (right int, ok bool) {
 	n := len(p.c) - 1
 	if n < 0 {
 		return 0, false
 	}
 	size := n/2 + 1
-	work := newIntervalPoly(2 * size)
+	work := memory.takeZero(2 * size)
 	upper := intervalPoly{work.c[:size], work.e[:size]}
 	lower := intervalPoly{work.c[size:], work.e[size:]}
 	for i := range size {

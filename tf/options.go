@@ -3,4 +3,7 @@ package tf
 // An Option adjusts a call of this package; the zero number of options is the tested default.
 type Option func(*settings)
 
-type settings struct{}
+type settings struct {
+	upTo      float64 // rad/s, of CrossoversUpTo
+	upToGiven bool
+}

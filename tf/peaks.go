@@ -51,13 +51,14 @@ func (a *axisForm) peakFast(c curve) (best Peak, ok bool) {
 	case resonanceCurve:
 		top, bottom = a.dd, a.nn
 	}
+	memory := a.memory
 	m := bottom
 	if c != resonanceCurve {
-		m = newIntervalPoly(len(bottom.c))
+		m = memory.takeZero(len(bottom.c))
 		m.add(1, bottom)
 		m.add(2, a.re)
 	}
-	w := newIntervalPoly(2*len(bottom.c) + 1)
+	w := memory.takeZero(2*len(bottom.c) + 1)
 	w.addWronskian(m, top)
 	ends := c.ends(a)
 	if math.IsNaN(ends[0]) || math.IsNaN(ends[1]) {
@@ -69,20 +70,33 @@ func (a *axisForm) peakFast(c curve) (best Peak, ok bool) {
 	if len(trimmed.c) == 0 {
 		return best, true
 	}
-	brackets, ok := w.positiveRoots()
+	brackets, ok := w.positiveRoots(memory)
 	if !ok {
 		return Peak{}, false
 	}
 	for _, b := range brackets {
+		// Only where the magnitude has a maximum: the derivative of its inverse square goes
+		// from negative to positive there, that of |N|²/|D|² the other way.
+		if (b.below > 0) != (c == resonanceCurve) {
+			continue
+		}
 		r, ok := a.refine(b, c, w)
+		if ok {
+			n, d := c.magnitudes(a.at(r.x))
+			if d.e < acceptMargin*d.v && (n.e < acceptMargin*n.v || n.v <= 0x1p-40*d.v) {
+				best.better(Peak{math.Sqrt(n.v / d.v), a.frequency(r.x)})
+				continue
+			}
+		}
+		q, ok := a.precisely().refine(b, r.x, c)
 		if !ok {
 			return Peak{}, false
 		}
-		n, d := c.magnitudes(a.at(r.x))
-		if !(d.e < acceptMargin*d.v) || !(n.e < acceptMargin*n.v) && n.v > 0x1p-40*d.v {
+		m := q.magnitudeRatio(c)
+		if m > 0x1p60 { // a pole on the axis, perhaps
 			return Peak{}, false
 		}
-		best.better(Peak{math.Sqrt(n.v / d.v), a.frequency(r.x)})
+		best.better(Peak{m, a.frequencyOf(q.point().v)})
 	}
 	return best, true
 }
@@ -174,7 +188,7 @@ func (e *exactAxis) peak(c curve) (Peak, error) {
 	end(top.Coefficient(k), bottom.Coefficient(k), e.a.lastFrequency())
 	for _, x := range positiveRoots(bottom) {
 		v := new(big.Float).SetPrec(x.Prec()).Sqrt(x)
-		best.better(Peak{math.Inf(1), e.frequency(v)})
+		best.better(Peak{math.Inf(1), e.a.frequencyOf(v)})
 	}
 	if math.IsInf(best.Magnitude, 1) {
 		return best, nil
@@ -182,7 +196,7 @@ func (e *exactAxis) peak(c curve) (Peak, error) {
 	w := top.Derivative().Mul(bottom).Sub(top.Mul(bottom.Derivative()))
 	for _, x := range positiveRoots(w) {
 		v := new(big.Float).SetPrec(x.Prec()).Sqrt(x)
-		at(x, e.frequency(v))
+		at(x, e.a.frequencyOf(v))
 	}
 	return best, nil
 }
