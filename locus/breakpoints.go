@@ -1,7 +1,6 @@
 package locus
 
 import (
-	"math/big"
 	"slices"
 
 	"github.com/polewright/polewright/internal/exact"
@@ -72,6 +71,10 @@ func (r reduced) breakPoints(call string) ([]BreakPoint, error) {
 	return points, nil
 }
 
+// gainBits is how many bits of the gain of a candidate are computed before exact arithmetic
+// decides whether it is real.
+const gainBits = 120
+
 // realGains returns the roots of the square-free p, which are none of A or B, at which the gain
 // is real.
 func (r reduced) realGains(call string, p exact.Poly, order int) ([]BreakPoint, error) {
@@ -79,31 +82,62 @@ func (r reduced) realGains(call string, p exact.Poly, order int) ([]BreakPoint, 
 	if err != nil {
 		return nil, err
 	}
-	var points []BreakPoint
-	for _, root := range roots {
-		s, a, err := root.value(call, r.a, 130)
+	points, gains := make([]complex128, len(roots)), make([]bigComplex, len(roots))
+	for i, root := range roots {
+		s, a, err := root.value(call, r.a, gainBits+10)
 		if err != nil {
 			return nil, err
 		}
-		_, b, err := root.value(call, r.b, 130)
+		_, b, err := root.value(call, r.b, gainBits+10)
 		if err != nil {
 			return nil, err
 		}
 		k := quotientBig(a, b, 192)
-		point := BreakPoint{S: number(s), Gain: -toFloat(k.re), Order: order}
-		if root.real {
-			points = append(points, point)
-			continue
-		}
-		// Both values have 130 correct bits, so k has 127.
-		if exponent(k.im) > exponent(k.re)-120 || !r.provenReal(p, k.re) {
-			continue
-		}
-		points = append(points, BreakPoint{complex(real(point.S), -imag(point.S)), point.Gain, order}, point)
+		k.re.Neg(k.re)
+		k.im.Neg(k.im)
+		points[i], gains[i] = number(s), k
 	}
-	return points, nil
+	var (
+		found []BreakPoint
+		exist exact.Poly // its roots are the gains, computed when it is needed
+	)
+	for i, root := range roots {
+		point := BreakPoint{points[i], toFloat(gains[i].re), order}
+		if root.real {
+			found = append(found, point)
+			continue
+		}
+		if exponent(gains[i].im) > exponent(gains[i].re)-gainBits {
+			continue
+		}
+		if exist.IsZero() {
+			exist = exact.GainPolynomial(p, r.a, r.b)
+		}
+		if !provenReal(exist, roots, gains, i) {
+			continue
+		}
+		found = append(found, BreakPoint{complex(real(point.S), -imag(point.S)), point.Gain, order}, point)
+	}
+	return found, nil
 }
 
-// provenReal decides whether a root of p, whose gain -k is real to about 120 bits, has a real
-// gain.
-func (r reduced) provenReal(p exact.Poly, k *big.Float) bool { return true }
+// provenReal decides whether the gain of roots[i], which is real to gainBits, is real: all of the
+// gains within a small disc about a real number are so if and only if their polynomial has as
+// many real roots there.
+func provenReal(exist exact.Poly, roots []preciseRoot, gains []bigComplex, i int) bool {
+	center := gains[i].re
+	reach := exponent(center) - gainBits + 8
+	within := 0
+	for j, k := range gains {
+		d := newFloat(192).Sub(k.re, center)
+		if exponent(d) < reach && exponent(k.im) < reach {
+			within++
+			if !roots[j].real {
+				within++ // the conjugate
+			}
+		}
+	}
+	at, radius := dyadic(center), exact.PowerOfTwo(reach)
+	_, real := exist.CountReal(at.Sub(radius), at.Add(radius), exact.Open)
+	return real == within
+}
