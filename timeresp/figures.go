@@ -26,12 +26,28 @@ type Figures struct {
 // noExcursion is the excursion beyond the final value, as a fraction of it, that counts as none.
 const noExcursion = 1e-9
 
+// A curve is a signal as the figures look at it, by scaled time from its start at τ = 0. It
+// is smooth within a cell; at the end of one it may jump.
+type curve interface {
+	// node fills n with the signal just after τ, or just before it.
+	node(tau float64, before bool, n *node)
+	// fourth bounds |y⁗| between two nodes of one cell.
+	fourth(a, b *node) float64
+	// cellEnd returns where a cell that starts at τ must end at the latest, and cellStart
+	// where one that ends there must start at the earliest.
+	cellEnd(tau float64) float64
+	cellStart(tau float64) float64
+	// horizon returns the τ from which on the spread of nodes bounds what is still to come.
+	horizon() float64
+}
+
 // A node is the signal at one instant, by scaled time.
 type node struct {
 	t       float64
 	y, d, c float64 // value, first and second derivative
 	spread  float64 // bound on |y - limit| from here on
-	fourth  float64 // bound on |y⁗| from here on
+	fourth  float64 // bound on |y⁗| from here on, at least up to the end of the cell
+	step    float64 // a length of cell over which the cubic misses the signal by some per cent of its spread
 }
 
 // cell holds a signal between two nodes as a cubic with a proven error. Errors of cubic
@@ -62,7 +78,7 @@ func enclose(a, b *node, fourth float64) (c cell) {
 
 // A scan reads figures off one kernel, divided by the final value.
 type scan struct {
-	k       *kernel
+	curve   curve
 	inverse float64 // of the final value
 	levels  [4]float64
 	reached [4]float64 // τ of the first crossing; NaN
@@ -77,20 +93,20 @@ type scan struct {
 const maxDepth = 60
 
 func (s *scan) node(tau float64) (n node) {
-	s.k.node(tau, &n)
+	s.fill(tau, false, &n)
+	return n
+}
+
+func (s *scan) fill(tau float64, before bool, n *node) {
+	s.curve.node(tau, before, n)
 	n.y *= s.inverse
 	n.d *= s.inverse
 	n.c *= s.inverse
 	n.spread *= math.Abs(s.inverse)
-	n.fourth *= math.Abs(s.inverse)
-	return n
 }
 
 func (s *scan) fourth(a, b *node) float64 {
-	if b.t <= s.k.earlyEnd {
-		return s.k.earlyFourth(a.t, b.t) * math.Abs(s.inverse)
-	}
-	return a.fourth
+	return s.curve.fourth(a, b) * math.Abs(s.inverse)
 }
 
 // see takes note of the signal at one node.
@@ -257,14 +273,15 @@ func (r *Response) Figures(band float64) (Figures, error) {
 	if r.final == 0 {
 		return f, nil
 	}
-	a := &r.arcs[len(r.arcs)-1]
-	s := scan{k: a.signal, inverse: 1 / r.final, levels: [4]float64{0.1, 0.5, 0.9, 1}, band: band}
+	c, w := r.curve()
+	start := r.arcs[0].from
+	s := scan{curve: c, inverse: 1 / r.final, levels: [4]float64{0.1, 0.5, 0.9, 1}, band: band}
 	for i := range s.reached {
 		s.reached[i] = nan
 	}
 	s.most, s.mostAt, s.least, s.leastAt = 1+noExcursion, nan, -noExcursion, nan
 	s.run()
-	seconds := func(tau float64) float64 { return a.from + tau/a.signal.w }
+	seconds := func(tau float64) float64 { return start + tau/w }
 	f.Overshoot, f.Undershoot = 0, 0
 	if s.mostAt == s.mostAt {
 		f.Overshoot, f.PeakTime, f.PeakValue = s.most-1, seconds(s.mostAt), s.most*r.final
@@ -274,49 +291,48 @@ func (r *Response) Figures(band float64) (Figures, error) {
 		f.Undershoot, f.UndershootTime = -s.least, seconds(s.leastAt)
 	}
 	f.Reach10, f.DelayTime, f.Reach90 = seconds(s.reached[0]), seconds(s.reached[1]), seconds(s.reached[2])
-	f.RiseTime = (s.reached[2] - s.reached[0]) / a.signal.w
+	f.RiseTime = (s.reached[2] - s.reached[0]) / w
 	f.SettlingTime = seconds(s.settle())
 	return f, nil
 }
 
-// run looks from t = 0 on until nothing is left to be found.
+// run looks from the start on until nothing is left to be found.
 func (s *scan) run() {
-	a := s.node(0)
+	var a, b node
+	s.fill(0, false, &a)
 	s.see(&a)
+	horizon := s.curve.horizon()
 	for {
-		if s.next >= 3 && a.spread <= s.most-1 && a.spread <= 1-s.least {
+		if a.t >= horizon && s.next >= 3 && a.spread <= s.most-1 && a.spread <= 1-s.least {
 			return
 		}
-		h := 1.0
-		if a.t >= s.k.earlyEnd {
-			h = stepFor(&a)
-			if math.IsInf(h, 1) {
-				return
-			}
+		end := s.curve.cellEnd(a.t)
+		if math.IsInf(end, 1) && math.IsInf(a.step, 1) {
+			return
 		}
-		b := s.node(min(a.t+h, s.k.cellEnd(a.t)))
+		if a.t+a.step < end {
+			s.fill(a.t+a.step, false, &b)
+			s.forward(&a, &b, 0)
+			a = b
+			continue
+		}
+		s.fill(end, true, &b)
 		s.forward(&a, &b, 0)
-		a = b
+		s.fill(end, false, &a)
+		s.see(&a)
 	}
-}
-
-// stepFor returns a step over which the cubic misses the signal by about 2 % of the spread.
-func stepFor(a *node) float64 {
-	return math.Sqrt(math.Sqrt(384 * 0.02 * a.spread / a.fourth))
 }
 
 // settle returns the last entry into the band.
 func (s *scan) settle() float64 {
 	// The horizon: from there on the modes together cannot leave the band.
-	n := s.node(s.k.earlyEnd)
+	horizon := s.curve.horizon()
+	n := s.node(horizon)
 	if n.spread > s.band {
 		lo, hi := n.t, max(n.t, 1)
-		for {
-			hi *= 2
-			if s.node(hi).spread <= s.band {
-				break
-			}
+		for s.node(hi).spread > s.band {
 			lo = hi
+			hi *= 2
 		}
 		for range 12 {
 			m := lo + (hi-lo)/2
@@ -328,17 +344,18 @@ func (s *scan) settle() float64 {
 		}
 		n = s.node(hi)
 	}
-	b := n
-	for b.t > 0 {
-		h := 1.0
-		if b.t > s.k.earlyEnd {
-			h = min(stepFor(&b), b.t-s.k.earlyEnd)
+	outside := func(n *node) bool { return !(math.Abs(n.y-1) <= s.band) }
+	for n.t > 0 {
+		var a, b node
+		s.fill(n.t, true, &b)
+		if outside(&b) {
+			return n.t
 		}
-		a := s.node(max(b.t-h, s.k.cellStart(b.t)))
-		if n, found := s.backward(&a, &b, 0); found {
-			return n
+		s.fill(max(b.t-b.step, s.curve.cellStart(b.t)), false, &a)
+		if t, found := s.backward(&a, &b, 0); found {
+			return t
 		}
-		b = a
+		n = a
 	}
 	return 0
 }

@@ -56,7 +56,7 @@ func readHard(t testing.TB) []hardCase {
 }
 
 func TestHardCases(t *testing.T) {
-	inputs := map[string]factor{"step": stepFactor, "impulse": impulseFactor, "ramp": rampFactor}
+	inputs := map[string]Input{"step": unitStep, "impulse": unitImpulse, "ramp": unitRamp}
 	for _, c := range readHard(t) {
 		t.Run(c.ID, func(t *testing.T) {
 			num, den := c.polynomials(t)

@@ -252,7 +252,7 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 // taylorWeights returns h^k/k!.
 func taylorWeights() []wide { return weightTable[:] }
 
-var weightTable = func() (t [128]wide) {
+var weightTable = func() (t [1100]wide) {
 	t[0] = wide{1, 0}
 	for i := 1; i < len(t); i++ {
 		t[i] = t[i-1].mulFloat(earlyStep).div(wide{float64(i), 0})

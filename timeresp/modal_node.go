@@ -22,7 +22,7 @@ func (k *kernel) limit() float64 {
 }
 
 // node fills n with the signal at τ.
-func (k *kernel) node(tau float64, n *node) {
+func (k *kernel) node(tau float64, _ bool, n *node) {
 	n.t = tau
 	if tau < k.earlyEnd {
 		k.earlyNode(tau, n)
@@ -33,13 +33,44 @@ func (k *kernel) node(tau float64, n *node) {
 		return
 	}
 	k.modalNode(tau, n)
+	n.suggest()
+}
+
+// suggest sets the step over which the cubic misses the signal by about 2 % of the spread.
+func (n *node) suggest() {
+	n.step = math.Sqrt(math.Sqrt(384 * 0.02 * n.spread / n.fourth))
+	if n.fourth == 0 {
+		n.step = math.Inf(1)
+	}
+}
+
+// horizon is where the early polynomials end.
+func (k *kernel) horizon() float64 { return k.earlyEnd }
+
+func (k *kernel) fourth(a, b *node) float64 {
+	if b.t <= k.earlyEnd {
+		return k.earlyFourth(a.t, b.t)
+	}
+	return a.fourth
 }
 
 // modalNode is node on the sum of the modes.
 func (k *modal) modalNode(tau float64, n *node) {
 	n.y, n.d, n.c, n.spread, n.fourth = 0, 0, 0, 0, 0
-	if len(k.drift) > 0 {
+	switch len(k.drift) {
+	case 0:
+	case 1:
 		n.y = k.drift[0]
+	default:
+		for i := len(k.drift) - 1; i >= 0; i-- {
+			n.c = n.c*tau + 2*n.d
+			n.d = n.d*tau + n.y
+			n.y = n.y*tau + k.drift[i]
+		}
+		for i := len(k.drift) - 1; i >= 4; i-- {
+			f := float64(i)
+			n.fourth += f * (f - 1) * (f - 2) * (f - 3) * math.Abs(k.drift[i]) * math.Pow(2*tau, f-4)
+		}
 	}
 	for i := range k.modes {
 		m := &k.modes[i]
@@ -136,7 +167,7 @@ func (k *kernel) earlyNode(tau float64, n *node) {
 		y, d, s = p1*x*y, p1*(x*d+r*y), p1*(x*s+2*r*d)+r*(r-1)*p2*y
 	}
 	n.y, n.d, n.c = y, d*(1/earlyStep), s*(1/(earlyStep*earlyStep))
-	n.spread, n.fourth = math.Inf(1), math.Inf(1)
+	n.spread, n.fourth, n.step = math.Inf(1), math.Inf(1), earlyStep/2
 }
 
 // earlyFourth bounds |y⁗| between a and b, which lie in one piece.

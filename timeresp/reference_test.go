@@ -116,7 +116,7 @@ func TestReferenceCases(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			r, err := rational("test", num, den, roots, stepFactor, 0)
+			r, err := rational("test", num, den, roots, unitStep, 0)
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -125,12 +125,12 @@ func TestReferenceCases(t *testing.T) {
 				checkFigure(t, "Final", r.final, c.Final)
 				checkFigures(t, r, c.Figures)
 			}
-			r, err = rational("test", num, den, roots, impulseFactor, 0)
+			r, err = rational("test", num, den, roots, unitImpulse, 0)
 			if err != nil {
 				t.Fatal(err)
 			}
 			checkValues(t, "impulse", r, c.Times, c.Impulse)
-			r, err = rational("test", num, den, roots, rampFactor, 0)
+			r, err = rational("test", num, den, roots, unitRamp, 0)
 			if err != nil {
 				t.Fatal(err)
 			}

@@ -10,39 +10,39 @@ import (
 // A Response is a signal over all time: zero before t = 0, then known at every t, not only
 // at samples. It never changes; goroutines may share one.
 type Response struct {
-	arcs  []arc
+	arcs  []arc   // by the instant they begin at; the signal is their sum
 	final float64 // the limit for t → ∞; NaN if there is none
-	dirac float64
+	dirac []float64
 }
 
-// An arc is the signal from one instant to the start of the next arc.
+// An arc is a summand of the signal, zero before from.
 type arc struct {
 	from   float64 // s
 	signal *kernel
 }
 
 var (
-	impulseFactor = factor{num: []float64{1}}
-	stepFactor    = factor{num: []float64{1}, zeros: 1}
-	rampFactor    = factor{num: []float64{1}, zeros: 2}
+	unitStep    = StepInput(1)
+	unitImpulse = ImpulseInput(1)
+	unitRamp    = RampInput(1)
 )
 
 // Step returns the response of g to a unit step at t = 0, g at rest before.
 func Step(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Step", g, stepFactor)
+	return respond("timeresp.Step", g, unitStep)
 }
 
 // Impulse returns the response of g to a unit Dirac impulse at t = 0.
 func Impulse(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Impulse", g, impulseFactor)
+	return respond("timeresp.Impulse", g, unitImpulse)
 }
 
 // Ramp returns the response of g to the input t, from t = 0 on.
 func Ramp(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Ramp", g, rampFactor)
+	return respond("timeresp.Ramp", g, unitRamp)
 }
 
-func respond(call string, g tf.Function, in factor) (*Response, error) {
+func respond(call string, g tf.Function, in Input) (*Response, error) {
 	if err := g.Err(); err != nil {
 		return nil, err
 	}
@@ -56,48 +56,75 @@ func respond(call string, g tf.Function, in factor) (*Response, error) {
 	return rational(call, g.Numerator(), g.Denominator(), roots, in, g.DeadTime())
 }
 
-func rational(call string, numerator, denominator poly.Poly, roots []poly.Root, in factor, deadTime float64) (*Response, error) {
+// rational returns the response of numerator/denominator, whose roots are given.
+func rational(call string, numerator, denominator poly.Poly, roots []poly.Root, in Input, deadTime float64) (*Response, error) {
 	if numerator.Degree() > denominator.Degree() {
 		return nil, &poly.ArgumentError{Call: call, Argument: "g", Reason: "improper: the numerator has a higher degree than the denominator"}
 	}
-	f, dirac, err := newTransform(call, numerator, denominator, roots, in)
-	if err != nil {
-		return nil, err
+	fastest := 0.0
+	for _, t := range in.terms {
+		fastest = max(fastest, math.Abs(t.omega))
 	}
-	k, err := newKernel(f)
-	if err != nil {
-		return nil, err
+	r := &Response{}
+	for _, e := range in.events() {
+		for _, c := range e.factors() {
+			f, dirac, err := newTransform(call, numerator, denominator, roots, c, fastest)
+			if err != nil {
+				return nil, err
+			}
+			k, err := newKernel(f)
+			if err != nil {
+				return nil, err
+			}
+			r.arcs = append(r.arcs, arc{e.at + deadTime, k})
+			if dirac != 0 {
+				r.dirac = append(r.dirac, e.at+deadTime, dirac)
+			}
+		}
 	}
-	r := &Response{arcs: []arc{{from: deadTime, signal: k}}, dirac: dirac}
-	r.final = k.limit()
+	r.final = r.limit()
 	return r, nil
 }
 
 // At returns the response at t, in seconds; at a jump the value just after it, and the
 // limit, if there is one, at +Inf.
 func (r *Response) At(t float64) float64 {
-	if len(r.arcs) == 0 || !(t >= r.arcs[0].from) {
-		if t != t {
-			return t
-		}
-		return 0
-	}
 	if math.IsInf(t, 1) {
 		return r.final
 	}
-	a := &r.arcs[0]
-	if len(r.arcs) > 1 {
-		lo, hi := 0, len(r.arcs)
-		for hi-lo > 1 {
-			if m := (lo + hi) / 2; r.arcs[m].from <= t {
-				lo = m
-			} else {
-				hi = m
-			}
+	y := 0.0
+	for i := range r.arcs {
+		a := &r.arcs[i]
+		if !(t >= a.from) {
+			break
 		}
-		a = &r.arcs[lo]
+		s := t - a.from
+		u := s - t
+		y += a.signal.at(s, (t-(s-u))+(-a.from-u))
 	}
-	s := t - a.from
-	u := s - t
-	return a.signal.at(s, (t-(s-u))+(-a.from-u))
+	if t != t {
+		return t
+	}
+	return y
+}
+
+// Final returns the limit of the response for t → ∞; NaN if there is none.
+func (r *Response) Final() float64 { return r.final }
+
+// Impulses returns the Dirac impulses in the response, the direct part of a biproper
+// function that is driven by an impulse: instants in seconds and areas. [Response.At]
+// leaves them out.
+func (r *Response) Impulses() (times, areas []float64) {
+	for i := 0; i < len(r.dirac); i += 2 {
+		times = append(times, r.dirac[i])
+		areas = append(areas, r.dirac[i+1])
+	}
+	return times, areas
+}
+
+// Sample fills out with the response at start, start + step, and so on, in seconds.
+func (r *Response) Sample(out []float64, start, step float64) {
+	for i := range out {
+		out[i] = r.At(start + float64(i)*step)
+	}
 }

@@ -663,6 +663,7 @@ func (g *stage) node(tau float64, n *node) {
 		g.chains[i].node(s, lo, n)
 	}
 	n.spread = max(n.spread, g.tail)
+	n.suggest()
 }
 
 func (c *chain) node(s, lo float64, n *node) {

@@ -63,8 +63,8 @@ func wideFromInteger(n *big.Int, exponent int) wide {
 // newTransform returns the transform of (numerator/denominator) driven by the factor, and
 // the constant part of the quotient where the product is biproper: the weight of a Dirac
 // impulse.
-func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Root, in factor) (f *transform, dirac float64, err error) {
-	largest := in.omega
+func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Root, in factor, fastest float64) (f *transform, dirac float64, err error) {
+	largest := fastest
 	for i := range roots {
 		s := roots[i].Value
 		largest = max(largest, math.Hypot(real(s), imag(s)))
