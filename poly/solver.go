@@ -62,15 +62,11 @@ func (s *Solver) fast(dst []Root, c, lo []float64, zeros int) ([]Root, bool) {
 		dst = make([]Root, 0, need)
 	}
 	k := &s.kernel
+	k.Set(c, lo)
+	settled := true
 	if n > 0 {
-		k.Set(c, lo)
 		k.Start(0)
-		if !k.Iterate(sweeps) {
-			k.Start(1)
-			if !k.Iterate(sweeps) {
-				return dst, false
-			}
-		}
+		settled = k.Iterate(sweeps)
 	}
 	var room [32]rootkernel.Disc
 	discs := room[:0]
@@ -80,7 +76,20 @@ func (s *Solver) fast(dst []Root, c, lo []float64, zeros int) ([]Root, bool) {
 		}
 		discs = s.discs[:0]
 	}
-	discs, failure := k.Certify(discs, zeros > 0)
+	failure := rootkernel.Imprecise
+	if settled {
+		discs, failure = k.Certify(discs, zeros > 0)
+	}
+	if failure == rootkernel.Imprecise {
+		k.Careful()
+		for attempt := 1; failure != rootkernel.None && attempt <= 2; attempt++ {
+			k.Iterate(sweeps)
+			discs, failure = k.Certify(discs[:0], zeros > 0)
+			if failure != rootkernel.None {
+				k.Start(attempt)
+			}
+		}
+	}
 	if failure != rootkernel.None {
 		return dst, false
 	}

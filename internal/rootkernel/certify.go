@@ -23,11 +23,9 @@ const (
 )
 
 // Certify moves the points once or twice more, with the polynomial evaluated in twice the
-// working precision, and proves a disc about each. It appends the discs to dst, the centres
-// by ascending X, then Y. The discs hold one root each, by this theorem: the disc of radius
-// n·|p(z)/p′(z)| about any z holds a root (P. Henrici, Applied and Computational Complex
-// Analysis, vol. 1, Wiley 1974, Theorem 6.4e); n disjoint ones hold all n roots, one each,
-// and one that is its own mirror image holds a real root.
+// working precision, and proves a disc about each that holds exactly one root. n disjoint
+// ones hold all roots, and one that is its own mirror image holds a real root. It appends
+// the discs to dst, the centres by ascending X, then Y.
 //
 // With origin, a disc of radius 0 at 0 stands among them for roots there that the
 // polynomial was divided by.
@@ -121,49 +119,82 @@ func Disjoint(discs []Disc) bool {
 // any more, m grows beyond what matters to it and the discs come out too wide, not wrong.
 const floor = 0x1p-960
 
-// discRadius returns the radius of a disc about z + h that holds a root, from |z|, the
-// compensated |p(z)|, |p′(z)| and m; it is infinite where nothing can be said. h is -p/p′
-// rounded (which adds 10u·|p|).
-func (k *Kernel) discRadius(r, p, d, m, tau float64) float64 {
+// discRadius returns the radius R of a disc about z + h that holds exactly one root, from
+// r = |z|, |p′(z)| by compensated evaluation, m, h = -p/p′ rounded (which adds 10u·|p|), a
+// bound on the error of p(z) and one on that of p′(z) relative to (n+2)²·m/r; it is infinite
+// where nothing can be said.
+//
+// On the circle of radius R about z + h, p differs from its tangent p + p′·(s - z - h) by at
+// most n²·m/r²·R²/2·1.01, and the tangent's modulus is at least |p′|·R - |p|. Where that is
+// more, both have the same number of zeros inside (Rouché), and the tangent has one.
+func (k *Kernel) discRadius(r, d, m, h, valueError, slopeError float64) float64 {
 	n := float64(k.n)
+	tau := h / r
 	if !(tau < 0x1p-20/n) {
 		return math.Inf(1)
 	}
-	n2 := (n + 2) * (n + 2) * 1.02
-	slope := d - n2*(m/r)*(10*u+tau)
+	bend := (n + 2) * (n + 2) * 1.02 * m // |p″|·r² near z
+	slope := d*(1-8*u) - bend/r*(slopeError+tau)
 	if !(slope > d/2) {
 		return math.Inf(1)
 	}
-	residue := n2*m*(0x1p-101+tau*(tau/2+10*u)) + 10*u*p
-	return n * residue / slope * 1.01
+	residue := valueError*1.01 + bend*tau*(tau/2+slopeError) + 10*u*h*d
+	radius := residue / slope * 1.02
+	if !(bend/r*(radius/r) < 0.019*slope) {
+		return math.Inf(1)
+	}
+	return radius
+}
+
+// slopeError returns the error bound of p′, relative to (n+2)²·m/|z|, in both modes.
+func (k *Kernel) slopeError() float64 {
+	if k.careful {
+		return 0x1p-98 * float64(k.n+2)
+	}
+	return 10 * u
+}
+
+// valueError returns the error bound of the compensated p(z).
+func (k *Kernel) valueError(m float64) float64 {
+	n := float64(k.n + 2)
+	return n * n * 0x1p-101 * m
 }
 
 // attempts limits the evaluations for one point.
-const attempts = 3
+const attempts = 4
 
 func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 	failure := Imprecise
 	for range attempts {
-		square := float64(x*x) + float64(y*y)
-		if !(square > 0x1p-900 && square < 0x1p900) {
-			return Disc{}, Imprecise
+		unit := 1.0
+		var r, pr, pi, dr, di, m, miss float64
+		if k.careful {
+			if r = math.Hypot(x, y); !k.enter(r) {
+				return Disc{}, Imprecise
+			}
+			unit = k.frame.unit
+			x, y, r = x/unit, y/unit, r/unit
+			pr, pi, dr, di, m, miss = k.frame.values(k.n, x, y, r)
+		} else {
+			square := float64(x*x) + float64(y*y)
+			if !(square > 0x1p-900 && square < 0x1p900) {
+				return Disc{}, Imprecise
+			}
+			r = math.Sqrt(square)
+			pr, pi, dr, di, m = k.compensated(x, y, r)
+			miss = k.valueError(m)
 		}
-		r := math.Sqrt(square)
-		pr, pi, dr, di, m := k.compensated(x, y, r)
 		d2 := dr*dr + di*di
 		t := 1 / d2
 		hx, hy := -(pr*dr+pi*di)*t, -(pi*dr-pr*di)*t
-		inverse := 1 / r
-		h := math.Sqrt(hx*hx + hy*hy)
-		d := math.Sqrt(d2)
-		rho := k.discRadius(r, h*d, d, m, h*inverse)
+		rho := k.discRadius(r, math.Sqrt(d2), m, math.Sqrt(hx*hx+hy*hy), miss, k.slopeError())
 		X, Y := x+hx, y+hy
 		if rho <= 0x1p-54*r && rho <= 0x1p-48*math.Abs(Y) && Y > 0 {
 			if rho <= 0x1p-48*math.Abs(X) {
 				lostX, lostY := (x-X)+hx, (y-Y)+hy
-				const up = 1 + 0x1p-48
+				up := unit * (1 + 0x1p-48)
 				return Disc{
-					X: X, Y: Y,
+					X: X * unit, Y: Y * unit,
 					Radius: (math.Sqrt(lostX*lostX+lostY*lostY) + rho) * up,
 					HalfX:  (math.Abs(lostX) + rho) * up,
 					HalfY:  (math.Abs(lostY) + rho) * up,
@@ -171,26 +202,38 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 			}
 			failure = OnAxis
 		}
-		x, y = X, Y
+		x, y = X*unit, Y*unit
 	}
 	return Disc{}, failure
 }
 
 func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 	for range attempts {
+		unit := 1.0
 		r := math.Abs(x)
-		if !(r > 0x1p-450 && r < 0x1p450) {
-			return Disc{}, Imprecise
+		var p, d, m, miss float64
+		if k.careful {
+			if !k.enter(r) {
+				return Disc{}, Imprecise
+			}
+			unit = k.frame.unit
+			x, r = x/unit, r/unit
+			p, d, m, miss = k.frame.valuesReal(k.n, x, r)
+		} else {
+			if !(r > 0x1p-450 && r < 0x1p450) {
+				return Disc{}, Imprecise
+			}
+			p, d, m = k.compensatedReal(x, r)
+			miss = k.valueError(m)
 		}
-		p, d, m := k.compensatedReal(x, r)
 		h := -p / d
-		rho := k.discRadius(r, math.Abs(p), math.Abs(d), m, math.Abs(h)/r)
+		rho := k.discRadius(r, math.Abs(d), m, math.Abs(h), miss, k.slopeError())
 		X := x + h
 		if rho <= 0x1p-54*r {
-			half := (math.Abs((x-X)+h) + rho) * (1 + 0x1p-48)
-			return Disc{X: X, Radius: half, HalfX: half}, None
+			half := (math.Abs((x-X)+h) + rho) * (unit * (1 + 0x1p-48))
+			return Disc{X: X * unit, Radius: half, HalfX: half}, None
 		}
-		x = X
+		x = X * unit
 	}
 	return Disc{}, Imprecise
 }

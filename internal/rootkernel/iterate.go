@@ -131,12 +131,26 @@ func (k *Kernel) sortReals() {
 func (k *Kernel) movePair(i int) bool {
 	q := &k.pairs()[i]
 	x, y := q.x, q.y
-	pr, pi, dr, di := k.quadratic(x, y)
+	unit := 1.0 // all below happens in a frame of this size
+	tiny := 0.0
+	var pr, pi, dr, di, sr, si, gr, gi float64
+	if k.careful {
+		r := math.Hypot(x, y)
+		if !k.enter(r) {
+			return false
+		}
+		unit, tiny = k.frame.unit, rounding*rounding
+		x, y = x/unit, y/unit
+		pr, pi, dr, di, _, _ = k.frame.values(k.n, x, y, r/unit)
+		sr, si, gr, gi = k.othersScaled(x, y, i)
+	} else {
+		pr, pi, dr, di = k.quadratic(x, y)
+		sr, si, gr, gi = k.othersComplex(x, y, i)
+	}
 	if pr == 0 && pi == 0 {
 		q.restless = false
 		return true
 	}
-	sr, si, gr, gi := k.othersComplex(x, y, i)
 	fr, fi := pr*gr-pi*gi, pr*gi+pi*gr
 	if t := fi / (y * (fr*fr + fi*fi)); t-t == 0 {
 		sr += t * fr
@@ -151,18 +165,21 @@ func (k *Kernel) movePair(i int) bool {
 	size := wr*wr + wi*wi
 	rest := y - wi
 	if size < 0x1p-10*y*y {
-		still := size*(sr*sr+si*si) < settled*settled && size < settled*settled*(x*x+y*y)
-		*q = pair{x - wr, rest, rest * rest, !still}
+		square := x*x + y*y
+		still := size*(sr*sr+si*si) < settled*settled && size < settled*settled*square || size < tiny*square
+		rest *= unit
+		*q = pair{(x - wr) * unit, rest, rest * rest, !still}
 		return still
 	}
 	switch discriminant := size - rest*rest; {
 	case discriminant < 0:
-		*q = pair{x - wr, math.Sqrt(-discriminant), -discriminant, true}
+		h := math.Sqrt(-discriminant) * unit
+		*q = pair{(x - wr) * unit, h, h * h, true}
 	case discriminant >= 0:
 		h := math.Sqrt(discriminant)
 		k.removePair(i)
-		k.addReal(x - wr - h)
-		k.addReal(x - wr + h)
+		k.addReal((x - wr - h) * unit)
+		k.addReal((x - wr + h) * unit)
 	}
 	return false // also if it is NaN: stay, and fail in the end
 }
@@ -179,10 +196,32 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 		x1 += 0x1p-20 * x1
 		gap = x1 - x2
 	}
-	p1, d1, p2, d2 := k.horner2(x1, x2)
-	s1, s2, ratio := k.othersReal2(x1, x2, i, j)
+	var p1, d1, p2, d2, s1, s2, f float64
+	unit, tiny := 1.0, 0.0
+	if k.careful {
+		r1, r2 := math.Abs(x1), math.Abs(x2)
+		if !k.enter(max(r1, r2)) {
+			return false, false
+		}
+		if min(r1, r2) < 0x1p-20*max(r1, r2) {
+			// No common frame: each for itself.
+			still1, still2 := k.moveReal(i), k.moveReal(j)
+			return false, still1 && still2
+		}
+		unit, tiny = k.frame.unit, rounding
+		ratio := k.ratio(x1, x2, i, j)
+		x1, x2, gap = x1/unit, x2/unit, gap/unit
+		p1, d1, _, _ = k.frame.valuesReal(k.n, x1, r1/unit)
+		p2, d2, _, _ = k.frame.valuesReal(k.n, x2, r2/unit)
+		s1, s2 = k.othersRealScaled(x1, i, j), k.othersRealScaled(x2, i, j)
+		f = p2 / p1 * ratio
+	} else {
+		p1, d1, p2, d2 = k.horner2(x1, x2)
+		s1, s2, f = k.othersReal2(x1, x2, i, j)
+		f *= p2 / p1
+	}
 	inverse := 1 / gap
-	if f := p2 / p1 * ratio; f-f == 0 && f != 0 { // f(x₂)/f(x₁)
+	if f-f == 0 && f != 0 { // f(x₂)/f(x₁)
 		s1 += (1 - f) * inverse
 		s2 += (1/f - 1) * inverse
 	} else {
@@ -199,20 +238,22 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 	half := (gap - w1 + w2) / 2
 	cross := w1 * w2
 	if math.Abs(cross) < 0x1p-10*half*half {
-		a.x, b.x = x1-w1, x2-w2
-		a.restless = !settledReal(x1, w1, s1)
-		b.restless = !settledReal(x2, w2, s2)
+		a.x, b.x = (x1-w1)*unit, (x2-w2)*unit
+		a.restless = !settledReal(x1, w1, s1, tiny)
+		b.restless = !settledReal(x2, w2, s2, tiny)
 		return false, !a.restless && !b.restless
 	}
 	centre := (x1 - w1 + x2 - w2) / 2
 	discriminant := half*half + cross
 	if discriminant < 0 {
 		k.removeReals(i, j)
-		k.addPair(centre, math.Sqrt(-discriminant))
+		k.addPair(centre*unit, math.Sqrt(-discriminant)*unit)
 		return true, false
 	}
-	h := math.Sqrt(discriminant)
-	a.x, b.x = centre-h, centre+h
+	if discriminant >= 0 {
+		h := math.Sqrt(discriminant)
+		a.x, b.x = (centre-h)*unit, (centre+h)*unit
+	}
 	return false, false
 }
 
@@ -220,24 +261,39 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 func (k *Kernel) moveReal(i int) bool {
 	q := &k.reals()[i]
 	x := q.x
-	p, d := k.horner(x)
+	unit, tiny := 1.0, 0.0
+	var p, d, s float64
+	if k.careful {
+		if !k.enter(math.Abs(x)) {
+			return false
+		}
+		unit, tiny = k.frame.unit, rounding
+		x /= unit
+		p, d, _, _ = k.frame.valuesReal(k.n, x, math.Abs(x))
+		s = k.othersRealScaled(x, i, i)
+	} else {
+		p, d = k.horner(x)
+		s = k.othersReal(x, i)
+	}
 	if p == 0 {
 		q.restless = false
 		return true
 	}
-	s := k.othersReal(x, i)
 	w := p / (d - p*s)
-	q.x = x - w
-	q.restless = !settledReal(x, w, s)
+	q.x = (x - w) * unit
+	q.restless = !settledReal(x, w, s, tiny)
 	return !q.restless
 }
 
 // settledReal tells whether the correction w of a real point is negligible; s is about the
 // inverse of its distance from the others.
-func settledReal(x, w, s float64) bool {
-	w = math.Abs(w)
-	return w*math.Abs(s) < settled && w < settled*math.Abs(x)
+func settledReal(x, w, s, tiny float64) bool {
+	w, x = math.Abs(w), math.Abs(x)
+	return w*math.Abs(s) < settled && w < settled*x || w < tiny*x
 }
+
+// rounding is a correction, relative to the point, that its own rounding would explain.
+const rounding = 0x1p-51
 
 // horner returns p(x) and p′(x).
 func (k *Kernel) horner(x float64) (p, d float64) {

@@ -17,6 +17,10 @@ type Kernel struct {
 	c  []float64 // coefficients by power
 	lo []float64 // what c lacks to the exact coefficients, to nearest; nil if nothing
 
+	careful   bool
+	exponents []int // of the coefficients; nil if all are 0
+	frame     frame
+
 	pairCount int  // conjugate pairs
 	realCount int  // real points, ascending
 	shift     bool // whether the next sweep pairs the real points the other way
@@ -53,6 +57,7 @@ func (k *Kernel) Set(c, lo []float64) {
 		k.largeReals = make([]real, k.n)
 	}
 	k.c, k.lo = c, lo
+	k.careful, k.exponents = false, nil
 }
 
 // room returns the storage of all points.

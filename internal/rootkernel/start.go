@@ -28,12 +28,12 @@ type corner struct {
 // polygon finds the upper convex hull of the points (i, log₂|cᵢ|): the slopes of its edges
 // are the moduli of the roots, roughly (D. A. Bini, Numerical computation of polynomial
 // zeros by means of Aberth's method, Numerical Algorithms 13 (1996) 179–200, section 2).
-func polygon(hull []corner, c []float64) []corner {
-	for i, x := range c {
+func (k *Kernel) polygon(hull []corner) []corner {
+	for i, x := range k.c {
 		if x == 0 {
 			continue
 		}
-		l := roughLog(math.Abs(x))
+		l := roughLog(math.Abs(x)) + float64(k.exponent(i))
 		for len(hull) >= 2 {
 			a, b := hull[len(hull)-2], hull[len(hull)-1]
 			if (b.log-a.log)*float64(i-a.power) > (l-a.log)*float64(b.power-a.power) {
@@ -57,7 +57,7 @@ const (
 // the next of their kind. A later attempt starts at other angles.
 func (k *Kernel) Start(attempt int) {
 	var room [32]corner
-	hull := polygon(room[:0], k.c)
+	hull := k.polygon(room[:0])
 	k.pairCount, k.realCount, k.shift = 0, 0, false
 	left := false // a real point of an earlier edge
 	var leftLog, leftSign float64

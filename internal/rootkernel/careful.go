@@ -1,0 +1,247 @@
+package rootkernel
+
+import "math"
+
+// The careful mode settles what the fast one cannot: polynomials whose coefficients or
+// roots spread over much of the range of float64, and ill-conditioned roots. It looks at
+// each point z in a frame of its own, t = z/2^e with |t| about 1 and coefficients scaled to
+// match, the largest term about 1: nothing can overflow there, and what underflows does not
+// matter. The polynomial and its derivative are both evaluated in twice the working
+// precision.
+
+// frameRange bounds e: beyond it a root is left to math/big.
+const frameRange = 900
+
+// frame holds the polynomial as seen from points of modulus about 2^e.
+type frame struct {
+	e      int
+	unit   float64   // 2^e
+	shift  int       // the true value is 2^shift times the scaled one
+	c, lo  []float64 // Σ (c + lo)·tⁱ
+	scaled bool      // the fields above are valid
+}
+
+// SetScaled takes the polynomial Σ (c[i] + lo[i])·2^exponents[i]·sⁱ for the careful mode
+// only; c[i] is 0 or has modulus in [½, 1], the first and the last are not 0.
+func (k *Kernel) SetScaled(c, lo []float64, exponents []int) {
+	k.Set(c, lo)
+	k.exponents = exponents
+	k.setCareful()
+}
+
+// Careful goes on in careful mode, from the points as they are.
+func (k *Kernel) Careful() {
+	k.setCareful()
+	pairs, reals := k.pairs(), k.reals()
+	for i := range pairs {
+		pairs[i].restless = true
+	}
+	for i := range reals {
+		reals[i].restless = true
+	}
+}
+
+func (k *Kernel) setCareful() {
+	k.careful = true
+	if len(k.frame.c) < k.n+1 {
+		k.frame.c = make([]float64, k.n+1)
+		k.frame.lo = make([]float64, k.n+1)
+	}
+	k.frame.scaled = false
+}
+
+// enter sets the frame for points of modulus r and reports whether there is one.
+func (k *Kernel) enter(r float64) bool {
+	if !(r > 0x1p-1000 && r < 0x1p1000) {
+		return false
+	}
+	e := int(math.Float64bits(r)>>52) - 1023
+	if e < -frameRange || e > frameRange {
+		return false
+	}
+	f := &k.frame
+	if f.scaled && f.e == e {
+		return true
+	}
+	f.e, f.unit, f.scaled = e, math.Ldexp(1, e), true
+	f.shift = math.MinInt
+	for i, c := range k.c {
+		if c != 0 {
+			_, q := math.Frexp(c)
+			f.shift = max(f.shift, q+k.exponent(i)+e*i)
+		}
+	}
+	for i, c := range k.c {
+		f.c[i], f.lo[i] = 0, 0
+		if q := k.exponent(i) + e*i - f.shift; c != 0 && q > -2200 {
+			// Below 2⁻⁹⁰⁰ of the largest term, the loss is less than floor pays for.
+			f.c[i] = math.Ldexp(c, q)
+			if k.lo != nil {
+				f.lo[i] = math.Ldexp(k.lo[i], q)
+			}
+		}
+	}
+	return true
+}
+
+func (k *Kernel) exponent(i int) int {
+	if k.exponents == nil {
+		return 0
+	}
+	return k.exponents[i]
+}
+
+// values returns p(t), p′(t), m = Σ|cᵢ||t|ⁱ and a bound on the error of p(t), in the frame,
+// for r = |t|: both values by compensated Horner schemes, as explained at discRadius.
+//
+// The bound runs along (Higham, Accuracy and Stability of Numerical Algorithms, 2nd ed.,
+// section 5.1): a step of the scheme for the errors, e ← e·t + ε, with ε summed from parts,
+// rounds by less than 8u·(|e||t| + Σ|parts|); coefficients known to twice the working
+// precision add 2u²·m. 10 instead of 8 pays for rounding the bound itself.
+//
+// The scheme of the derivative sums errors of both kinds, twice as many, each gathered over
+// one power more: an a-priori bound of 2⁻⁹⁸(n+2)³·m/|t| covers it.
+func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, m, miss float64) {
+	var epr, epi, edr, edi float64
+	c, lo := f.c[:n+1], f.lo[:n+1]
+	pr, epr = c[n], lo[n]
+	m = math.Abs(pr) + floor
+	for i := n - 1; i >= 0; i-- {
+		m = m*r + math.Abs(c[i]) + floor
+
+		// d ← d·z + p
+		p1, p2 := float64(dr*x), float64(di*y)
+		p3, p4 := float64(dr*y), float64(di*x)
+		e1, e2 := math.FMA(dr, x, -p1), math.FMA(di, y, -p2)
+		e3, e4 := math.FMA(dr, y, -p3), math.FMA(di, x, -p4)
+		s, f1 := twoSum(p1, -p2)
+		w, f3 := twoSum(p3, p4)
+		var f2, f4 float64
+		dr, f2 = twoSum(s, pr)
+		di, f4 = twoSum(w, pi)
+		edr, edi = edr*x-edi*y+((e1-e2)+(f1+f2)+epr), edr*y+edi*x+((e3+e4)+(f3+f4)+epi)
+
+		// p ← p·z + c
+		p1, p2 = float64(pr*x), float64(pi*y)
+		p3, p4 = float64(pr*y), float64(pi*x)
+		e1, e2 = math.FMA(pr, x, -p1), math.FMA(pi, y, -p2)
+		e3, e4 = math.FMA(pr, y, -p3), math.FMA(pi, x, -p4)
+		s, f1 = twoSum(p1, -p2)
+		pr, f2 = twoSum(s, c[i])
+		pi, f3 = twoSum(p3, p4)
+		parts := math.Abs(e1) + math.Abs(e2) + math.Abs(f1) + math.Abs(f2) + math.Abs(lo[i]) + math.Abs(e3) + math.Abs(e4) + math.Abs(f3)
+		miss = miss*r + ((math.Abs(epr)+math.Abs(epi))*r + parts)
+		epr, epi = epr*x-epi*y+((e1-e2)+(f1+f2)+lo[i]), epr*y+epi*x+((e3+e4)+f3)
+	}
+	return pr + epr, pi + epi, dr + edr, di + edi, m, 10*u*miss + 0x1p-104*m
+}
+
+// valuesReal does the same on the real axis.
+func (f *frame) valuesReal(n int, x, r float64) (p, d, m, miss float64) {
+	var ep, ed float64
+	c, lo := f.c[:n+1], f.lo[:n+1]
+	p, ep = c[n], lo[n]
+	m = math.Abs(p) + floor
+	for i := n - 1; i >= 0; i-- {
+		m = m*r + math.Abs(c[i]) + floor
+		q := float64(d * x)
+		e1 := math.FMA(d, x, -q)
+		var f1 float64
+		d, f1 = twoSum(q, p)
+		ed = ed*x + (e1 + f1 + ep)
+		q = float64(p * x)
+		e1 = math.FMA(p, x, -q)
+		p, f1 = twoSum(q, c[i])
+		miss = miss*r + (math.Abs(ep)*r + math.Abs(e1) + math.Abs(f1) + math.Abs(lo[i]))
+		ep = ep*x + (e1 + f1 + lo[i])
+	}
+	return p + ep, d + ed, m, 10*u*miss + 0x1p-104*m
+}
+
+// twoSum returns a + b rounded and what the rounding lost (Knuth, The Art of Computer
+// Programming, vol. 2, 3rd ed., 4.2.2, Theorem B).
+func twoSum(a, b float64) (sum, lost float64) {
+	sum = a + b
+	t := sum - a
+	return sum, (a - (sum - t)) + (b - t)
+}
+
+// negligible says when a point beside which another stands that much farther away does not
+// feel it.
+const negligible = 0x1p300
+
+// othersScaled is othersComplex in the frame.
+func (k *Kernel) othersScaled(x, y float64, skip int) (sr, si, gr, gi float64) {
+	gr = 1
+	scale := 1 / k.frame.unit
+	pairs := k.pairs()
+	for j := range pairs {
+		if j == skip {
+			continue
+		}
+		q := &pairs[j]
+		qx, qy := q.x*scale, q.y*scale
+		if math.Abs(qx)+qy > negligible {
+			continue
+		}
+		t := x - qx
+		qr := t*t + (qy-y)*(qy+y)
+		qi := 2 * y * t
+		inverse := 1 / (qr*qr + qi*qi)
+		vr, vi := qr*inverse, qi*inverse
+		sr += 2 * (t*vr + y*vi)
+		si += 2 * (y*vr - t*vi)
+		gr, gi = direction(gr*vr+gi*vi, gi*vr-gr*vi)
+	}
+	for _, q := range k.reals() {
+		t := x - q.x*scale
+		if math.Abs(t) > negligible {
+			continue
+		}
+		inverse := 1 / (t*t + y*y)
+		vr, vi := t*inverse, y*inverse
+		sr += vr
+		si -= vi
+		gr, gi = direction(gr*vr+gi*vi, gi*vr-gr*vi)
+	}
+	return sr, si, gr, gi
+}
+
+// direction keeps the phase of a number and brings its modulus near 1.
+func direction(x, y float64) (float64, float64) {
+	s := 1 / (math.Abs(x) + math.Abs(y))
+	return x * s, y * s
+}
+
+// othersRealScaled returns Σ 1/(x - zⱼ) in the frame over all but two.
+func (k *Kernel) othersRealScaled(x float64, skip1, skip2 int) (s float64) {
+	scale := 1 / k.frame.unit
+	for _, q := range k.pairs() {
+		t, y := x-q.x*scale, q.y*scale
+		if math.Abs(t)+y < negligible {
+			s += 2 * t / (t*t + y*y)
+		}
+	}
+	for j, q := range k.reals() {
+		if t := x - q.x*scale; j != skip1 && j != skip2 && math.Abs(t) < negligible {
+			s += 1 / t
+		}
+	}
+	return s
+}
+
+// ratio returns ∏(x₁ - zⱼ)/∏(x₂ - zⱼ) over all but two, for unscaled points; NaN where
+// that is out of range.
+func (k *Kernel) ratio(x1, x2 float64, skip1, skip2 int) float64 {
+	ratio := 1.0
+	for _, q := range k.pairs() {
+		a, b := math.Hypot(x1-q.x, q.y), math.Hypot(x2-q.x, q.y)
+		ratio *= (a / b) * (a / b)
+	}
+	for j, q := range k.reals() {
+		if j != skip1 && j != skip2 {
+			ratio *= (x1 - q.x) / (x2 - q.x)
+		}
+	}
+	return ratio
+}
