@@ -2,7 +2,6 @@ package locus
 
 import (
 	"math"
-	"math/cmplx"
 	"sort"
 
 	"github.com/polewright/polewright/poly"
@@ -13,9 +12,11 @@ import (
 type Locus struct {
 	Branches []Branch
 
-	family Family // as traced; common factors are taken out of its reduced form
-	lo, hi float64
-	plane  *plane
+	family       Family
+	lo, hi       float64
+	poles, zeros Marks
+	meetings     []complex128 // break points that branches pass through, Im ≥ 0
+	frame        Frame
 }
 
 // Trace follows all roots of the family while the gain goes from lo to hi, which may be -Inf
@@ -28,8 +29,9 @@ type Locus struct {
 // this root and no other all the time.
 //
 // Break points, and multiple roots at gain zero, are points of the branches that meet there,
-// reached exactly. Through a point where m of them meet each turns by π/m, counter-clockwise
-// for Im s ≥ 0 and clockwise below. A branch that passes through infinity, which happens at
+// reached exactly. Around a point where m of them meet, the rays on which they come and those on
+// which they go alternate, π/m apart; each turns to the next ray, counter-clockwise for Im s ≥ 0 and
+// clockwise below: on the real axis the branch that came from the right goes on upwards. A branch that passes through infinity, which happens at
 // the gain where the leading coefficient vanishes, ends there and another begins. For lo = -Inf
 // and hi = +Inf branches begin and end at the roots of the polynomial that the gain multiplies,
 // with a gain of ±Inf there, or lead towards infinity; those are drawn as far as several times the
@@ -68,27 +70,47 @@ func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) {
 			return nil, err
 		}
 	}
-	l := &Locus{family: f, lo: lo, hi: hi}
-	if f.fixed.Degree() < 0 && f.scaled.Degree() < 0 {
-		return nil, &poly.ArgumentError{Call: call, Argument: "f", Reason: "both polynomials are zero: every number is a root"}
-	}
-	if f.fixed.Degree() < 0 || f.scaled.Degree() < 0 {
-		return l, nil // all roots are fixed
-	}
-	fixed, scaled := coprime(f.fixed, f.scaled)
-	if fixed.Degree() < 1 && scaled.Degree() < 1 {
-		return l, nil
-	}
-	t := &tracker{family: Family{fixed: fixed, scaled: scaled}, plane: newPlane(fixed, scaled), ctx: s.trace.ctx, budget: s.trace.steps}
-	if t.budget <= 0 {
-		t.budget = defaultSteps
-	}
-	t.pencil = newPencil(t.plane)
-	l.plane = t.plane
-	if err := t.trace(lo, hi); err != nil {
+	if err := f.valid(call); err != nil {
 		return nil, err
 	}
-	return l, t.draw(l)
+	l := &Locus{family: f, lo: lo, hi: hi}
+	poles, err := rootsOf(f.fixed)
+	if err != nil {
+		return nil, err
+	}
+	zeros, err := rootsOf(f.scaled)
+	if err != nil {
+		return nil, err
+	}
+	l.poles, l.zeros = marksOf(poles), marksOf(zeros)
+	moving := f
+	if !coprime(f, poles) {
+		r := f.reduced()
+		moving = Family{fixed: poly.FromIntegers(r.a.Integers()), scaled: poly.FromIntegers(r.b.Integers()), period: f.period}
+		if poles, err = rootsOf(moving.fixed); err != nil {
+			return nil, err
+		}
+		if zeros, err = rootsOf(moving.scaled); err != nil {
+			return nil, err
+		}
+	}
+	if moving.fixed.Degree() >= 1 || moving.scaled.Degree() >= 1 {
+		t := newTracker(moving, poles, zeros, &s.trace)
+		if err := t.trace(lo, hi); err != nil {
+			return nil, err
+		}
+		t.draw(l)
+	}
+	l.makeFrame()
+	return l, nil
+}
+
+// rootsOf returns the roots of p, none if it is constant or zero.
+func rootsOf(p poly.Poly) ([]poly.Root, error) {
+	if p.Degree() < 1 {
+		return nil, nil
+	}
+	return p.Roots()
 }
 
 // trace fills in chains and branches.
@@ -157,11 +179,7 @@ func (t *tracker) foresee() error {
 		t.addVertex(c)
 	}
 	if t.from < 0 && t.end >= 0 {
-		poles, err := t.family.fixed.Roots()
-		if err != nil {
-			return err
-		}
-		for _, pole := range poles {
+		for _, pole := range t.poles {
 			x := p.toX(pole.Value)
 			if pole.Multiplicity == 1 || imag(x) < 0 {
 				continue
@@ -180,55 +198,48 @@ func (t *tracker) foresee() error {
 }
 
 // draw places the points of all branches.
-func (t *tracker) draw(l *Locus) error {
-	size := t.size(l)
+func (t *tracker) draw(l *Locus) {
+	size := t.size()
 	points := make([][]point, len(t.chains))
 	s := shaper{tracker: t, tolerance: 2e-4 * size, far: 8 * size}
 	for i := range t.chains {
-		points[i] = s.points(&t.chains[i])
+		c := &t.chains[i]
+		points[i] = s.points(c)
+		if v := c.head.cell; v != nil && !v.atInfinity && !v.reciprocal {
+			l.meetings = append(l.meetings, t.plane.fromX(v.centre))
+		}
 	}
-	order := make([]int, len(t.branches))
 	l.Branches = make([]Branch, len(t.branches))
 	for i, b := range t.branches {
-		order[i] = i
 		l.Branches[i] = t.branch(b, points)
 	}
 	sort.SliceStable(l.Branches, func(i, j int) bool { return l.Branches[i].before(&l.Branches[j]) })
-	return nil
 }
 
-// size returns the extent of the figure: what tolerances refer to.
-func (t *tracker) size(l *Locus) float64 {
-	lo, hi := complex(math.Inf(1), math.Inf(1)), complex(math.Inf(-1), math.Inf(-1))
-	put := func(x, y float64) {
-		lo = complex(min(real(lo), x), min(imag(lo), y))
-		hi = complex(max(real(hi), x), max(imag(hi), y))
-	}
-	roots := func(p poly.Poly) {
-		if found, err := marksOf(p); err == nil {
-			for _, r := range found {
-				x := t.plane.toX(r.Value)
-				put(real(x), imag(x))
-			}
+// size returns the extent of the figure, which tolerances refer to, in the plane: of poles and
+// zeros, or if there is only one, of the branches.
+func (t *tracker) size() float64 {
+	b := newBox()
+	for _, roots := range [][]poly.Root{t.poles, t.zeros} {
+		for _, r := range roots {
+			b.put(t.plane.toX(r.Value))
 		}
 	}
-	roots(t.family.fixed)
-	roots(t.family.scaled)
-	if d := cmplx.Abs(hi - lo); d > 0 && !math.IsInf(d, 0) {
+	if d := b.Diagonal(); d > 0 && !math.IsInf(d, 0) {
 		return d
 	}
 	for i := range t.chains {
 		c := &t.chains[i]
 		for _, end := range []tip{c.head, c.tail} {
 			if end.cell != nil && !end.cell.atInfinity {
-				put(real(end.cell.centre), imag(end.cell.centre))
+				b.put(end.cell.centre)
 			}
 		}
 		for j := range c.knots {
-			put(c.knots[j].zx, c.knots[j].zy)
+			b.put(complex(c.knots[j].zx, c.knots[j].zy))
 		}
 	}
-	if d := cmplx.Abs(hi - lo); d > 0 && !math.IsInf(d, 0) {
+	if d := b.Diagonal(); d > 0 && !math.IsInf(d, 0) {
 		return d
 	}
 	return 1

@@ -26,7 +26,7 @@ func (t *tracker) cross(v *cell) (crossed bool, upto float64, err error) {
 		return false, v.gain - 0.5*(v.gain-t.κ), nil
 	}
 	rest := make([]row, 0, len(t.rows))
-	t.pencil.set(t.plane, centre)
+	t.pencil.set(centre)
 	for i := range t.rows {
 		if members[i] >= 0 {
 			continue
@@ -256,7 +256,7 @@ func (t *tracker) leave(group []*cell, members, sectors []int, rest []row, centr
 // arrive makes the step at the exit of a crossing: the first rows were proven by discs at the
 // centre, the others by cells.
 func (t *tracker) arrive(group []*cell, next []row, rest int, centre, exit float64) error {
-	t.pencil.set(t.plane, exit)
+	t.pencil.set(exit)
 	discs := make([]row, rest)
 	copy(discs, next[:rest])
 	ok := true
@@ -311,8 +311,9 @@ func (t *tracker) arrive(group []*cell, next []row, rest int, centre, exit float
 	return nil
 }
 
-// turn applies the rule by which branches go on through a vertex: each turns by π/m, to the
-// left for Im s ≥ 0. It returns for each outgoing sector the branch that takes it and, if the
+// turn applies the rule by which branches go on through a vertex: rays on which roots come and
+// rays on which they go alternate around it, π/m apart, and each branch goes on along the next
+// ray counter-clockwise for Im s ≥ 0. It returns for each outgoing sector the branch that takes it and, if the
 // sector has a mirror image, the one that takes that. Branches through infinity end, others
 // begin; so they do where the walk starts.
 func (t *tracker) turn(v *cell, g int, members, sectors []int) [][2]int {
@@ -335,7 +336,7 @@ func (t *tracker) turn(v *cell, g int, members, sectors []int) [][2]int {
 		}
 	}
 	if !v.atInfinity && slices.Contains(members, g) {
-		step := math.Pi + math.Pi/float64(v.order)
+		step := math.Pi / float64(v.order)
 		for i, m := range members {
 			if m != g {
 				continue

@@ -3,8 +3,6 @@ package locus
 import (
 	"math"
 	"math/cmplx"
-
-	"github.com/polewright/polewright/poly"
 )
 
 // farGain is where, in gains of the plane, the neighbourhood of κ = ±∞ is worth looking at.
@@ -13,13 +11,16 @@ const farGain = 0x1p20
 // begin places the rows at the start of the walk.
 func (t *tracker) begin() error {
 	p := t.plane
-	at := t.family.fixed.Add(t.family.scaled.Scale(p.fromK(t.from)))
-	roots, err := at.Roots()
-	if err != nil {
-		return err
+	at, roots := t.family.fixed, t.poles
+	if t.from != 0 {
+		at = t.family.At(p.fromK(t.from))
+		var err error
+		if roots, err = rootsOf(at); err != nil {
+			return err
+		}
 	}
 	t.κ, t.limiting = t.from, -1
-	t.pencil.set(p, t.from)
+	t.pencil.set(t.from)
 	var rows []row
 	var group []*cell
 	for _, root := range roots {
@@ -106,10 +107,6 @@ func (t *tracker) begin() error {
 // explain all roots.
 func (t *tracker) findEnds() (float64, error) {
 	p := t.plane
-	zeros, err := t.family.scaled.Roots()
-	if err != nil {
-		return 0, err
-	}
 	width := math.Inf(1)
 	add := func(c *cell) error {
 		if c == nil {
@@ -119,7 +116,7 @@ func (t *tracker) findEnds() (float64, error) {
 		width = min(width, c.width)
 		return nil
 	}
-	for _, z := range zeros {
+	for _, z := range t.zeros {
 		x := p.toX(z.Value)
 		if imag(x) < 0 {
 			continue
@@ -143,7 +140,7 @@ func (t *tracker) findEnds() (float64, error) {
 // tips matches the rows with the end cells, one for each.
 func (t *tracker) tips() ([]tip, bool) {
 	// The rows may be much nearer to their ends than to each other.
-	t.pencil.set(t.plane, t.κ)
+	t.pencil.set(t.κ)
 	for range 2 {
 		for i := range t.rows {
 			r := &t.rows[i]
@@ -177,12 +174,4 @@ func (t *tracker) tips() ([]tip, bool) {
 		}
 	}
 	return tips, true
-}
-
-// marksOf returns the distinct roots of p with multiplicities.
-func marksOf(p poly.Poly) ([]poly.Root, error) {
-	if p.Degree() < 1 {
-		return nil, nil
-	}
-	return p.Roots()
 }

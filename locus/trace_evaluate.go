@@ -17,6 +17,7 @@ type value struct {
 type pencil struct {
 	f, majorF []float64 // F = a + κ·b, rounded; |a| + |κ·b|
 	b, majorB []float64
+	plane     *plane
 	κ         float64
 	growth    float64 // bound on the relative error of Horner's rule with these coefficients
 }
@@ -25,6 +26,7 @@ type pencil struct {
 func newPencil(p *plane) *pencil {
 	room := make([]float64, 3*(p.n+1))
 	q := &pencil{
+		plane:  p,
 		f:      room[: p.n+1 : p.n+1],
 		majorF: room[p.n+1 : 2*(p.n+1) : 2*(p.n+1)],
 		majorB: room[2*(p.n+1):],
@@ -43,7 +45,8 @@ func newPencil(p *plane) *pencil {
 }
 
 // set moves the pencil to a gain.
-func (q *pencil) set(p *plane, κ float64) {
+func (q *pencil) set(κ float64) {
+	p := q.plane
 	q.κ = κ
 	size := math.Abs(κ)
 	for i, v := range p.a {

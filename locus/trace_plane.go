@@ -3,8 +3,8 @@ package locus
 import (
 	"math"
 	"math/big"
+	"math/cmplx"
 
-	"github.com/polewright/polewright/internal/exact"
 	"github.com/polewright/polewright/poly"
 )
 
@@ -171,16 +171,33 @@ func byPower(c []float64) poly.Poly {
 	return poly.New(high...)
 }
 
-// coprime divides both polynomials by their greatest common divisor, exactly.
-func coprime(fixed, scaled poly.Poly) (poly.Poly, poly.Poly) {
-	a, b := exact.New(fixed.Integers()), exact.New(scaled.Integers())
-	g := exact.GCD(a, b)
-	if g.Degree() <= 0 {
-		return fixed, scaled
+// coprime tells whether the polynomials of a family are seen to have no common factor, from the
+// roots of the fixed one. If not, exact arithmetic must decide.
+func coprime(f Family, poles []poly.Root) bool {
+	n := f.scaled.Degree()
+	if n < 0 || f.fixed.Degree() < 0 {
+		return false
 	}
-	a, _ = a.Divide(g)
-	b, _ = b.Divide(g)
-	return poly.FromIntegers(a.Integers()), poly.FromIntegers(b.Integers())
+	if n == 0 || f.fixed.Degree() == 0 {
+		return true
+	}
+	for _, pole := range poles {
+		// |scaled| over the disc of the pole is at least the value at its centre, less what
+		// the slopes of the majorant allow, less rounding.
+		var y complex128
+		var m, d float64
+		r := (cmplx.Abs(pole.Value) + pole.Radius) * (1 + 4*unitRoundoff)
+		for i := n; i >= 0; i-- {
+			c := f.scaled.Coefficient(i)
+			y = y*pole.Value + complex(c, 0)
+			d = d*r + m
+			m = m*r + math.Abs(c)
+		}
+		if !(cmplx.Abs(y) > (4*float64(n)+10)*unitRoundoff*m+d*pole.Radius+minNormal) {
+			return false
+		}
+	}
+	return true
 }
 
 // toX and fromX, toK and fromK pass between the caller's coordinates and those of the plane.

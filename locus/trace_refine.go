@@ -19,7 +19,7 @@ func (c *chain) at(p *plane, κ float64) (complex128, bool) {
 		return 0, false
 	}
 	q := newPencil(p)
-	q.set(p, κ)
+	q.set(κ)
 	x, ok := c.near(q, i, κ)
 	if !ok {
 		return 0, false
@@ -43,43 +43,49 @@ func (c *chain) near(q *pencil, i int, κ float64) (complex128, bool) {
 	if c.real {
 		y = 0
 	}
-	inside := func(x, y float64) bool { return math.Hypot(x-k.x, y-k.y) < k.radius }
-	if !inside(x, y) {
+	if math.Hypot(x-k.x, y-k.y) >= k.radius {
 		x, y = k.x, k.y
 	}
+	for _, precise := range []bool{false, true} {
+		if x, y, ok := c.converge(q, k, x, y, precise); ok {
+			return complex(x, y), true
+		}
+	}
+	return 0, false
+}
+
+// converge runs Newton's method within the disc of a knot, in float64 or in twice that, and is
+// ok if the result provably approximates the root in the disc: n·|F/F′| about a point holds a
+// root, and one that is in the disc is this one. The factor 2 pays for the rounding of F′.
+func (c *chain) converge(q *pencil, k *knot, x, y float64, precise bool) (float64, float64, bool) {
 	var v value
-	for range 50 {
+	for range 60 {
 		q.at(x, y, &v)
+		if precise {
+			q.plane.precisely(x, y, q.κ, &v)
+		}
 		dx, dy, ok := v.newton()
 		if !ok {
-			return 0, false
+			return x, y, false
 		}
 		if c.real {
 			dy = 0
 		}
 		for range 20 {
-			if inside(x+dx, y+dy) {
+			if math.Hypot(x+dx-k.x, y+dy-k.y) < k.radius {
 				break
 			}
 			dx, dy = dx/2, dy/2
 		}
-		x, y = x+dx, y+dy
-		if size := math.Abs(dx) + math.Abs(dy); size <= 1e-8*k.radius || size <= 4*unitRoundoff*(math.Abs(x)+math.Abs(y)) {
-			// One more costs little and gives what float64 has.
-			q.at(x, y, &v)
-			if dx, dy, ok := v.newton(); ok && inside(x+dx, y+dy) {
-				x += dx
-				if !c.real {
-					y += dy
-				}
-			}
-			// n·|F/F′| about the point holds a root; being inside the disc of the knot it is this one.
-			n := float64(len(q.f) - 1)
-			miss := n * (math.Hypot(v.re, v.im) + v.errF) / math.Hypot(v.dRe, v.dIm)
-			return complex(x, y), math.Hypot(x-k.x, y-k.y)+miss < k.radius*(1+1e-9)
+		size := math.Abs(dx) + math.Abs(dy)
+		slope := math.Hypot(v.dRe, v.dIm)
+		if size <= 2*unitRoundoff*(math.Abs(x)+math.Abs(y)) || size*slope <= v.errF {
+			miss := 2 * float64(q.plane.n) * (math.Hypot(v.re, v.im) + v.errF) / slope
+			return x + dx, y + dy, math.Hypot(x-k.x, y-k.y)+miss < k.radius
 		}
+		x, y = x+dx, y+dy
 	}
-	return 0, false
+	return x, y, false
 }
 
 // hermite returns the cubic with values z, p and derivatives v, q at the ends of an interval

@@ -69,7 +69,7 @@ func (s *shaper) split(c *chain, i int, lo, hi float64, x0, x1, v0, v1 complex12
 	if mid < c.knots[i+1].κ && mid >= c.knots[i+1].from {
 		j = i + 1
 	}
-	s.pencil.set(s.plane, mid)
+	s.pencil.set(mid)
 	x, ok := c.near(s.pencil, j, mid)
 	if !ok {
 		return
@@ -205,7 +205,7 @@ func (t *tracker) branch(b threads, points [][]point) Branch {
 	for _, p := range b.parts {
 		n += len(points[p.chain])
 	}
-	out := Branch{points: make([]point, 0, n), plane: t.plane, parts: make([]stretch, 0, len(b.parts))}
+	out := Branch{points: make([]point, 0, n), plane: t.plane, period: t.family.period, parts: make([]stretch, 0, len(b.parts))}
 	for i, p := range b.parts {
 		out.parts = append(out.parts, stretch{&t.chains[p.chain], p.mirror})
 		for j, q := range points[p.chain] {

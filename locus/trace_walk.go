@@ -5,26 +5,29 @@ import (
 	"math"
 	"math/cmplx"
 	"sort"
+
+	"github.com/polewright/polewright/poly"
 )
 
 // A tracker walks all roots of a family through the gains, upwards. All gains and places are
 // in the coordinates of its plane.
 type tracker struct {
-	family   Family // without common factors
-	plane    *plane
-	pencil   *pencil
-	pairs    []float64
-	ctx      context.Context
-	budget   int // steps left
-	spent    int
-	from     float64 // where the walk starts
-	end      float64 // where the walk ends
-	κ        float64 // where it is
-	reach    float64 // the proven discs of rows hold up to κ + reach
-	rows     []row
-	spare    []row
-	worst    float64 // see certify
-	limiting int
+	family       Family // without common factors
+	poles, zeros []poly.Root
+	plane        *plane
+	pencil       *pencil
+	pairs        []float64
+	ctx          context.Context
+	budget       int // steps left
+	spent        int
+	from         float64 // where the walk starts
+	end          float64 // where the walk ends
+	κ            float64 // where it is
+	reach        float64 // the proven discs of rows hold up to κ + reach
+	rows         []row
+	spare        []row
+	worst        float64 // see certify
+	limiting     int
 
 	chains   []chain
 	branches []threads
@@ -67,6 +70,17 @@ type threads struct {
 type part struct {
 	chain  int
 	mirror bool
+}
+
+// newTracker prepares for a family without common factors, of which not both polynomials are
+// constant, with the roots of both.
+func newTracker(f Family, poles, zeros []poly.Root, s *traceSettings) *tracker {
+	t := &tracker{family: f, poles: poles, zeros: zeros, plane: newPlane(f.fixed, f.scaled), ctx: s.ctx, budget: s.steps}
+	if t.budget <= 0 {
+		t.budget = defaultSteps
+	}
+	t.pencil = newPencil(t.plane)
+	return t
 }
 
 // newBranch adds a branch.
@@ -167,7 +181,7 @@ func (t *tracker) stepTowards(to float64) bool {
 
 // step goes to a gain within reach.
 func (t *tracker) step(to float64) bool {
-	t.pencil.set(t.plane, to)
+	t.pencil.set(to)
 	next := t.spare[:0]
 	for i := range t.rows {
 		old := &t.rows[i]
