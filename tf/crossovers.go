@@ -22,7 +22,7 @@ func (a *axisForm) gainCrossovers() ([]Crossover, error) {
 
 func (a *axisForm) gainCurve(memory *slab) intervalPoly {
 	g := memory.takeZero(len(a.nn.c))
-	g.add(1, a.nn)
+	g.add(max(a.weight, 1), a.nn)
 	g.add(-1, a.dd)
 	return g
 }

@@ -87,7 +87,7 @@ func (q precisePoint) im() *big.Float {
 func (q precisePoint) value(c curve) *big.Float {
 	switch c {
 	case gainCurve:
-		return sum([]*big.Float{q.nn()}, []*big.Float{bigMinus, q.dd()})
+		return sum([]*big.Float{big.NewFloat(max(q.p.a.weight, 1)), q.nn()}, []*big.Float{bigMinus, q.dd()})
 	case phaseCurve:
 		return q.im()
 	}

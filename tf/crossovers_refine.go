@@ -26,6 +26,9 @@ func (c curve) value(p axisPoint) halfValue {
 	switch c {
 	case gainCurve:
 		n, d := p.nn(), p.dd()
+		if w := p.a.weight; w > 0 {
+			n.v, n.e, n.slope = n.v*w, n.e*w, n.slope*w
+		}
 		g := n.v - d.v
 		return halfValue{valueBound{g, (n.e + d.e + unitRoundoff*math.Abs(g)) * (1 + 4*unitRoundoff)}, n.slope - d.slope}
 	case phaseCurve:

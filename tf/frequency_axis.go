@@ -22,6 +22,8 @@ type axisForm struct {
 	numerator, denominator poly.Poly // in s, or in w
 	degree                 int       // of the pair: the larger of both; in w it is formal
 	deadTime, period       float64
+	onBoundary             int     // closed-loop poles on the boundary that N and D had in common and are taken out
+	weight                 float64 // of |N|² in the gain curve; 0 means 1
 	unit                   float64 // rad/s; of the tangent in z; a power of two
 
 	memory slab
@@ -50,8 +52,58 @@ func newAxisForm(numerator, denominator poly.Poly, deadTime, period float64) *ax
 		a.numerator = toAxis(numerator, 0, a.degree)
 		a.denominator = toAxis(denominator, delay, a.degree)
 	}
+	a.dropEnds()
 	a.prepare()
+	if a.deadTime != 0 {
+		a.dropAxisFactor()
+	}
 	return a
+}
+
+// dropEnds takes out what N and D have in common at the two ends of the axis, v = 0 and in w
+// also v = ∞. Such a factor does not change g, but is a closed-loop pole on the boundary.
+func (a *axisForm) dropEnds() {
+	n, d := a.numerator, a.denominator
+	if n.Degree() < 0 {
+		return
+	}
+	low := 0
+	for n.Coefficient(low) == 0 && d.Coefficient(low) == 0 {
+		low++
+	}
+	if low > 0 {
+		a.numerator, a.denominator = withoutPowers(n, low), withoutPowers(d, low)
+		a.degree -= low
+		a.onBoundary += low
+	}
+	if top := max(n.Degree(), d.Degree()) - low; top < a.degree {
+		a.onBoundary += a.degree - top
+		a.degree = top
+	}
+}
+
+// withoutPowers returns p/s^k, which leaves no remainder.
+func withoutPowers(p poly.Poly, k int) poly.Poly {
+	c, exponent := p.Integers()
+	return poly.FromIntegers(c[k:], exponent)
+}
+
+// dropAxisFactor takes out a factor common to N and D with roots on the axis, which the
+// searches on functions with dead time could not pass.
+func (a *axisForm) dropAxisFactor() {
+	if _, ok := a.gainCrossoversFast(); ok {
+		return // |N| = |D| ≠ 0 at every crossover, and a common root would be one
+	}
+	e := a.exactly()
+	if !e.commonOnAxis() {
+		return
+	}
+	n := divideExactly(exactPoly(a.numerator), e.common)
+	d := divideExactly(exactPoly(a.denominator), e.common)
+	a.onBoundary += countBoundary(e.common)
+	a.degree -= e.common.Degree()
+	a.numerator, a.denominator = poly.FromIntegers(n.Integers()), poly.FromIntegers(d.Integers())
+	a.prepare()
 }
 
 // toAxis returns (1-w)^degree · z^delay·p(z) at z = (1+w)/(1-w), exactly.

@@ -301,7 +301,7 @@ func (a *axisForm) turnBack(p exactPoint) float64 {
 }
 
 func (e *exactAxis) gainCrossovers() ([]Crossover, error) {
-	g := e.nn.Sub(e.dd)
+	g := e.nn.Scale(exact.Float(max(e.a.weight, 1))).Sub(e.dd)
 	if g.IsZero() {
 		return nil, &DegenerateError{Call: "tf: gain crossovers", What: "the magnitude of the open loop is 1 at every frequency"}
 	}

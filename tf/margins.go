@@ -22,8 +22,8 @@ type Margins struct {
 	// since a delay between samples is no function of z.
 	Delay float64
 
-	SensitivityPeak     float64 // supremum over frequency of |1/(1+L)|; +Inf with a closed-loop pole on the boundary
-	SensitivityPeakAt   float64 // rad/s; 0 or +Inf where it is only approached
+	SensitivityPeak   float64 // supremum over frequency of |1/(1+L)|; +Inf with a closed-loop pole on the boundary
+	SensitivityPeakAt float64 // rad/s; 0 or +Inf where it is only approached
 
 	// GainIncrease is the smallest gain margin above 1, at any frequency with 0 and +Inf
 	// included: a stable loop stays stable until its gain has grown by this ratio. +Inf for a

@@ -18,8 +18,7 @@ func (a *axisForm) stableWithDeadTime(c halfPlaneCount) poly.Verdict {
 	if a.gainAtInfinityReaches1() {
 		return poly.Fails
 	}
-	e := a.exactlyIfNeeded()
-	if e != nil && e.commonOnAxis() || a.characteristicVanishesAtZero() {
+	if a.characteristicVanishesAtZero() {
 		return poly.Fails
 	}
 	rational := *a
@@ -102,17 +101,6 @@ func (a *axisForm) characteristicVanishesAtZero() bool {
 		return false
 	}
 	return exactPoly(a.numerator).Coefficient(0).Add(exactPoly(a.denominator).Coefficient(0)).Sign() == 0
-}
-
-// exactlyIfNeeded returns the exact form unless float64 proves that N and D have no common
-// root on the axis; then nil.
-func (a *axisForm) exactlyIfNeeded() *exactAxis {
-	if a.ok {
-		if _, ok := a.gainCrossoversFast(); ok {
-			return nil // |N| = |D| ≠ 0 at every crossover, and a common root would be one
-		}
-	}
-	return a.exactly()
 }
 
 // commonOnAxis tells whether N and D share a root on the axis.

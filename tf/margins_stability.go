@@ -86,6 +86,9 @@ func routh(p intervalPoly, memory slab) (right int, ok bool) {
 // stable tells whether all roots of N·e^(-s·deadTime) + D lie inside the region of
 // stability, at a distance from its boundary.
 func (a *axisForm) stable() poly.Verdict {
+	if a.onBoundary > 0 {
+		return poly.Fails
+	}
 	c := a.countRight()
 	if a.deadTime == 0 {
 		if c.right > 0 || c.axis > 0 {
