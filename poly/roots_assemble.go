@@ -2,31 +2,38 @@ package poly
 
 import (
 	"math"
-	"math/big"
+
+	"github.com/polewright/polewright/internal/rootkernel"
 )
 
-// assemble rounds the locations of the upper half plane to float64, adds the conjugates and
-// merges what float64 cannot part.
-func assemble(call string, roots []Root, found []location) ([]Root, error) {
-	for _, l := range found {
-		r, err := l.round(call)
-		if err != nil {
-			return nil, err
-		}
-		roots = append(roots, r)
-		if !l.real {
-			r.Value = complex(real(r.Value), -imag(r.Value))
-			roots = append(roots, r)
+// A located root is a disc with what it holds: the upper one of conjugates, or, with Y = 0,
+// one that is its own mirror image.
+type located struct {
+	rootkernel.Disc
+	multiplicity, distinct int
+}
+
+func (l located) root() Root {
+	return Root{complex(l.X, l.Y), l.Radius, l.HalfX, l.HalfY, l.multiplicity, l.distinct}
+}
+
+// assemble merges what float64 cannot part, and adds the conjugates.
+func assemble(all []located) []Root {
+	for i := range all {
+		if l := &all[i]; l.Y != 0 && l.Y <= l.Radius {
+			// It meets its own conjugate.
+			*l = located{rootkernel.Disc{
+				X: l.X, Radius: hypotUp(l.HalfX, up(l.Y+l.HalfY)), HalfX: l.HalfX, HalfY: up(l.Y + l.HalfY),
+			}, 2 * l.multiplicity, 2 * l.distinct}
 		}
 	}
 	for merged := true; merged; {
 		merged = false
-		for i := 0; i < len(roots); i++ {
+		for i := 0; i < len(all); i++ {
 			for j := 0; j < i; j++ {
-				if meet(roots[i], roots[j]) {
-					roots[j] = merge(roots[i], roots[j])
-					roots[i] = roots[len(roots)-1]
-					roots = roots[:len(roots)-1]
+				if all[i].meets(all[j]) {
+					all[j] = all[j].merge(all[i])
+					all = append(all[:i], all[i+1:]...)
 					merged = true
 					i--
 					break
@@ -34,110 +41,50 @@ func assemble(call string, roots []Root, found []location) ([]Root, error) {
 			}
 		}
 	}
+	roots := make([]Root, 0, 2*len(all))
+	for _, l := range all {
+		r := l.root()
+		roots = append(roots, r)
+		if l.Y != 0 {
+			r.Value = complex(l.X, -l.Y)
+			roots = append(roots, r)
+		}
+	}
 	sortRoots(roots)
-	return roots, nil
+	return roots
 }
 
-// round returns the root at the float64 nearest to the location.
-func (l location) round(call string) (Root, error) {
-	r := Root{Multiplicity: l.multiplicity * l.distinct, Distinct: l.distinct}
-	re, im := l.re, l.im
-	var x, y float64
-	x, r.HalfRe = roundPart(re, l.radius)
-	y, r.HalfIm = roundPart(im, l.radius)
-	if l.real {
-		y = 0
-		if l.distinct == 1 {
-			r.HalfIm = 0
-		} else {
-			r.HalfIm = upward(new(big.Float).Add(new(big.Float).Abs(im), l.radius))
-		}
-	}
-	if l.imaginary {
-		x = 0
-		if l.distinct == 1 {
-			r.HalfRe = 0
-		} else {
-			r.HalfRe = upward(new(big.Float).Add(new(big.Float).Abs(re), l.radius))
-		}
-	}
-	if math.IsInf(x, 0) || math.IsInf(y, 0) || math.IsInf(math.Hypot(x, y), 0) {
-		return r, &RangeError{Call: call, Reason: "a root is too large for float64: its modulus is about " + modulus(bigComplex{re, im}).Text('g', 6)}
-	}
-	if x == 0 && y == 0 {
-		return r, &RangeError{Call: call, Reason: "a root is too small for float64 without being zero: its modulus is about " + modulus(bigComplex{re, im}).Text('g', 6)}
-	}
-	r.Value = complex(x, y)
-	r.Radius = hypotUp(r.HalfRe, r.HalfIm)
-	return r, nil
+// meets reports whether two discs may have a common point.
+func (l located) meets(m located) bool {
+	// By quarters, against overflow.
+	gap := math.Hypot(l.X/4-m.X/4, l.Y/4-m.Y/4)
+	reach := l.Radius/4 + m.Radius/4
+	return gap-gap*0x1p-50 <= reach+4*math.SmallestNonzeroFloat64
 }
 
-// roundPart returns the float64 nearest to x and a bound on its distance from anything
-// within radius of x.
-func roundPart(x, radius *big.Float) (float64, float64) {
-	f, _ := x.Float64()
-	if math.IsInf(f, 0) {
-		return f, math.Inf(1)
+// merge returns one disc that covers two. The centre is that of the larger number of roots;
+// on the real axis, if one of them is.
+func (l located) merge(m located) located {
+	if l.Y != 0 && (m.Y == 0 || m.multiplicity > l.multiplicity) {
+		l, m = m, l
 	}
-	miss := new(big.Float).SetPrec(x.Prec() + 1200).SetFloat64(f)
-	miss.Sub(miss, x)
-	miss.Abs(miss)
-	return f + 0, upward(new(big.Float).SetPrec(miss.Prec()).Add(miss, radius))
+	both := located{rootkernel.Disc{X: l.X, Y: l.Y}, l.multiplicity + m.multiplicity, l.distinct + m.distinct}
+	if l.Y == 0 && m.Y != 0 {
+		both.multiplicity += m.multiplicity // and its conjugate
+		both.distinct += m.distinct
+	}
+	dx, dy := math.Abs(l.X-m.X), math.Abs(l.Y-m.Y)
+	both.HalfX = max(l.HalfX, up(dx+m.HalfX))
+	both.HalfY = max(l.HalfY, up(dy+m.HalfY))
+	both.Radius = max(l.Radius, up(hypotUp(dx, dy)+m.Radius))
+	return both
 }
 
-// upward rounds x ≥ 0 up to a float64.
-func upward(x *big.Float) float64 {
-	f, accuracy := x.Float64()
-	if accuracy == big.Below {
-		return math.Nextafter(f, math.Inf(1))
-	}
-	return f
-}
+// meet and merge do the same with real roots.
+func meet(a, b Root) bool { return a.located().meets(b.located()) }
 
-// hypotUp returns an upper bound of √(a²+b²); exact where one of them is 0.
-func hypotUp(a, b float64) float64 {
-	if a == 0 || b == 0 {
-		return a + b
-	}
-	h := math.Hypot(a, b)
-	return h + (h*0x1p-50 + 4*math.SmallestNonzeroFloat64)
-}
+func merge(a, b Root) Root { return a.located().merge(b.located()).root() }
 
-// meet reports whether two discs may have a common point.
-func meet(a, b Root) bool {
-	dx, dy := math.Abs(real(a.Value)/4-real(b.Value)/4), math.Abs(imag(a.Value)/4-imag(b.Value)/4)
-	if a.Value == b.Value {
-		return true
-	}
-	gap := math.Hypot(dx, dy)
-	reach := a.Radius/4 + b.Radius/4
-	return gap-gap*0x1p-50 <= reach+8*math.SmallestNonzeroFloat64
-}
-
-// merge returns one disc that covers two.
-func merge(a, b Root) Root {
-	if b.Multiplicity > a.Multiplicity {
-		a, b = b, a
-	}
-	// Two conjugates become a real value.
-	v := a.Value
-	if imag(a.Value) != 0 && imag(a.Value) == -imag(b.Value) && real(a.Value) == real(b.Value) {
-		v = complex(real(v), 0)
-	}
-	r := Root{Value: v, Multiplicity: a.Multiplicity + b.Multiplicity, Distinct: a.Distinct + b.Distinct}
-	for _, c := range [...]Root{a, b} {
-		r.HalfRe = max(r.HalfRe, up(math.Abs(real(c.Value)-real(v)))+c.HalfRe)
-		r.HalfIm = max(r.HalfIm, up(math.Abs(imag(c.Value)-imag(v)))+c.HalfIm)
-		r.Radius = max(r.Radius, hypotUp(up(math.Abs(real(c.Value)-real(v))), up(math.Abs(imag(c.Value)-imag(v))))+c.Radius)
-	}
-	r.HalfRe, r.HalfIm, r.Radius = up(r.HalfRe), up(r.HalfIm), up(r.Radius)
-	return r
-}
-
-// up returns something a little larger than x > 0.
-func up(x float64) float64 {
-	if x == 0 {
-		return 0
-	}
-	return x + (x*0x1p-50 + math.SmallestNonzeroFloat64)
+func (r Root) located() located {
+	return located{rootkernel.Disc{X: real(r.Value), Radius: r.Radius, HalfX: r.HalfRe, HalfY: r.HalfIm}, r.Multiplicity, r.Distinct}
 }

@@ -4,10 +4,10 @@ import (
 	"fmt"
 	"math"
 	"math/big"
-)
 
-// bigComplex is a complex number in extended precision.
-type bigComplex struct{ re, im *big.Float }
+	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/internal/rootkernel"
+)
 
 // bigSolver moves points towards the roots of one square-free polynomial.
 type bigSolver struct {
@@ -20,10 +20,6 @@ type bigSolver struct {
 	done  []bool
 	t     [8]*big.Float
 }
-
-const shortBits = 64 // precision of magnitudes and bounds
-
-func short() *big.Float { return new(big.Float).SetPrec(shortBits) }
 
 // setPrecision continues with so many bits.
 func (b *bigSolver) setPrecision(bits uint) {
@@ -129,18 +125,6 @@ func (b *bigSolver) multiply(x, y bigComplex) {
 	x.im.Add(b.t[2], b.t[3])
 }
 
-// modulus returns |z| within 2⁻⁶⁰ of itself.
-func modulus(z bigComplex) *big.Float {
-	x, y := short().Set(z.re), short().Set(z.im)
-	x.Mul(x, x)
-	y.Mul(y, y)
-	x.Add(x, y)
-	if x.Sign() == 0 {
-		return x
-	}
-	return x.Sqrt(x)
-}
-
 // inverse returns 1/z in short precision, for z ≠ 0.
 func inverse(z bigComplex) bigComplex {
 	x, y := short().Set(z.re), short().Set(z.im)
@@ -234,18 +218,22 @@ func (b *bigSolver) radii() []*big.Float {
 }
 
 // maxBits bounds the precision, and with it the work.
-const maxBits = 1 << 16
+const maxBits = 1 << 15
 
-// locate finds the roots of a square-free polynomial (by power, not zero at 0).
-func locate(call string, a []*big.Int, multiplicity int) ([]location, error) {
+// locate finds all roots of a square-free polynomial, not zero at 0, at once: single ones
+// and clusters that float64 cannot part. It starts at the given points (the upper ones of
+// conjugate pairs), if they are all there.
+func locate(call string, f exact.Poly, points []rootkernel.Point, mirrored bool) ([]located, error) {
+	a, _ := f.Integers()
 	n := len(a) - 1
 	b := &bigSolver{n: n, whole: a, a: make([]*big.Float, n+1), size: make([]*big.Float, n+1), z: make([]bigComplex, n), done: make([]bool, n)}
 	for i := range b.z {
 		b.z[i] = bigComplex{new(big.Float), new(big.Float)}
 	}
-	mirror := symmetric(a)
 	b.setPrecision(128)
-	b.start(0.7)
+	if !b.startAt(points) {
+		b.start(0.7)
+	}
 	for bits := uint(128); bits <= maxBits; bits *= 2 {
 		b.setPrecision(bits)
 		for k := 0; k < 60+4*n; k++ {
@@ -253,18 +241,61 @@ func locate(call string, a []*big.Int, multiplicity int) ([]location, error) {
 				break
 			}
 		}
-		if found, ok := b.settle(mirror, multiplicity); ok {
-			return found, nil
+		if found, ok := b.settle(mirrored); ok {
+			return inRange(found, call)
 		}
 	}
 	return nil, &ArgumentError{Call: call, Argument: "p", Reason: fmt.Sprintf("the roots were not parted within %d bits", maxBits)}
 }
 
-// tight is how well the last stage knows a root before it rounds to float64.
-const tight = -58
+// startAt starts at given points and reports whether they are usable.
+func (b *bigSolver) startAt(points []rootkernel.Point) bool {
+	var all []rootkernel.Point
+	seen := map[rootkernel.Point]bool{}
+	for _, p := range points {
+		if size := math.Hypot(p.X, p.Y); !(size > 0) || math.IsInf(size, 0) || seen[p] {
+			return false
+		}
+		seen[p] = true
+		all = append(all, p)
+		if p.Y != 0 {
+			all = append(all, rootkernel.Point{X: p.X, Y: -p.Y})
+		}
+	}
+	if len(all) != b.n {
+		return false
+	}
+	for i, p := range all {
+		// Off the axes of symmetry, on which points could not leave each other.
+		size := math.Hypot(p.X, p.Y)
+		b.z[i].re.SetFloat64(p.X + 0x1p-60*size*float64(i%7))
+		b.z[i].im.SetFloat64(p.Y + 0x1p-60*size*float64(i%5-2))
+	}
+	return true
+}
+
+// inRange rounds locations to float64, or says which is out of its range.
+func inRange(found []location, call string) ([]located, error) {
+	rounded := make([]located, 0, len(found))
+	for _, l := range found {
+		d := l.disc()
+		side := ""
+		switch size := math.Hypot(d.X, d.Y); {
+		case math.IsInf(size, 0) || math.IsInf(d.Radius, 0):
+			side = "large"
+		case size == 0:
+			side = "small, without being zero"
+		}
+		if side != "" {
+			return nil, &RangeError{Call: call, Reason: fmt.Sprintf("a root of modulus %s is too %s for a float64", modulus(bigComplex{l.re, l.im}).Text('g', 6), side)}
+		}
+		rounded = append(rounded, located{d, l.distinct, l.distinct})
+	}
+	return rounded, nil
+}
 
 // settle proves discs and reports whether they are good enough.
-func (b *bigSolver) settle(mirror bool, multiplicity int) ([]location, bool) {
+func (b *bigSolver) settle(mirror bool) ([]location, bool) {
 	radii := b.radii()
 	// Components of discs that meet.
 	group := make([]int, b.n)
@@ -308,7 +339,7 @@ func (b *bigSolver) settle(mirror bool, multiplicity int) ([]location, bool) {
 		if r.Cmp(limit.SetMantExp(limit, tight)) > 0 {
 			return nil, false
 		}
-		discs = append(discs, location{re: c.re, im: c.im, radius: r, distinct: len(m), multiplicity: multiplicity})
+		discs = append(discs, location{re: c.re, im: c.im, radius: r, distinct: len(m)})
 	}
 	for i := range discs {
 		for j := range discs[:i] {
@@ -321,17 +352,12 @@ func (b *bigSolver) settle(mirror bool, multiplicity int) ([]location, bool) {
 	var found []location
 	for i := range discs {
 		d := &discs[i]
-		size := modulus(bigComplex{d.re, d.im})
 		if within(d.im, d.radius) {
 			if !b.alone(discs, i, bigComplex{d.re, new(big.Float).Neg(d.im)}) {
 				return nil, false
 			}
 			d.real = true
-			if d.distinct > 1 {
-				// The members may be real or not; the value is real, the extent stays.
-				d.im = new(big.Float).Set(d.im)
-			}
-		} else if !small(d.radius, d.im, size) {
+		} else if !small(d.radius, d.im) {
 			return nil, false
 		}
 		if within(d.re, d.radius) && !d.real {
@@ -343,7 +369,7 @@ func (b *bigSolver) settle(mirror bool, multiplicity int) ([]location, bool) {
 			} else {
 				return nil, false
 			}
-		} else if !d.real && !small(d.radius, d.re, size) {
+		} else if !d.real && !small(d.radius, d.re) {
 			return nil, false
 		}
 		if d.real || d.im.Sign() > 0 {
@@ -351,17 +377,6 @@ func (b *bigSolver) settle(mirror bool, multiplicity int) ([]location, bool) {
 		}
 	}
 	return found, true
-}
-
-// within reports whether |x| ≤ r.
-func within(x, r *big.Float) bool {
-	return new(big.Float).Abs(x).Cmp(r) <= 0
-}
-
-// small reports whether r is small enough beside a part to know it.
-func small(r, part, size *big.Float) bool {
-	limit := short().Abs(part)
-	return r.Cmp(limit.SetMantExp(limit, tight)) <= 0
 }
 
 // apart reports whether two closed discs have no common point.

@@ -4,78 +4,160 @@ import (
 	"math/big"
 
 	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/internal/rootkernel"
 )
 
-// The last stage works on integers and math/big. It splits the polynomial into square-free
-// factors, moves points towards the roots of each by the Ehrlich–Aberth iteration, proves
-// discs about them, and doubles the precision until every root is known well enough for its
-// nearest float64 or belongs to a cluster that float64 cannot part.
+// The exact stage splits the polynomial into square-free factors, and where a root may lie
+// on the imaginary axis, splits off what is symmetric about it. The fast stages go over each
+// factor again; what they leave is settled with math/big.
 
-// A location is a disc in extended precision that holds as many distinct roots as it says.
-type location struct {
-	re, im       *big.Float
-	radius       *big.Float
-	distinct     int
-	multiplicity int // of each of the distinct roots
-	real         bool
-	imaginary    bool
-}
-
-// rootsExact is the stage that answers whatever the polynomial.
-func (p Poly) rootsExact(call string) ([]Root, error) {
+// exactly is the stage that answers whatever the polynomial, which has so many roots at 0.
+func (s *Solver) exactly(p Poly, zeros int, call string) ([]Root, error) {
 	x := p.scaled()
-	zeros := 0
-	for x.integers[zeros].Sign() == 0 {
-		zeros++
-	}
-	var roots []Root
+	var all []located
 	if zeros > 0 {
-		roots = append(roots, Root{Multiplicity: zeros, Distinct: 1})
+		all = append(all, located{multiplicity: zeros, distinct: 1})
 	}
-	if zeros == p.Degree() {
-		return roots, nil
-	}
-	var found []location
 	for _, f := range exact.New(x.integers[zeros:], 0).SquareFree() {
-		for _, part := range splitImaginary(f.Poly) {
-			ls, err := locate(call, part, f.Multiplicity)
-			if err != nil {
-				return nil, err
+		found, err := s.simple(f.Poly, call)
+		if err != nil {
+			return nil, err
+		}
+		for _, l := range found {
+			l.multiplicity *= f.Multiplicity
+			all = append(all, l)
+		}
+	}
+	return assemble(all), nil
+}
+
+// simple finds the roots of a square-free polynomial that is not zero at 0.
+func (s *Solver) simple(f exact.Poly, call string) ([]located, error) {
+	mirrored := symmetric(f)
+	found, ok, err := s.attempt(f, mirrored, call)
+	if ok || err != nil {
+		return found, err
+	}
+	// The real part of some root may be zero. If so, it is a root of the greatest common
+	// divisor of f(s) and f(-s), which has all its roots in pairs s, -s.
+	g := exact.GCD(f, mirror(f))
+	if g.Degree() == 0 {
+		return locate(call, f, s.kernel.Points(), false)
+	}
+	rest, _ := f.Divide(g)
+	found, ok, err = s.attempt(g, true, call)
+	if err != nil {
+		return nil, err
+	}
+	if !ok {
+		if found, err = locate(call, g, s.kernel.Points(), true); err != nil {
+			return nil, err
+		}
+	}
+	if rest.Degree() == 0 {
+		return found, nil
+	}
+	others, ok, err := s.attempt(rest, false, call)
+	if !ok && err == nil {
+		others, err = locate(call, rest, s.kernel.Points(), false)
+	}
+	return append(found, others...), err
+}
+
+// attempt lets the fast stages and Newton's iteration in math/big try. It is not ok if the
+// real part of a root remains in doubt.
+func (s *Solver) attempt(f exact.Poly, mirrored bool, call string) (found []located, ok bool, err error) {
+	k := &s.kernel
+	n := f.Degree()
+	c, lo, exponents, plain := split(f)
+	var failure rootkernel.Failure
+	discs := make([]rootkernel.Disc, 0, n)
+	if plain {
+		k.Set(c, lo)
+		k.Mirrored = mirrored
+		discs, failure = approach(k, discs, false)
+	} else {
+		k.SetScaled(c, lo, exponents)
+		k.Mirrored = mirrored
+		k.Start(0)
+		discs, failure = approachCarefully(k, discs, false)
+	}
+	switch failure {
+	case rootkernel.OnAxis:
+		return nil, false, nil
+	case rootkernel.Imprecise:
+		if more, ok := polish(f, k.Left, mirrored); ok {
+			discs = append(discs, more...)
+			rootkernel.Sort(discs)
+			if rootkernel.Disjoint(discs) {
+				failure = rootkernel.None
 			}
-			found = append(found, ls...)
 		}
 	}
-	return assemble(call, roots, found)
+	if failure != rootkernel.None {
+		found, err = locate(call, f, k.Points(), mirrored)
+		return found, true, err
+	}
+	found = make([]located, 0, len(discs))
+	for _, d := range discs {
+		found = append(found, located{d, 1, 1})
+	}
+	return found, true, nil
 }
 
-// splitImaginary splits a square-free polynomial, not zero at 0, into gcd(p(s), p(-s)) and
-// the rest. The roots of the first are symmetric about the imaginary axis, and all roots on
-// that axis are among them.
-func splitImaginary(p exact.Poly) [][]*big.Int {
-	a, _ := p.Integers()
-	mirror := make([]*big.Int, len(a))
+// mirror returns f(-s).
+func mirror(f exact.Poly) exact.Poly {
+	a, e := f.Integers()
+	m := make([]*big.Int, len(a))
 	for i, n := range a {
-		mirror[i] = n
+		m[i] = n
 		if i%2 == 1 {
-			mirror[i] = new(big.Int).Neg(n)
+			m[i] = new(big.Int).Neg(n)
 		}
 	}
-	g := exact.GCD(p, exact.New(mirror, 0))
-	if g.Degree() == 0 || g.Degree() == p.Degree() {
-		return [][]*big.Int{a}
-	}
-	rest, _ := p.Divide(g)
-	b, _ := g.Integers()
-	c, _ := rest.Integers()
-	return [][]*big.Int{b, c}
+	return exact.New(m, e)
 }
 
-// symmetric reports whether p(-s) = ±p(s).
-func symmetric(a []*big.Int) bool {
+// symmetric reports whether f(-s) = ±f(s).
+func symmetric(f exact.Poly) bool {
+	a, _ := f.Integers()
 	for i := len(a) - 2; i >= 0; i -= 2 {
 		if a[i].Sign() != 0 {
 			return false
 		}
 	}
 	return true
+}
+
+// split returns the coefficients of f, up to a common power of two, as (c + lo)·2^exponent
+// with a relative error of 2⁻¹⁰⁶. They are plain if the exponents are all 0.
+func split(f exact.Poly) (c, lo []float64, exponents []int, plain bool) {
+	a, _ := f.Integers()
+	c, lo, exponents = make([]float64, len(a)), make([]float64, len(a)), make([]int, len(a))
+	top := a[len(a)-1].BitLen()
+	plain = true
+	var rest big.Int
+	for i, n := range a {
+		e := n.BitLen()
+		if e == 0 {
+			continue
+		}
+		x := new(big.Float).SetMode(big.ToNearestEven).SetPrec(53).SetInt(n)
+		c[i], _ = new(big.Float).SetMantExp(x, -e).Float64()
+		x.Int(&rest)
+		rest.Sub(n, &rest)
+		lo[i], _ = new(big.Float).SetMantExp(new(big.Float).SetInt(&rest), -e).Float64()
+		exponents[i] = e - top
+		plain = plain && exponents[i] > -800 && exponents[i] < 800
+	}
+	if plain {
+		for i, e := range exponents {
+			// Powers of two: exact.
+			scale, _ := new(big.Float).SetMantExp(big.NewFloat(1), e).Float64()
+			c[i] *= scale
+			lo[i] *= scale
+		}
+		exponents = nil
+	}
+	return c, lo, exponents, plain
 }

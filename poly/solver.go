@@ -24,7 +24,9 @@ func (s *Solver) Roots(p Poly, opt ...Option) ([]Root, error) {
 	return roots, nil
 }
 
-// find appends the roots of p to dst, which is empty.
+// find appends the roots of p to dst, which is empty. The stages: float64 with residuals in
+// twice the precision; that with a frame for each point; exact factors, and math/big for
+// what is left.
 func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 	if err := p.solvable(call); err != nil || len(p.c) < 2 {
 		return dst, err
@@ -40,34 +42,7 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 	if p.exact != nil {
 		lo = p.exact.low(p.c)[zeros:]
 	}
-	if roots, ok := s.fast(dst, p.c[zeros:], lo, zeros); ok {
-		return roots, nil
-	}
-	roots, err := p.rootsExact(call)
-	return append(dst, roots...), err
-}
-
-// sweeps is how long the fast stage tries; it seldom needs half of it.
-const sweeps = 40
-
-// fast is the stage in float64 and double-double. It appends the roots of the polynomial
-// with the coefficients c + lo by power, the first not zero, and a root of so many zeros at
-// 0, or says that it cannot.
-func (s *Solver) fast(dst []Root, c, lo []float64, zeros int) ([]Root, bool) {
-	n := len(c) - 1
-	if c[0] == 0 || c[n] == 0 {
-		return dst, false // below the range of float64
-	}
-	if need := n + min(zeros, 1); cap(dst) < need {
-		dst = make([]Root, 0, need)
-	}
-	k := &s.kernel
-	k.Set(c, lo)
-	settled := true
-	if n > 0 {
-		k.Start(0)
-		settled = k.Iterate(sweeps)
-	}
+	n := p.Degree() - zeros
 	var room [32]rootkernel.Disc
 	discs := room[:0]
 	if n >= len(room) {
@@ -76,24 +51,50 @@ func (s *Solver) fast(dst []Root, c, lo []float64, zeros int) ([]Root, bool) {
 		}
 		discs = s.discs[:0]
 	}
-	failure := rootkernel.Imprecise
-	if settled {
-		discs, failure = k.Certify(discs, zeros > 0)
-	}
-	if failure == rootkernel.Imprecise {
-		k.Careful()
-		for attempt := 1; failure != rootkernel.None && attempt <= 2; attempt++ {
-			k.Iterate(sweeps)
-			discs, failure = k.Certify(discs[:0], zeros > 0)
-			if failure != rootkernel.None {
-				k.Start(attempt)
+	if c := p.c[zeros:]; c[0] != 0 && c[n] != 0 { // not below the range of float64
+		k := &s.kernel
+		k.Set(c, lo)
+		var failure rootkernel.Failure
+		if discs, failure = approach(k, discs, zeros > 0); failure == rootkernel.None {
+			if need := n + min(zeros, 1); cap(dst) < need {
+				dst = make([]Root, 0, need)
 			}
+			return appendDiscs(dst, discs, zeros), nil
 		}
 	}
-	if failure != rootkernel.None {
-		return dst, false
+	roots, err := s.exactly(p, zeros, call)
+	return append(dst, roots...), err
+}
+
+// sweeps is how long a stage tries; it seldom needs half of it.
+const sweeps = 40
+
+// approach runs the fast stage on the polynomial that k was set to, and the careful one
+// where that is not enough. It appends to discs, which is empty.
+func approach(k *rootkernel.Kernel, discs []rootkernel.Disc, origin bool) ([]rootkernel.Disc, rootkernel.Failure) {
+	failure := rootkernel.Imprecise
+	k.Start(0)
+	if k.Iterate(sweeps) {
+		if discs, failure = k.Certify(discs, origin); failure <= rootkernel.OnAxis {
+			return discs, failure
+		}
 	}
-	return appendDiscs(dst, discs, zeros), true
+	return approachCarefully(k, discs[:0], origin)
+}
+
+// approachCarefully goes on from the points of k in careful mode.
+func approachCarefully(k *rootkernel.Kernel, discs []rootkernel.Disc, origin bool) ([]rootkernel.Disc, rootkernel.Failure) {
+	failure := rootkernel.Imprecise
+	for attempt := 1; attempt <= 2; attempt++ {
+		k.Careful()
+		settled := k.Iterate(sweeps)
+		discs, failure = k.Certify(discs[:0], origin)
+		if settled || failure <= rootkernel.OnAxis {
+			break
+		}
+		k.Start(attempt)
+	}
+	return discs, failure
 }
 
 // appendDiscs turns sorted discs into roots, conjugates included. The disc at 0 with radius

@@ -13,13 +13,17 @@ type Disc struct {
 	HalfX, HalfY float64 // bounds on the distance of the root from the centre, part by part
 }
 
-// A Failure says what Certify could not do.
+// A Point is a point not proven to belong to a root; Y is 0 or positive.
+type Point struct{ X, Y float64 }
+
+// A Failure says what Certify could not do; of several reasons, the last in this list.
 type Failure int8
 
 const (
 	None      Failure = iota
-	Imprecise         // a disc came out too wide, or two of them meet
 	OnAxis            // the real part of a root may be zero
+	Imprecise         // a disc came out too wide
+	Meeting           // two discs meet
 )
 
 // Certify moves the points once or twice more, with the polynomial evaluated in twice the
@@ -29,31 +33,37 @@ const (
 //
 // With origin, a disc of radius 0 at 0 stands among them for roots there that the
 // polynomial was divided by.
+//
+// What is not proven stands in [Kernel.Left] afterwards, and the failure says why.
 func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
-	start := len(dst)
 	if origin {
 		dst = append(dst, Disc{})
 	}
+	k.Left = k.Left[:0]
+	failure := None
 	for _, q := range k.pairs() {
-		d, failure := k.certifyPair(q.x, q.y)
-		if failure != None {
-			return dst[:start], failure
+		d, why := k.certifyPair(q.x, q.y)
+		if why == None {
+			dst = append(dst, d)
+		} else {
+			k.Left = append(k.Left, Point{q.x, q.y})
+			failure = max(failure, why)
 		}
-		dst = append(dst, d)
 	}
 	for _, q := range k.reals() {
-		d, failure := k.certifyReal(q.x)
-		if failure != None {
-			return dst[:start], failure
+		d, why := k.certifyReal(q.x)
+		if why == None {
+			dst = append(dst, d)
+		} else {
+			k.Left = append(k.Left, Point{q.x, 0})
+			failure = max(failure, why)
 		}
-		dst = append(dst, d)
 	}
-	discs := dst[start:]
-	Sort(discs)
-	if !Disjoint(discs) {
-		return dst[:start], Imprecise
+	Sort(dst)
+	if !Disjoint(dst) {
+		failure = Meeting
 	}
-	return dst, None
+	return dst, failure
 }
 
 // Sort orders discs by X, then Y.
@@ -199,6 +209,12 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 					HalfX:  (math.Abs(lostX) + rho) * up,
 					HalfY:  (math.Abs(lostY) + rho) * up,
 				}, None
+			}
+			if k.Mirrored && math.Abs(X) <= rho {
+				// A disc of three times the radius holds this root and its mirror image,
+				// and still only one: they are the same.
+				half := (math.Abs((y-Y)+hy) + rho) * (unit * (1 + 0x1p-48))
+				return Disc{Y: Y * unit, Radius: half, HalfY: half}, None
 			}
 			failure = OnAxis
 		}

@@ -17,6 +17,12 @@ type Kernel struct {
 	c  []float64 // coefficients by power
 	lo []float64 // what c lacks to the exact coefficients, to nearest; nil if nothing
 
+	// Mirrored says that the roots are symmetric about the imaginary axis. The caller sets
+	// it, for one polynomial.
+	Mirrored bool
+	// Left is what the last Certify did not prove.
+	Left []Point
+
 	careful   bool
 	exponents []int // of the coefficients; nil if all are 0
 	frame     frame
@@ -57,7 +63,7 @@ func (k *Kernel) Set(c, lo []float64) {
 		k.largeReals = make([]real, k.n)
 	}
 	k.c, k.lo = c, lo
-	k.careful, k.exponents = false, nil
+	k.careful, k.exponents, k.Mirrored = false, nil, false
 }
 
 // room returns the storage of all points.
@@ -115,4 +121,16 @@ func (k *Kernel) removeReals(i, j int) {
 	copy(reals[j:], reals[j+1:])
 	copy(reals[i:], reals[i+1:])
 	k.realCount -= 2
+}
+
+// Points returns all points, the upper one of each pair.
+func (k *Kernel) Points() []Point {
+	points := make([]Point, 0, k.n)
+	for _, q := range k.pairs() {
+		points = append(points, Point{q.x, q.y})
+	}
+	for _, q := range k.reals() {
+		points = append(points, Point{q.x, 0})
+	}
+	return points
 }
