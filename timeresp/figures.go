@@ -1,26 +1,31 @@
 package timeresp
 
 import (
+	"fmt"
 	"math"
 
 	"github.com/polewright/polewright/poly"
 )
 
 // Figures are the figures of merit of a response. Times are in seconds from t = 0, dead time
-// included; fractions are of |Final|. What does not exist is NaN.
+// included; fractions are of |Final|. What does not exist is NaN. If Final is 0 only the
+// largest value and its time exist.
 type Figures struct {
 	Final          float64 // the limit for t → ∞
 	Overshoot      float64 // the largest excess beyond Final, fraction of |Final|; 0 if there is none
 	Undershoot     float64 // the largest excursion to the side opposite Final, fraction of |Final|; 0 if there is none
 	PeakTime       float64 // of the overshoot; NaN if there is none
-	RiseTime       float64 // from the first crossing of 10 % to that of 90 %
+	RiseTime       float64 // from the first crossing of 10 % to that of 90 %; 0 if already there at the start
 	SettlingTime   float64 // the last entry into the band
 	PeakValue      float64 // the response at PeakTime
 	UndershootTime float64 // of the undershoot; NaN if there is none
-	DelayTime      float64 // first crossing of 50 %
-	RiseTimeFull   float64 // first crossing of 100 %; NaN if there is none
-	Reach10        float64 // first crossing of 10 %
-	Reach90        float64 // first crossing of 90 %
+	Reach10        float64 // first crossing of 10 % of Final; likewise the next two
+	DelayTime      float64 // of 50 %
+	Reach90        float64 // of 90 %
+	Reach100       float64 // of 100 %; NaN if Final is only approached
+	FullRiseTime   float64 // from the start of the response to Reach100
+	LargestValue   float64 // the value of largest magnitude; Final if that is only approached
+	LargestTime    float64 // when it is taken; NaN if it is only approached
 }
 
 // noExcursion is the excursion beyond the final value, as a fraction of it, that counts as none.
@@ -39,6 +44,14 @@ type curve interface {
 	cellStart(tau float64) float64
 	// horizon returns the τ from which on the spread of nodes bounds what is still to come.
 	horizon() float64
+}
+
+// A signal is a curve that starts at rest.
+type signal interface {
+	curve
+	at(t, lo float64) float64 // value at t + lo seconds after the start
+	rate() float64            // w
+	ultimate() float64        // limit for t → ∞; NaN if there is none
 }
 
 // A node is the signal at one instant, by scaled time.
@@ -88,6 +101,8 @@ type scan struct {
 	least   float64
 	leastAt float64
 	band    float64
+	span    float64 // nothing closer to the final value than this, over it, is looked for
+	only    int     // stop after so many levels; 0: do not
 }
 
 const maxDepth = 60
@@ -258,42 +273,151 @@ func (s *scan) extremum(a, b node) node {
 	return b
 }
 
-// Figures returns the figures of merit, the settling time for a band that is a fraction of
-// the final value (0.02).
+// scan returns a scan that has looked at nothing yet.
+func (r *Response) scan() (s scan, start, w float64) {
+	nan := math.NaN()
+	s = scan{levels: [4]float64{0.1, 0.5, 0.9, 1}, reached: [4]float64{nan, nan, nan, nan}, mostAt: nan, leastAt: nan}
+	s.curve, w = r.curve()
+	if r.final == 0 {
+		s.inverse, s.next = 1, len(s.levels)
+	} else {
+		s.inverse, s.most, s.least = 1/r.final, 1+noExcursion, -noExcursion
+		s.span = 1
+	}
+	return s, r.arcs[0].from, w
+}
+
+// ready reports why a call for figures has no answer.
+func (r *Response) ready(call string) error {
+	if math.IsNaN(r.final) {
+		return &NoFinalValueError{Call: call}
+	}
+	return nil
+}
+
+func checkBand(call string, band float64) error {
+	if !(band > 0) || math.IsInf(band, 0) {
+		return &poly.ArgumentError{Call: call, Argument: "band", Reason: fmt.Sprintf("%v is no positive fraction of the final value", band)}
+	}
+	return nil
+}
+
+// Figures returns the figures of merit, with the settling time for a band that is a fraction
+// of the final value, such as 0.02. An excursion below 1e-9·|Final| is none.
+//
+// The error is a [*poly.ArgumentError] for a band that is not positive and finite, and a
+// [*NoFinalValueError], with every figure NaN, if the response has no limit.
 func (r *Response) Figures(band float64) (Figures, error) {
 	const call = "timeresp.Response.Figures"
 	nan := math.NaN()
-	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
-	if !(band > 0) || math.IsInf(band, 0) {
-		return f, &poly.ArgumentError{Call: call, Argument: "band", Reason: "must be a positive fraction of the final value"}
+	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
+	if err := checkBand(call, band); err != nil {
+		return f, err
 	}
-	if math.IsNaN(r.final) {
-		return f, &NoFinalValueError{Call: call}
+	if err := r.ready(call); err != nil {
+		return f, err
 	}
-	if r.final == 0 {
+	if len(r.arcs) == 0 {
+		f.LargestValue = 0
 		return f, nil
 	}
-	c, w := r.curve()
-	start := r.arcs[0].from
-	s := scan{curve: c, inverse: 1 / r.final, levels: [4]float64{0.1, 0.5, 0.9, 1}, band: band}
-	for i := range s.reached {
-		s.reached[i] = nan
-	}
-	s.most, s.mostAt, s.least, s.leastAt = 1+noExcursion, nan, -noExcursion, nan
+	s, start, w := r.scan()
 	s.run()
 	seconds := func(tau float64) float64 { return start + tau/w }
+	if r.final == 0 {
+		f.LargestValue, f.LargestTime = s.largest(0)
+		f.LargestTime = seconds(f.LargestTime)
+		return f, nil
+	}
 	f.Overshoot, f.Undershoot = 0, 0
 	if s.mostAt == s.mostAt {
 		f.Overshoot, f.PeakTime, f.PeakValue = s.most-1, seconds(s.mostAt), s.most*r.final
-		f.RiseTimeFull = seconds(s.reached[3])
+		f.Reach100 = seconds(s.reached[3])
+		f.FullRiseTime = s.reached[3] / w
 	}
 	if s.leastAt == s.leastAt {
 		f.Undershoot, f.UndershootTime = -s.least, seconds(s.leastAt)
 	}
 	f.Reach10, f.DelayTime, f.Reach90 = seconds(s.reached[0]), seconds(s.reached[1]), seconds(s.reached[2])
 	f.RiseTime = (s.reached[2] - s.reached[0]) / w
+	f.LargestValue, f.LargestTime = s.largest(r.final)
+	f.LargestTime = seconds(f.LargestTime)
+	s.band = band
 	f.SettlingTime = seconds(s.settle())
 	return f, nil
+}
+
+// largest returns the value of largest magnitude and its τ after run.
+func (s *scan) largest(final float64) (value, tau float64) {
+	switch {
+	case s.mostAt == s.mostAt && !(-s.least > s.most):
+		return s.most / s.inverse, s.mostAt
+	case s.leastAt == s.leastAt && -s.least > 1:
+		return s.least / s.inverse, s.leastAt
+	case s.leastAt == s.leastAt && final == 0:
+		return s.least / s.inverse, s.leastAt
+	}
+	return final, math.NaN()
+}
+
+// SettlingTime returns the last entry into a band about the final value, as by
+// [Response.Figures], and nothing else. It is NaN if the final value is 0.
+func (r *Response) SettlingTime(band float64) (float64, error) {
+	const call = "timeresp.Response.SettlingTime"
+	if err := checkBand(call, band); err != nil {
+		return math.NaN(), err
+	}
+	if err := r.ready(call); err != nil || r.final == 0 {
+		return math.NaN(), err
+	}
+	s, start, w := r.scan()
+	s.band = band
+	return start + s.settle()/w, nil
+}
+
+// Overshoot returns the overshoot and its time, as by [Response.Figures], and nothing else.
+func (r *Response) Overshoot() (fraction, time float64, err error) {
+	if err := r.ready("timeresp.Response.Overshoot"); err != nil || r.final == 0 {
+		return math.NaN(), math.NaN(), err
+	}
+	s, start, w := r.scan()
+	s.next, s.least = len(s.levels), math.Inf(-1)
+	s.run()
+	if s.mostAt != s.mostAt {
+		return 0, math.NaN(), nil
+	}
+	return s.most - 1, start + s.mostAt/w, nil
+}
+
+// RiseTime returns the time from the first crossing of 10 % of the final value to that of
+// 90 %, as by [Response.Figures], and nothing else. It is NaN if the final value is 0.
+func (r *Response) RiseTime() (float64, error) {
+	if err := r.ready("timeresp.Response.RiseTime"); err != nil || r.final == 0 {
+		return math.NaN(), err
+	}
+	s, _, w := r.scan()
+	s.most, s.least, s.only = math.Inf(1), math.Inf(-1), 3
+	s.run()
+	return (s.reached[2] - s.reached[0]) / w, nil
+}
+
+// Largest returns the value of largest magnitude, and when it is taken; the final value and
+// NaN if that is only approached. Of an effort it is what the actuator must give.
+func (r *Response) Largest() (value, time float64, err error) {
+	if err := r.ready("timeresp.Response.Largest"); err != nil {
+		return math.NaN(), math.NaN(), err
+	}
+	if len(r.arcs) == 0 {
+		return 0, math.NaN(), nil
+	}
+	s, start, w := r.scan()
+	s.next = len(s.levels)
+	if r.final != 0 {
+		s.least = -1
+	}
+	s.run()
+	value, tau := s.largest(r.final)
+	return value, start + tau/w, nil
 }
 
 // run looks from the start on until nothing is left to be found.
@@ -303,7 +427,10 @@ func (s *scan) run() {
 	s.see(&a)
 	horizon := s.curve.horizon()
 	for {
-		if a.t >= horizon && s.next >= 3 && a.spread <= s.most-1 && a.spread <= 1-s.least {
+		if s.only > 0 && s.next >= s.only {
+			return
+		}
+		if a.t >= horizon && s.next >= 3 && a.spread <= s.most-s.span && a.spread <= s.span-s.least {
 			return
 		}
 		end := s.curve.cellEnd(a.t)

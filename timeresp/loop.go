@@ -37,11 +37,30 @@ func between(ctx context.Context, call string, l tf.Loop, from, to tf.Point, in 
 		return respond(call, g, in)
 	}
 	if irrational := (*tf.IrrationalError)(nil); errors.As(err, &irrational) {
-		return delayed(ctx, call, l, path, in, opt)
+		return delayed(ctx, call, path, in)
 	}
 	return nil, err
 }
 
-func delayed(ctx context.Context, call string, l tf.Loop, path tf.Path, in Input, opt []Option) (*Response, error) {
-	return nil, &tf.UnsupportedError{Call: call, What: "dead time in the loop"}
+// delayed returns the response of a path whose loop has dead time.
+func delayed(ctx context.Context, call string, path tf.Path, in Input) (*Response, error) {
+	forward, delay, outer, fixed, scaled, around := path.Parts()
+	q, err := newDelayEquation(call, outer.Mul(fixed), outer.Mul(scaled), forward, around)
+	if err != nil {
+		return nil, err
+	}
+	d := q.decay()
+	r := &Response{}
+	for _, e := range in.events() {
+		s, err := q.solve(ctx, call, e, &d)
+		if err != nil {
+			return nil, err
+		}
+		r.arcs = append(r.arcs, arc{from: e.at + delay, signal: s})
+		for i := 0; i < len(s.dirac); i += 2 {
+			r.dirac = append(r.dirac, e.at+delay+s.dirac[i]/q.w, s.dirac[i+1]/q.w)
+		}
+	}
+	r.final = r.limit()
+	return r, nil
 }

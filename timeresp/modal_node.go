@@ -2,8 +2,10 @@ package timeresp
 
 import "math"
 
-// limit returns the value that the signal tends to; NaN if there is none.
-func (k *kernel) limit() float64 {
+func (k *kernel) rate() float64 { return k.w }
+
+// ultimate returns the value that the signal tends to; NaN if there is none.
+func (k *kernel) ultimate() float64 {
 	for i := range k.modes {
 		m := &k.modes[i]
 		if m.re >= 0 {

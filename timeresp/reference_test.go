@@ -1,11 +1,13 @@
 package timeresp
 
 import (
+	"encoding/json"
 	"math"
 	"testing"
 
 	"github.com/polewright/polewright/internal/refdata"
 	"github.com/polewright/polewright/poly"
+	"github.com/polewright/polewright/tf"
 )
 
 type referenceFigures struct {
@@ -92,6 +94,10 @@ func checkFigure(t *testing.T, what string, got float64, want refdata.Decimal) {
 func checkFigures(t *testing.T, r *Response, want *referenceFigures) {
 	t.Helper()
 	f, err := r.Figures(0.02)
+	if want.ExtremeTime != "" {
+		checkFigure(t, "LargestTime", f.LargestTime, want.ExtremeTime)
+		checkFigure(t, "LargestValue", f.LargestValue, want.ExtremeValue)
+	}
 	if err != nil {
 		t.Error(err)
 	}
@@ -108,15 +114,22 @@ func checkFigures(t *testing.T, r *Response, want *referenceFigures) {
 	checkFigure(t, "SettlingTime(5 %)", f.SettlingTime, want.Settling5)
 }
 
+func sumOf(xs []float64) (sum float64) {
+	for _, x := range xs {
+		sum += x
+	}
+	return sum
+}
+
 func TestReferenceCases(t *testing.T) {
 	for _, c := range readReference(t).Cases {
 		t.Run(c.ID, func(t *testing.T) {
 			num, den := referencePoly(t, c.Numerator), referencePoly(t, c.Denominator)
-			roots, err := den.Roots()
+			g, err := tf.New(num, den)
 			if err != nil {
 				t.Fatal(err)
 			}
-			r, err := rational("test", num, den, roots, unitStep, 0)
+			r, err := Step(g)
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -125,16 +138,96 @@ func TestReferenceCases(t *testing.T) {
 				checkFigure(t, "Final", r.final, c.Final)
 				checkFigures(t, r, c.Figures)
 			}
-			r, err = rational("test", num, den, roots, unitImpulse, 0)
+			r, err = Impulse(g)
 			if err != nil {
 				t.Fatal(err)
 			}
 			checkValues(t, "impulse", r, c.Times, c.Impulse)
-			r, err = rational("test", num, den, roots, unitRamp, 0)
+			_, areas := r.Impulses()
+			checkFigure(t, "area of the impulse", sumOf(areas), c.Dirac)
+			r, err = Ramp(g)
 			if err != nil {
 				t.Fatal(err)
 			}
 			checkValues(t, "ramp", r, c.RampTimes, c.Ramp)
+		})
+	}
+}
+
+// TestReferenceDeadTime checks dead time outside and inside the loop.
+func TestReferenceDeadTime(t *testing.T) {
+	for _, c := range readReference(t).DeadTime {
+		t.Run(c.ID, func(t *testing.T) {
+			g, err := tf.New(referencePoly(t, c.Numerator), referencePoly(t, c.Denominator))
+			if err != nil {
+				t.Fatal(err)
+			}
+			if g, err = g.WithDeadTime(c.Delay.Float(t)); err != nil {
+				t.Fatal(err)
+			}
+			var r *Response
+			if c.Kind == "plant" {
+				r, err = Step(g)
+			} else {
+				r, err = StepOf(tf.Loop{Plant: g})
+			}
+			if err != nil {
+				t.Fatal(err)
+			}
+			checkValues(t, "step", r, c.Times, c.Step)
+			checkFigure(t, "Final", r.Final(), c.Final)
+			checkFigures(t, r, c.Figures)
+		})
+	}
+}
+
+// TestStandardSecondOrder checks the figures of 1/(s² + 2ζs + 1).
+func TestStandardSecondOrder(t *testing.T) {
+	var file struct {
+		Cases []struct {
+			ID      string                     `json:"id"`
+			Zeta    refdata.Decimal            `json:"zeta"`
+			Figures map[string]json.RawMessage `json:"figures"`
+			// How much a rounding of zeta moves a figure.
+			Condition map[string]refdata.Decimal `json:"relative_condition"`
+		} `json:"cases"`
+	}
+	refdata.Read(t, "testdata/second.json", &file)
+	for _, c := range file.Cases {
+		t.Run(c.ID, func(t *testing.T) {
+			zeta := c.Zeta.Float(t)
+			g, err := tf.New(poly.New(1), poly.New(1, 2*zeta, 1))
+			if err != nil {
+				t.Fatal(err)
+			}
+			r, err := Step(g)
+			if err != nil {
+				t.Fatal(err)
+			}
+			check := func(name string, got float64) {
+				t.Helper()
+				var want refdata.Decimal
+				if err := json.Unmarshal(c.Figures[name], &want); err != nil {
+					t.Fatal(err)
+				}
+				checkFigure(t, name, got, want)
+			}
+			f, err := r.Figures(0.02)
+			if err != nil {
+				t.Fatal(err)
+			}
+			check("overshoot", f.Overshoot)
+			check("peak_time", f.PeakTime)
+			check("rise_0_100", f.FullRiseTime)
+			check("t10", f.Reach10)
+			check("t90", f.Reach90)
+			check("rise_10_90", f.RiseTime)
+			check("settling_2_percent", f.SettlingTime)
+			settling, err := r.SettlingTime(0.05)
+			if err != nil {
+				t.Fatal(err)
+			}
+			check("settling_5_percent", settling)
 		})
 	}
 }

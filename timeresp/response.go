@@ -18,7 +18,7 @@ type Response struct {
 // An arc is a summand of the signal, zero before from.
 type arc struct {
 	from   float64 // s
-	signal *kernel
+	signal signal
 }
 
 var (
@@ -76,7 +76,7 @@ func rational(call string, numerator, denominator poly.Poly, roots []poly.Root, 
 			if err != nil {
 				return nil, err
 			}
-			r.arcs = append(r.arcs, arc{e.at + deadTime, k})
+			r.arcs = append(r.arcs, arc{from: e.at + deadTime, signal: k})
 			if dirac != 0 {
 				r.dirac = append(r.dirac, e.at+deadTime, dirac)
 			}

@@ -60,7 +60,7 @@ func (k *kernel) extend(f *transform, largest float64) error {
 	}
 	w := newBench(uint(160 + max(bits, 0)))
 	modes := f.longModes(w)
-	final := k.limit()
+	final := k.ultimate()
 	start := k.earlyEnd
 	for range maxStages {
 		g := stage{start: start, final: final}

@@ -5,15 +5,16 @@ import "math"
 // curve returns the response as the figures look at it, time counted from the start of the
 // first arc and multiplied by w.
 func (r *Response) curve() (c curve, w float64) {
-	k := r.arcs[0].signal
+	first := r.arcs[0].signal
+	w = first.rate()
 	if len(r.arcs) == 1 {
-		return k, k.w
+		return first, w
 	}
 	s := &superposition{arcs: r.arcs, at: make([]float64, len(r.arcs))}
 	for i := range r.arcs {
-		s.at[i] = (r.arcs[i].from - r.arcs[0].from) * k.w
+		s.at[i] = (r.arcs[i].from - r.arcs[0].from) * w
 	}
-	return s, k.w
+	return s, w
 }
 
 // limit returns the limit of the sum.
@@ -22,15 +23,22 @@ func (r *Response) limit() float64 {
 		return 0
 	}
 	if len(r.arcs) == 1 {
-		return r.arcs[0].signal.limit()
+		return r.arcs[0].signal.ultimate()
+	}
+	if _, ok := r.arcs[0].signal.(*kernel); !ok {
+		sum := 0.0
+		for i := range r.arcs {
+			sum += r.arcs[i].signal.ultimate()
+		}
+		return sum
 	}
 	// The drifts add up to a polynomial of the time since the last arc began, which has to
 	// be a constant. Its coefficients are rounded sums.
-	w := r.arcs[0].signal.w
+	w := r.arcs[0].signal.rate()
 	last := r.arcs[len(r.arcs)-1].from
 	var sum, size []float64
 	for i := range r.arcs {
-		k := r.arcs[i].signal
+		k := r.arcs[i].signal.(*kernel)
 		for j := range k.modes {
 			if m := &k.modes[j]; m.re >= 0 && !(m.ar == 0 && m.ai == 0 && m.count == 1) {
 				return math.NaN()
@@ -91,14 +99,10 @@ func (s *superposition) fourth(a, b *node) float64 {
 		if s.at[i] >= b.t {
 			break
 		}
-		k := s.arcs[i].signal
-		if b.t-s.at[i] <= k.earlyEnd {
-			sum += k.earlyFourth(a.t-s.at[i], b.t-s.at[i])
-			continue
-		}
-		var n node
-		k.node(a.t-s.at[i], false, &n)
-		sum += n.fourth
+		var from node
+		to := node{t: b.t - s.at[i]}
+		s.arcs[i].signal.node(a.t-s.at[i], false, &from)
+		sum += s.arcs[i].signal.fourth(&from, &to)
 	}
 	return sum
 }
@@ -128,7 +132,7 @@ func (s *superposition) cellStart(tau float64) float64 {
 func (s *superposition) horizon() float64 {
 	end := 0.0
 	for i := range s.arcs {
-		end = max(end, s.at[i]+s.arcs[i].signal.earlyEnd)
+		end = max(end, s.at[i]+s.arcs[i].signal.horizon())
 	}
 	return end
 }

@@ -1,0 +1,315 @@
+package timeresp
+
+import (
+	"context"
+	"math"
+
+	"github.com/polewright/polewright/tf"
+)
+
+// A stepwise is the solution of a delay equation: Taylor polynomials on cells, and after
+// them its limit, or the solution continued for as long as one asks.
+type stepwise struct {
+	w         float64
+	h, period float64   // scaled
+	perPeriod int       // cells
+	q         []float64 // earlyTerms for each cell, by powers of the fraction of the cell
+	leading   int       // the first cell is this power times its polynomial
+	limit     float64   // NaN if there is none
+	settled   bool      // after the last cell the signal is its limit, to the accuracy promised
+	rest      *march    // at the end of the last cell; nil if settled
+	spreads   []float64 // bound on |y - limit| from a cell on; nil if there is no limit
+	dirac     []float64 // τ and areas of impulses, in scaled time
+}
+
+const (
+	leastPeriods = 8
+	mostCells    = 100_000
+	settledTo    = 1e-13 // of the largest value so far
+	askedCells   = 2_000_000
+)
+
+// solve follows the equation from rest under one event.
+func (q *delayEquation) solve(ctx context.Context, call string, in event, d *decay) (*stepwise, error) {
+	for attempt := 0; ; attempt++ {
+		s, err := q.attempt(ctx, in, d)
+		if s != nil || err != nil {
+			return s, err
+		}
+		if attempt == 6 {
+			return nil, &tf.UnsupportedError{Call: call, What: "a delay equation whose series does not converge on short cells"}
+		}
+		q.divide()
+	}
+}
+
+// attempt returns nil if the cells are too long.
+func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepwise, error) {
+	m := q.march(in)
+	s := &stepwise{w: q.w, h: q.h, period: q.period, perPeriod: q.cells, limit: math.NaN()}
+	var steady []float64
+	if d.ok {
+		s.limit, steady = q.steady(in)
+	}
+	largest := 0.0
+	deviation := make([]float64, q.n+1)
+	remaining := math.Inf(1)
+	for {
+		if m.index%q.cells == 0 {
+			if err := ctx.Err(); err != nil {
+				return nil, err
+			}
+			if m.index > 0 && steady != nil && m.dirac.hi == 0 {
+				for i := range q.n {
+					deviation[i] = m.x[i].hi - steady[i]
+				}
+				deviation[q.n] = s.largestDeviation(m.index - q.cells)
+				remaining = d.bound(deviation)
+				if remaining <= settledTo*largest {
+					s.settled = true
+					break
+				}
+			}
+			if m.index >= leastPeriods*q.cells && (m.index >= mostCells || steady == nil && m.index >= 4096) {
+				s.rest = m.clone()
+				break
+			}
+		}
+		at := m.index
+		y, dirac := m.step()
+		if m.rough {
+			return nil, nil
+		}
+		if dirac.hi != 0 && math.Abs(dirac.hi) > 0x1p-1000 {
+			s.dirac = append(s.dirac, q.period*float64(at/q.cells), dirac.hi)
+		}
+		skip := 0
+		if at == 0 {
+			for skip < delayTerms-earlyTerms && y[skip].hi == 0 {
+				skip++
+			}
+			s.leading = skip
+		}
+		end := 0.0
+		for _, c := range y[skip : skip+earlyTerms] {
+			s.q = append(s.q, c.hi)
+			end += c.hi
+		}
+		largest = max(largest, math.Abs(end), math.Abs(y[0].hi))
+		if largest > 1e300 {
+			s.rest = m.clone()
+			break
+		}
+	}
+	if steady != nil {
+		cells := len(s.q) / earlyTerms
+		s.spreads = make([]float64, cells+1)
+		s.spreads[cells] = remaining
+		for i := cells - 1; i >= 0; i-- {
+			s.spreads[i] = max(s.spreads[i+1], s.cellDeviation(i))
+		}
+	}
+	return s, nil
+}
+
+// cellDeviation bounds |y - limit| on a cell.
+func (s *stepwise) cellDeviation(i int) float64 {
+	q := s.q[i*earlyTerms:][:earlyTerms]
+	if i == 0 && s.leading > 0 {
+		sum := math.Abs(s.limit)
+		for _, c := range q {
+			sum += math.Abs(c)
+		}
+		return sum
+	}
+	sum := math.Abs(q[0] - s.limit)
+	for _, c := range q[1:] {
+		sum += math.Abs(c)
+	}
+	return sum
+}
+
+// largestDeviation bounds |y - limit| from a cell on.
+func (s *stepwise) largestDeviation(i int) float64 {
+	top := 0.0
+	for ; i < len(s.q)/earlyTerms; i++ {
+		top = max(top, s.cellDeviation(i))
+	}
+	return top
+}
+
+// steady returns limit and states under a constant input; no states if the input does not
+// become constant.
+func (q *delayEquation) steady(in event) (limit float64, x []float64) {
+	if len(in.polynomial) > 1 || len(in.sines) > 0 {
+		return math.NaN(), nil
+	}
+	u := 0.0
+	if len(in.polynomial) > 0 {
+		u = in.polynomial[0]
+	}
+	// a(0)·y = -b(0)·y + f(0)·u, of which a, b, f are direct part times a plus the rest.
+	if q.n == 0 {
+		y := q.inD.mulFloat(u).div(wide{1, 0}.sub(q.loopD))
+		return y.float(), []float64{}
+	}
+	around := q.a[0].sub(q.fromLoop[0].add(q.loopD.mul(q.a[0])))
+	forward := q.fromIn[0].add(q.inD.mul(q.a[0]))
+	if around.hi == 0 {
+		return math.NaN(), nil
+	}
+	y := forward.mulFloat(u).div(around)
+	x = make([]float64, q.n)
+	x1 := y.sub(q.loopD.mul(y)).sub(q.inD.mulFloat(u))
+	next := x1
+	for i := range q.n {
+		x[i] = next.float()
+		next = q.a[q.n-1-i].mul(x1).sub(q.fromLoop[q.n-1-i].mul(y)).sub(q.fromIn[q.n-1-i].mulFloat(u))
+	}
+	return y.float(), x
+}
+
+// locate returns the cell at τ, or the one before if τ is where it begins, and the fraction of it.
+func (s *stepwise) locate(tau, lo float64, before bool) (i int, x float64) {
+	p := math.Floor(tau / s.period)
+	r := math.FMA(-p, s.period, tau)
+	switch {
+	case r+lo < 0:
+		p--
+		r = math.FMA(-p, s.period, tau)
+	case r >= s.period:
+		p++
+		r = math.FMA(-p, s.period, tau)
+	}
+	if before && r == 0 && p > 0 {
+		return int(p)*s.perPeriod - 1, 1
+	}
+	c := min(int(r/s.h), s.perPeriod-1)
+	if before && c > 0 && r == float64(c)*s.h {
+		c--
+	}
+	return int(p)*s.perPeriod + c, max((r-float64(c)*s.h+lo)/s.h, 0)
+}
+
+func (s *stepwise) at(t, lo float64) float64 {
+	tau := t * s.w
+	if tau/s.h > askedCells*1.0+float64(len(s.q)/earlyTerms) && !s.settled {
+		return math.NaN()
+	}
+	if s.settled && tau/s.h > float64(len(s.q)/earlyTerms+1) {
+		return s.limit
+	}
+	i, x := s.locate(tau, lo*s.w, false)
+	if i >= len(s.q)/earlyTerms {
+		if s.settled {
+			return s.limit
+		}
+		return s.continued(i, x)
+	}
+	q := s.q[i*earlyTerms:][:earlyTerms]
+	y := 0.0
+	for k := len(q) - 1; k >= 0; k-- {
+		y = y*x + q[k]
+	}
+	if i == 0 && s.leading > 0 {
+		y *= math.Pow(x, float64(s.leading))
+	}
+	return y
+}
+
+// continued goes on from the last cell.
+func (s *stepwise) continued(i int, x float64) float64 {
+	m := s.rest.clone()
+	for m.index < i {
+		m.step()
+	}
+	q, _ := m.step()
+	y := 0.0
+	for k := len(q) - 1; k >= 0; k-- {
+		y = y*x + q[k].hi
+	}
+	return y
+}
+
+// The curve of a stepwise, for its figures.
+
+func (s *stepwise) node(tau float64, before bool, n *node) {
+	n.t = tau
+	i, x := s.locate(tau, 0, before)
+	if last := len(s.q) / earlyTerms; i >= last {
+		*n = node{t: tau, y: s.limit, step: math.Inf(1), spread: s.spreads[last]}
+		return
+	}
+	q := s.q[i*earlyTerms:][:earlyTerms]
+	var y, d, c, fourth float64
+	lead := 0
+	if i == 0 {
+		lead = s.leading
+	}
+	for k := len(q) - 1; k >= 0; k-- {
+		c = c*x + 2*d
+		d = d*x + y
+		y = y*x + q[k]
+		j := float64(k + lead)
+		fourth += j * (j - 1) * (j - 2) * (j - 3) * math.Abs(q[k])
+	}
+	if r := float64(lead); r > 0 {
+		p2, p1 := 0.0, 1.0
+		if r > 1 {
+			p2 = math.Pow(x, r-2)
+			p1 = p2 * x
+		}
+		y, d, c = p1*x*y, p1*(x*d+r*y), p1*(x*c+2*r*d)+r*(r-1)*p2*y
+	}
+	g := 1 / s.h
+	n.y, n.d, n.c = y, d*g, c*g*g
+	n.fourth = fourth * g * g * g * g
+	n.spread = s.spreads[i]
+	n.step = s.h
+}
+
+func (s *stepwise) fourth(a, b *node) float64 {
+	i, _ := s.locate(a.t, 0, false)
+	if i != 0 || s.leading < 4 || i >= len(s.q)/earlyTerms {
+		return a.fourth
+	}
+	// Near t = 0 the bound over the whole cell says too little.
+	x := b.t / s.h
+	sum := 0.0
+	for k := earlyTerms - 1; k >= 0; k-- {
+		j := float64(k + s.leading)
+		sum = sum*x + j*(j-1)*(j-2)*(j-3)*math.Abs(s.q[k])
+	}
+	g := 1 / s.h
+	return sum * math.Pow(x, float64(s.leading-4)) * g * g * g * g
+}
+
+// boundary returns where cell i begins.
+func (s *stepwise) boundary(i int) float64 {
+	return float64(i/s.perPeriod)*s.period + float64(i%s.perPeriod)*s.h
+}
+
+func (s *stepwise) cellEnd(tau float64) float64 {
+	i, _ := s.locate(tau, 0, false)
+	for ; i < len(s.q)/earlyTerms; i++ {
+		if end := s.boundary(i + 1); end > tau {
+			return end
+		}
+	}
+	return math.Inf(1)
+}
+
+func (s *stepwise) cellStart(tau float64) float64 {
+	i, _ := s.locate(tau, 0, true)
+	i = min(i, len(s.q)/earlyTerms)
+	for i > 0 && s.boundary(i) >= tau {
+		i--
+	}
+	return s.boundary(i)
+}
+
+func (s *stepwise) rate() float64 { return s.w }
+
+func (s *stepwise) ultimate() float64 { return s.limit }
+
+func (s *stepwise) horizon() float64 { return 0 }
