@@ -22,8 +22,7 @@ type Figures struct {
 	Reach10        float64 // first crossing of 10 % of Final; likewise the next two
 	DelayTime      float64 // of 50 %
 	Reach90        float64 // of 90 %
-	Reach100       float64 // of 100 %; NaN if Final is only approached
-	FullRiseTime   float64 // from the start of the response to Reach100
+	Reach100       float64 // of 100 %, less the dead time the rise time from 0 % on; NaN if Final is only approached
 	LargestValue   float64 // the value of largest magnitude; Final if that is only approached
 	LargestTime    float64 // when it is taken; NaN if it is only approached
 }
@@ -310,7 +309,7 @@ func checkBand(call string, band float64) error {
 func (r *Response) Figures(band float64) (Figures, error) {
 	const call = "timeresp.Response.Figures"
 	nan := math.NaN()
-	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
+	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
 	if err := checkBand(call, band); err != nil {
 		return f, err
 	}
@@ -333,7 +332,6 @@ func (r *Response) Figures(band float64) (Figures, error) {
 	if s.mostAt == s.mostAt {
 		f.Overshoot, f.PeakTime, f.PeakValue = s.most-1, seconds(s.mostAt), s.most*r.final
 		f.Reach100 = seconds(s.reached[3])
-		f.FullRiseTime = s.reached[3] / w
 	}
 	if s.leastAt == s.leastAt {
 		f.Undershoot, f.UndershootTime = -s.least, seconds(s.leastAt)

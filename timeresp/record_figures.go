@@ -10,7 +10,7 @@ import (
 func recordFigures(source recordSource, final, band float64) Figures {
 	nan := math.NaN()
 	f := Figures{Final: final, PeakTime: nan, PeakValue: nan, UndershootTime: nan, RiseTime: nan, SettlingTime: nan,
-		DelayTime: nan, RiseTimeFull: nan, Reach10: nan, Reach90: nan}
+		DelayTime: nan, Reach100: nan, Reach10: nan, Reach90: nan}
 	size := math.Abs(final)
 	if size == 0 {
 		f.Overshoot, f.Undershoot = nan, nan
@@ -21,7 +21,7 @@ func recordFigures(source recordSource, final, band float64) Figures {
 	firsts := []struct {
 		level float64
 		at    *float64
-	}{{0.1, &f.Reach10}, {0.5, &f.DelayTime}, {0.9, &f.Reach90}, {1, &f.RiseTimeFull}}
+	}{{0.1, &f.Reach10}, {0.5, &f.DelayTime}, {0.9, &f.Reach90}, {1, &f.Reach100}}
 	most, least := math.Inf(-1), math.Inf(1) // of y/final
 	var mostAt, leastAt, lastOutside float64
 	outside := false

@@ -218,7 +218,7 @@ func TestStandardSecondOrder(t *testing.T) {
 			}
 			check("overshoot", f.Overshoot)
 			check("peak_time", f.PeakTime)
-			check("rise_0_100", f.FullRiseTime)
+			check("rise_0_100", f.Reach100)
 			check("t10", f.Reach10)
 			check("t90", f.Reach90)
 			check("rise_10_90", f.RiseTime)
