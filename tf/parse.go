@@ -65,6 +65,7 @@ const (
 	maxDepth    = 200     // of parentheses
 	maxBits     = 1 << 16 // of a coefficient
 	maxExponent = 1 << 12 // of a number
+	maxWork     = 1 << 29 // about nanoseconds, for all products together
 )
 
 // fraction is a value on the way: variableᵖᵒʷᵉʳ·numerator/denominator·exp(-s·delay).
@@ -89,6 +90,7 @@ type parser struct {
 	variable string // s or z, as soon as one is met
 	depth    int
 	delayed  token // the first exp, if any
+	work     int   // what the products have cost so far, see spend
 }
 
 func (p *parser) peek() token { return p.tokens[p.at] }
@@ -229,7 +231,7 @@ func (p *parser) sum() (fraction, error) {
 		if t.kind == minusToken {
 			w = w.negated()
 		}
-		if v, err = v.plus(w, t); err != nil {
+		if v, err = p.plus(v, w, t); err != nil {
 			return fraction{}, err
 		}
 	}
@@ -261,10 +263,10 @@ func (p *parser) term() (fraction, error) {
 		}
 		if t.kind == overToken {
 			divided = true
-			v, err = v.over(w, t)
+			v, err = p.over(v, w, t)
 		} else {
 			divided = divided && t.kind != timesToken
-			v, err = v.times(w, t)
+			v, err = p.times(v, w, t)
 		}
 		if err != nil {
 			return fraction{}, err
@@ -321,7 +323,7 @@ func (p *parser) factor() (fraction, error) {
 		if err != nil {
 			return fraction{}, err
 		}
-		if v, err = v.toThe(n, caret); err != nil {
+		if v, err = p.toThe(v, n, caret); err != nil {
 			return fraction{}, err
 		}
 	}
@@ -431,6 +433,28 @@ func (v fraction) within(t token) (fraction, error) {
 	return v, nil
 }
 
+// spend adds up what products cost, about, and refuses a text that would take long.
+func (p *parser) spend(t token, products ...[2]poly.Poly) error {
+	words := func(q poly.Poly) int {
+		c, _ := q.Integers()
+		bits := 0
+		for _, n := range c {
+			bits = max(bits, n.BitLen())
+		}
+		return bits/64 + 1
+	}
+	for _, pair := range products {
+		terms := (pair[0].Degree() + 1) * (pair[1].Degree() + 1)
+		if p.work += terms; terms > 1 {
+			p.work += terms * (50 + words(pair[0])*words(pair[1]))
+		}
+	}
+	if p.work > maxWork {
+		return t.wrong("the text asks for too long a computation")
+	}
+	return nil
+}
+
 // tooWide tells whether the coefficients reach over more than maxBits.
 func tooWide(p poly.Poly) bool {
 	narrow := true
@@ -463,7 +487,10 @@ func (v fraction) negated() fraction {
 	return v.plain()
 }
 
-func (v fraction) times(w fraction, t token) (fraction, error) {
+func (p *parser) times(v, w fraction, t token) (fraction, error) {
+	if err := p.spend(t, [2]poly.Poly{v.numerator, w.numerator}, [2]poly.Poly{v.denominator, w.denominator}); err != nil {
+		return fraction{}, err
+	}
 	return fraction{
 		numerator:   keepRoot(v.numerator).Mul(keepRoot(w.numerator)),
 		denominator: keepRoot(v.denominator).Mul(keepRoot(w.denominator)),
@@ -472,16 +499,16 @@ func (v fraction) times(w fraction, t token) (fraction, error) {
 	}.within(t)
 }
 
-func (v fraction) over(w fraction, t token) (fraction, error) {
+func (p *parser) over(v, w fraction, t token) (fraction, error) {
 	if w.numerator.Degree() < 0 {
 		return fraction{}, t.wrong("what follows is zero; nothing can be divided by it")
 	}
 	w.numerator, w.denominator = w.denominator, w.numerator
 	w.power, w.delay = -w.power, new(big.Rat).Neg(w.delay)
-	return v.times(w, t)
+	return p.times(v, w, t)
 }
 
-func (v fraction) plus(w fraction, t token) (fraction, error) {
+func (p *parser) plus(v, w fraction, t token) (fraction, error) {
 	if v.squareNumber == 0 && w.squareNumber != 0 && v.squareOf.Degree() == 1 {
 		if p, ok := pairOfRoots(v.squareOf, w.squareNumber); ok {
 			return numberFraction(p), nil
@@ -494,6 +521,9 @@ func (v fraction) plus(w fraction, t token) (fraction, error) {
 		return v.plain(), nil
 	case v.delay.Cmp(w.delay) != 0:
 		return fraction{}, t.wrong("terms with different dead times do not add up to a rational function")
+	}
+	if err := p.spend(t, [2]poly.Poly{v.numerator, w.denominator}, [2]poly.Poly{w.numerator, v.denominator}, [2]poly.Poly{v.denominator, w.denominator}); err != nil {
+		return fraction{}, err
 	}
 	power := min(v.power, w.power)
 	a, b := v.numerator, w.numerator
@@ -511,14 +541,14 @@ func (v fraction) plus(w fraction, t token) (fraction, error) {
 	}.within(t)
 }
 
-func (v fraction) toThe(n int, t token) (fraction, error) {
+func (p *parser) toThe(v fraction, n int, t token) (fraction, error) {
 	if n < 0 && v.variable {
 		r := numberFraction(one)
 		r.power = n
 		return r.within(t)
 	}
 	if n < 0 {
-		w, err := numberFraction(one).over(v, t)
+		w, err := p.over(numberFraction(one), v, t)
 		if err != nil {
 			return fraction{}, err
 		}
@@ -534,12 +564,12 @@ func (v fraction) toThe(n int, t token) (fraction, error) {
 	for square, m := v, n; m > 0; {
 		var err error
 		if m&1 != 0 {
-			if result, err = result.times(square, t); err != nil {
+			if result, err = p.times(result, square, t); err != nil {
 				return fraction{}, err
 			}
 		}
 		if m >>= 1; m > 0 {
-			if square, err = square.times(square, t); err != nil {
+			if square, err = p.times(square, square, t); err != nil {
 				return fraction{}, err
 			}
 		}
