@@ -51,7 +51,7 @@ func (g Function) atInfinity() complex128 {
 	case drop < 0:
 		return cmplx.Inf()
 	}
-	return complex(quotient(g.numerator, g.numerator.Degree(), g.denominator, g.denominator.Degree()), 0)
+	return complex(coefficientRatio(g.numerator, g.numerator.Degree(), g.denominator, g.denominator.Degree()), 0)
 }
 
 // limitAtZero returns the value at z = 0 of a function of z with dead time.
@@ -188,8 +188,8 @@ func timesPower(y, s complex128, n int) complex128 {
 	return finiteOrInf(ldexp(y, clamp(e)))
 }
 
-// quotient returns p_i/q_j, two coefficients, rounded to nearest: ±Inf beyond the range.
-func quotient(p poly.Poly, i int, q poly.Poly, j int) float64 {
+// coefficientRatio returns p_i/q_j, two coefficients, rounded to nearest: ±Inf beyond the range.
+func coefficientRatio(p poly.Poly, i int, q poly.Poly, j int) float64 {
 	a, ea := p.Integers()
 	b, eb := q.Integers()
 	if i < 0 || i >= len(a) || a[i].Sign() == 0 {

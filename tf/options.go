@@ -6,4 +6,8 @@ type Option func(*settings)
 type settings struct {
 	upTo      float64 // rad/s, of CrossoversUpTo
 	upToGiven bool
+
+	matches         bool
+	matchFrequency  float64 // rad/s
+	zerosAtInfinity int
 }

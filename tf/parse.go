@@ -390,7 +390,7 @@ func (p *parser) deadTime(exp token) (fraction, error) {
 		}
 		result.delay.Neg(r)
 	} else {
-		x := -quotient(n, 1, d, 0)
+		x := -coefficientRatio(n, 1, d, 0)
 		if math.IsInf(x, 0) || x == 0 {
 			return fraction{}, at.wrong("the dead time is beyond the range of float64")
 		}
@@ -632,7 +632,7 @@ func keepRoot(p poly.Poly) poly.Poly {
 
 // exactRoot returns the root of a polynomial of degree 1, if it is a float64.
 func exactRoot(p poly.Poly) (float64, bool) {
-	root := -quotient(p, 0, p, 1) + 0
+	root := -coefficientRatio(p, 0, p, 1) + 0
 	if math.IsInf(root, 0) {
 		return 0, false
 	}
