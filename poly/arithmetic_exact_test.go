@@ -36,6 +36,15 @@ func longDivision(p, q []*big.Rat) (quotient, remainder []*big.Rat) {
 	return quotient, r[:min(n, len(r))]
 }
 
+func allZero(c []*big.Rat) bool {
+	for _, x := range c {
+		if x.Sign() != 0 {
+			return false
+		}
+	}
+	return true
+}
+
 // isDyadic tells whether x is a whole number times a power of two.
 func isDyadic(x *big.Rat) bool {
 	d := x.Denom()

@@ -169,9 +169,10 @@ func fromScaled(x scaled) Poly {
 	return p
 }
 
-// low returns what c lacks to the exact coefficients, rounded to nearest.
-func (x scaled) low(c []float64) []float64 {
-	lo := make([]float64, len(c))
+// low returns what c lacks to the exact coefficients, rounded to nearest. It is not ok where
+// that loses digits to underflow: the stages that scale their terms up would miss them.
+func (x scaled) low(c []float64) (lo []float64, ok bool) {
+	lo = make([]float64, len(c))
 	for i, n := range x.integers {
 		if math.IsInf(c[i], 0) {
 			continue // of no use, and found out later
@@ -181,8 +182,11 @@ func (x scaled) low(c []float64) []float64 {
 		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(c[i])
 		rest.Sub(f, rest)
 		lo[i], _ = rest.Float64()
+		if rest.Sign() != 0 && math.Abs(lo[i]) < minNormal {
+			return nil, false
+		}
 	}
-	return lo
+	return lo, true
 }
 
 // nearest returns the float64 nearest to n·2^e and whether it is exactly that.

@@ -39,8 +39,11 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 		zeros++
 	}
 	var lo []float64
+	usable := true
 	if p.exact != nil {
-		lo = p.exact.low(p.c)[zeros:]
+		if lo, usable = p.exact.low(p.c); usable {
+			lo = lo[zeros:]
+		}
 	}
 	n := p.Degree() - zeros
 	var room [32]rootkernel.Disc
@@ -51,7 +54,7 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 		}
 		discs = s.discs[:0]
 	}
-	if c := p.c[zeros:]; c[0] != 0 && c[n] != 0 { // not below the range of float64
+	if c := p.c[zeros:]; usable && c[0] != 0 && c[n] != 0 { // not below the range of float64
 		k := &s.kernel
 		k.Set(c, lo)
 		var failure rootkernel.Failure
