@@ -38,14 +38,14 @@ type signalReader interface {
 // A LimitChange is an instant at which the actuator reaches or leaves its limit.
 type LimitChange struct {
 	Time     float64 // s
-	From, To int     // -1 at the lower limit, 0 within, +1 at the upper limit
+	From, To int     // 0 within the limits, ±1 at the amplitude limit, ±2 at the limit of the rate, by the sign of the effort or its slope
 }
 
 // Until returns the time up to which the record goes, in seconds.
 func (r *Record) Until() float64 { return r.until }
 
 // LimitChanges returns when the actuator reaches and leaves its limit, ascending. Of a
-// sampled controller, whose effort jumps, and of a loop with a characteristic none are told.
+// loop with a characteristic none are told.
 func (r *Record) LimitChanges() []LimitChange { return r.source.switches() }
 
 // signalOf gives the signal of the machinery for a point of the loop.

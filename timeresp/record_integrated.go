@@ -13,7 +13,7 @@ import (
 func runCharacteristic(ctx context.Context, call string, loop hybrid.Loop, inputs runInputs, s *runSettings, until float64) (recordSource, error) {
 	result, err := hybrid.Integrate(ctx, loop, inputs.sources(), hybrid.Characteristics{Actuator: s.actuator, Sensor: s.sensor}, until, s.progress)
 	if errors.Is(err, hybrid.ErrCharacteristic) {
-		return nil, &tf.UnsupportedError{Call: call, What: "a characteristic together with dead time, a controller in z, or direct parts all round the loop"}
+		return nil, &tf.UnsupportedError{Call: call, What: "a characteristic together with dead time, a limited rate, a controller in z, or direct parts all round the loop"}
 	}
 	if err != nil {
 		return nil, err

@@ -57,8 +57,8 @@ func SensorCharacteristic(f func(output float64) float64) Option {
 }
 
 // Run follows every signal of a loop, at rest before t = 0, while the reference is in: with
-// the amplitude limit of the actuator in force, dead time exact, and a controller in z
-// acting once a period. Disturbances come by options.
+// the limits of the actuator on amplitude and rate in force, dead time exact, and a
+// controller in z acting once a period. Disturbances come by options.
 //
 // Between switching and sampling instants the signals are Taylor series, so that they are
 // known at every t; switching instants are roots of such series. With a characteristic the
@@ -66,9 +66,9 @@ func SensorCharacteristic(f func(output float64) float64) Option {
 // is an estimate, not a bound.
 //
 // The error is a [*poly.ArgumentError] for a block that is improper, an invalid input or
-// option, and a loop of direct parts without a solution; a [*tf.UnsupportedError] for a
-// limited rate, a plant in z, and what a characteristic cannot be combined with; and the
-// context's error if it is cancelled.
+// option, and a loop of direct parts without a solution; a [*tf.UnsupportedError] for a plant
+// in z and for what a characteristic cannot be combined with; and the context's error if it
+// is cancelled.
 func Run(ctx context.Context, l tf.Loop, in Input, opt ...Option) (*Record, error) {
 	const call = "timeresp.Run"
 	var s settings
@@ -130,13 +130,10 @@ func prepareRun(call string, l tf.Loop, in Input, s *runSettings) (loop hybrid.L
 			return loop, inputs, bad(check.name, "%g; want a finite number not below 0", check.value)
 		}
 	}
-	if l.Limits.Rate > 0 {
-		return loop, inputs, &tf.UnsupportedError{Call: call, What: "an actuator with a limited rate"}
-	}
 	if l.Plant.Period() > 0 {
 		return loop, inputs, &tf.UnsupportedError{Call: call, What: "a plant in z; StepOf answers for loops in z"}
 	}
-	loop = hybrid.Loop{Amplitude: l.Limits.Amplitude, Tracking: s.tracking}
+	loop = hybrid.Loop{Amplitude: l.Limits.Amplitude, Rate: l.Limits.Rate, Tracking: s.tracking}
 	for _, part := range []struct {
 		function tf.Function
 		into     *hybrid.Block
@@ -153,8 +150,8 @@ func prepareRun(call string, l tf.Loop, in Input, s *runSettings) (loop hybrid.L
 		if l.Sensor.Period() > 0 {
 			return loop, inputs, &tf.UnsupportedError{Call: call, What: "a sensor in z; put it into the controller"}
 		}
-		if loop.Extrapolate && loop.Amplitude > 0 {
-			return loop, inputs, &tf.UnsupportedError{Call: call, What: "an amplitude limit behind an extrapolating hold"}
+		if loop.Extrapolate && (loop.Amplitude > 0 || loop.Rate > 0) {
+			return loop, inputs, &tf.UnsupportedError{Call: call, What: "a limited actuator behind an extrapolating hold"}
 		}
 		if s.tracking > 0 {
 			return loop, inputs, &tf.UnsupportedError{Call: call, What: "back-calculation in a controller in z"}

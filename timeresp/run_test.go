@@ -220,10 +220,16 @@ func TestRunRefuses(t *testing.T) {
 			_, err := Run(ctx, l, StepInput(1))
 			return err
 		}, &argument},
-		{"rate limit", func() error {
+		{"characteristic and dead time", func() error {
 			l := good
-			l.Limits.Rate = 1
-			_, err := Run(ctx, l, StepInput(1))
+			l.Plant = tf.MustParse("exp(-s) / (s + 1)")
+			_, err := Run(ctx, l, StepInput(1), Until(1), SensorCharacteristic(math.Abs))
+			return err
+		}, &unsupported},
+		{"plant in z", func() error {
+			l := good
+			l.Plant = tf.MustParse("0.2 / (z - 0.8), period 0.1")
+			_, err := Run(ctx, l, StepInput(1), Until(1))
 			return err
 		}, &unsupported},
 	} {

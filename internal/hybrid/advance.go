@@ -9,12 +9,12 @@ import (
 
 // segment is the loop over [from, to]: all that is needed to form its series anew.
 type segment struct {
-	from, to     float64
-	mode         Mode
-	held, demand float64 // of a sampled controller: what the actuator gives and what was asked for
-	slope        float64 // of both, behind an extrapolating hold
-	states       []float64
-	delayed      *[lines]series // what comes out of the delay lines; nil without dead time
+	from, to      float64
+	mode          Mode
+	demand, slope float64 // of a sampled controller: what it asks for, and its slope behind an extrapolating hold
+	effort        float64 // of the actuator, where the segment begins
+	states        []float64
+	delayed       *[lines]series // what comes out of the delay lines; nil without dead time
 }
 
 // A Switch is an instant at which the actuator reaches or leaves its limit.
@@ -54,6 +54,7 @@ type runner struct {
 	now      seriesOf
 	scale    []float64 // largest size so far of each state
 	sample   sampling
+	last     float64 // s, how long a segment the series last allowed
 }
 
 // sampling is the state of a sampled controller.
@@ -103,20 +104,26 @@ func Simulate(ctx context.Context, l Loop, in Inputs, until float64, progress fu
 func (r *runner) advance(until float64, switched bool) bool {
 	r.takeSample()
 	r.fillDelayed()
-	h := r.segmentEnd(until) - r.seg.from
+	end := r.segmentEnd(until)
+	h := end - r.seg.from
 	r.expand(&r.seg, &r.now)
-	if r.loop.Amplitude > 0 && r.loop.Period == 0 && !switched {
+	limited := r.loop.Amplitude > 0 || r.loop.Rate > 0
+	if limited && !switched {
 		r.settleMode()
 	}
-	end := r.seg.from + h
-	if short := r.now.length(h, r.scale); short < h {
-		end = r.seg.from + short
+	// The last segment tells about how long this one can be.
+	if room := math.Min(h, 8*r.last); room > 0 {
+		h = room
 	}
+	if h = r.now.length(h, r.scale); h < end-r.seg.from {
+		end = r.seg.from + h
+	}
+	r.last = h
 	if end <= r.seg.from {
 		end = math.Nextafter(r.seg.from, math.Inf(1))
 	}
 	to := r.seg.mode
-	if r.loop.Amplitude > 0 && r.loop.Period == 0 {
+	if limited {
 		var at float64
 		at, to = r.firstSwitch(end-r.seg.from, switched)
 		if to != r.seg.mode {
@@ -127,76 +134,155 @@ func (r *runner) advance(until float64, switched bool) bool {
 	if to == r.seg.mode {
 		return false
 	}
-	r.result.Switches = append(r.result.Switches, Switch{Time: end, From: r.seg.mode, To: to})
+	before := r.seg.mode
 	r.seg.mode = to
+	if to == Linear && r.loop.Rate > 0 {
+		// The demand may be too fast to be followed from the first.
+		r.fillDelayed()
+		r.expand(&r.seg, &r.now)
+		r.seg.mode = r.follow()
+	}
+	r.result.Switches = append(r.result.Switches, Switch{Time: end, From: before, To: r.seg.mode})
 	return true
 }
 
-// settleMode finds the mode where an input, or what comes out of a delay line, may have
-// jumped: linear if the linear demand is within the limit.
+// follow returns the mode of an actuator that stands where its demand is.
+func (r *runner) follow() Mode {
+	const slack = 1 + 1e-12
+	switch rate := r.now.signal[Demand][1]; {
+	case r.loop.Rate > 0 && rate > slack*r.loop.Rate:
+		return Rising
+	case r.loop.Rate > 0 && rate < -slack*r.loop.Rate:
+		return Falling
+	}
+	return Linear
+}
+
+// settleMode finds the mode where an input, a sample, or what comes out of a delay line, may
+// have jumped.
 func (r *runner) settleMode() {
-	limit := r.loop.Amplitude
 	before := r.seg.mode
-	slack := 1e-12 * limit
-	w := r.now.signal[Demand][0]
-	if before == Linear && math.Abs(w) <= limit+slack || before == Upper && w >= limit-slack || before == Lower && w <= -limit+slack {
+	mode := r.fittingMode()
+	if mode == before {
 		return
 	}
-	if before != Linear {
-		r.seg.mode = Linear
-		r.expand(&r.seg, &r.now)
-		w = r.now.signal[Demand][0]
+	r.seg.mode = mode
+	r.expand(&r.seg, &r.now)
+	if r.seg.from > 0 {
+		r.result.Switches = append(r.result.Switches, Switch{Time: r.seg.from, From: before, To: mode})
 	}
-	switch {
+}
+
+// fittingMode returns the mode that fits the demand of the moment. With a limited rate the
+// effort cannot jump, so the demand follows from it; else the demand of a linear actuator
+// decides, unless the present mode still fits.
+func (r *runner) fittingMode() Mode {
+	limit := math.Inf(1)
+	if r.loop.Amplitude > 0 {
+		limit = r.loop.Amplitude
+	}
+	const slack = 1e-12
+	present := r.seg.mode
+	demand := func(m Mode) float64 {
+		if r.seg.mode != m {
+			r.seg.mode = m
+			r.expand(&r.seg, &r.now)
+		}
+		return r.now.signal[Demand][0]
+	}
+	defer func() {
+		if r.seg.mode != present {
+			r.seg.mode = present
+			r.expand(&r.seg, &r.now)
+		}
+	}()
+	if r.loop.Rate > 0 {
+		w := demand(Rising)
+		target := math.Max(-limit, math.Min(limit, w))
+		near := slack * math.Max(math.Abs(r.seg.effort), math.Abs(target))
+		switch {
+		case target > r.seg.effort+near:
+			return Rising
+		case target < r.seg.effort-near:
+			return Falling
+		case w > limit*(1+slack):
+			return Upper
+		case w < -limit*(1+slack):
+			return Lower
+		}
+		demand(Linear)
+		return r.follow()
+	}
+	switch w := demand(present); {
+	case present == Linear && math.Abs(w) <= limit*(1+slack), present == Upper && w >= limit*(1-slack), present == Lower && w <= -limit*(1-slack):
+		return present
+	}
+	switch w := demand(Linear); {
 	case w > limit:
-		r.seg.mode = Upper
+		return Upper
 	case w < -limit:
-		r.seg.mode = Lower
+		return Lower
 	}
-	if r.seg.mode != Linear {
-		r.expand(&r.seg, &r.now)
-	}
-	if r.seg.mode != before && r.seg.from > 0 {
-		r.result.Switches = append(r.result.Switches, Switch{Time: r.seg.from, From: before, To: r.seg.mode})
-	}
+	return Linear
 }
 
 // firstSwitch returns when within the next h seconds the mode ends first, and what follows.
 func (r *runner) firstSwitch(h float64, switched bool) (at float64, to Mode) {
 	limit := r.loop.Amplitude
-	demand := &r.now.signal[Demand]
-	noise := 1e-15 * (limit + demand.size(h))
+	demand, effort := &r.now.signal[Demand], &r.now.signal[Effort]
 	at, to = h, r.seg.mode
-	look := func(sign, level float64, next Mode) {
-		// The distance to the limit, above zero as long as the mode lasts.
-		var g series
-		for i, c := range demand {
-			g[i] = sign * c
-		}
-		g[0] += level
-		length := noise
-		if switched && math.Abs(g[0]) <= 1e-9*limit || math.Abs(g[0]) <= noise {
-			// It starts on the limit: the root there is divided out.
-			copy(g[:], g[1:])
-			g[terms-1] = 0
-			length = noise / h
+	// look takes the distance from where the mode ends, which is above zero while it lasts,
+	// and the size beside which it is noise.
+	look := func(distance series, size float64, next Mode) {
+		noise := 1e-15 * (size + distance.size(h))
+		if switched && math.Abs(distance[0]) <= 1e-9*size || math.Abs(distance[0]) <= noise {
+			// It starts where the mode would end: the root there is divided out.
+			copy(distance[:], distance[1:])
+			distance[terms-1] = 0
+			noise /= h
 		}
 		var room [terms]float64
-		for _, root := range g.roots(h, length, room[:0]) {
-			if root < at || root == at && to == r.seg.mode {
-				at, to = root, next
-			}
-			break
+		if found := distance.roots(h, noise, room[:0]); len(found) > 0 && (found[0] < at || to == r.seg.mode) {
+			at, to = found[0], next
 		}
+	}
+	least := func(s *series, sign, level float64) (d series) {
+		for i, c := range s {
+			d[i] = sign * c
+		}
+		d[0] += level
+		return d
+	}
+	apart := func(sign float64) (d series) {
+		for i := range d {
+			d[i] = sign * (demand[i] - effort[i])
+		}
+		return d
 	}
 	switch r.seg.mode {
 	case Linear:
-		look(-1, limit, Upper)
-		look(+1, limit, Lower)
+		if limit > 0 {
+			look(least(demand, -1, limit), limit, Upper)
+			look(least(demand, +1, limit), limit, Lower)
+		}
+		if rate := r.loop.Rate; rate > 0 {
+			slope := demand.derivative()
+			look(least(&slope, -1, rate), rate, Rising)
+			look(least(&slope, +1, rate), rate, Falling)
+		}
 	case Upper:
-		look(+1, -limit, Linear)
+		look(least(demand, +1, -limit), limit, Linear)
 	case Lower:
-		look(-1, -limit, Linear)
+		look(least(demand, -1, -limit), limit, Linear)
+	case Rising, Falling:
+		sign, end := 1.0, Upper
+		if r.seg.mode == Falling {
+			sign, end = -1, Lower
+		}
+		if limit > 0 {
+			look(least(effort, -sign, limit), limit, end)
+		}
+		look(apart(sign), demand.size(h)+effort.size(h), Linear)
 	}
 	return at, to
 }
@@ -277,7 +363,7 @@ func (r *runner) finish(end float64) {
 		r.seg.states[i] = r.now.states[i].at(h)
 		r.scale[i] = math.Max(r.scale[i], math.Abs(r.seg.states[i]))
 	}
-	r.seg.held += r.seg.slope * h
+	r.seg.effort = r.now.signal[Effort].at(h)
 	r.seg.demand += r.seg.slope * h
 	r.seg.from = end
 }
@@ -312,7 +398,7 @@ func (r *runner) takeSample() {
 }
 
 func (r *runner) put(v float64) {
-	r.seg.demand, r.seg.held = v, clip(v, r.loop.Amplitude)
+	r.seg.demand = v
 	if r.loop.Extrapolate {
 		r.seg.slope = (v - r.sample.last) / r.loop.Period
 		r.sample.last = v

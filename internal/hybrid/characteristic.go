@@ -14,7 +14,7 @@ import (
 type Characteristics struct{ Actuator, Sensor func(float64) float64 }
 
 // ErrCharacteristic reports what static blocks cannot be combined with.
-var ErrCharacteristic = errors.New("hybrid: static blocks go with continuous controllers without dead time, and with a loop that is not direct all round")
+var ErrCharacteristic = errors.New("hybrid: static blocks go with continuous controllers without dead time, an actuator of unlimited rate, and a loop that is not direct all round")
 
 // An Integrated is a loop followed by the ODE engine.
 type Integrated struct {
@@ -30,7 +30,7 @@ func Integrate(ctx context.Context, l Loop, in Inputs, blocks Characteristics, u
 	if err != nil {
 		return nil, err
 	}
-	if l.Period > 0 || m.delays != [lines]float64{} || m.direct != 0 {
+	if l.Period > 0 || l.Rate > 0 || m.delays != [lines]float64{} || m.direct != 0 {
 		return nil, ErrCharacteristic
 	}
 	r := &Integrated{m: m, blocks: blocks}

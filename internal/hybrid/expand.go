@@ -10,6 +10,17 @@ type seriesOf struct {
 	states []series
 }
 
+// demanded returns coefficient j of what a sampled controller asks for.
+func (s *segment) demanded(j int) float64 {
+	switch j {
+	case 0:
+		return s.demand
+	case 1:
+		return s.slope
+	}
+	return 0
+}
+
 // expand forms the series about the start of a segment, coefficient by coefficient. Within
 // one order the signals follow from the states and the inputs round the loop; with direct
 // parts all round it and no dead time the demand v solves v + direct·u = v₀.
@@ -59,31 +70,39 @@ func (m *machine) expand(seg *segment, out *seriesOf) {
 			return
 		}
 		var u, w float64
-		switch {
-		case m.loop.Period > 0:
+		switch seg.mode {
+		case Upper, Lower:
+			if j == 0 {
+				u = float64(seg.mode) * m.loop.Amplitude
+			}
+		case Rising, Falling:
 			switch j {
 			case 0:
-				u, w = seg.held, seg.demand
+				u = seg.effort
 			case 1:
-				u, w = seg.slope, seg.slope
+				u = math.Copysign(m.loop.Rate, float64(seg.mode))
 			}
-		case seg.mode == Linear:
-			if m.delays[lineDemand] > 0 {
-				w = delayed[lineDemand][j]
-			} else {
-				_, _, _, _, _, w = round(0)
-				w /= 1 + m.direct
+		default:
+			switch {
+			case m.loop.Period > 0:
+				u = seg.demanded(j)
+			case m.delays[lineDemand] > 0:
+				u = delayed[lineDemand][j]
+			default:
+				_, _, _, _, _, u = round(0)
+				u /= 1 + m.direct
 			}
-			u = w
-		case j == 0:
-			u = float64(seg.mode) * m.loop.Amplitude
 		}
 		plantIn, y, sensorIn, measured, e, v := round(u)
-		if m.loop.Period == 0 && seg.mode != Linear {
+		switch {
+		case m.loop.Period > 0:
+			w = seg.demanded(j)
+		case m.delays[lineDemand] > 0:
+			w = delayed[lineDemand][j]
+		case seg.mode == Linear:
+			w = u
+		default:
 			w = v
-			if m.delays[lineDemand] > 0 {
-				w = delayed[lineDemand][j]
-			}
 		}
 		out.signal[Error][j], out.signal[Demand][j], out.signal[Effort][j] = e, w, u
 		out.signal[Output][j], out.signal[Measured][j] = y, measured

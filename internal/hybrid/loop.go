@@ -25,10 +25,11 @@ type Inputs struct{ Reference, Load, Disturbance, Noise Source }
 type Loop struct {
 	Prefilter, Controller, Plant, Sensor Block
 	Amplitude                            float64 // |u| ≤ Amplitude; 0 means unlimited
+	Rate                                 float64 // |du/dt| ≤ Rate; 0 means unlimited
 	Tracking                             float64 // s, time constant of back-calculation; 0 means none
 	Period                               float64 // s; if above 0 the controller is a function of z
 	ComputationDelay                     float64 // s, from sample to actuator, less than Period
-	Extrapolate                          bool    // hold with the slope of the last two samples, not the value; excludes Amplitude
+	Extrapolate                          bool    // hold with the slope of the last two samples, not the value; excludes Amplitude and Rate
 }
 
 // A Signal names a quantity of the loop.
@@ -53,9 +54,11 @@ type Mode int8
 
 // The modes of the actuator.
 const (
-	Lower  Mode = -1
-	Linear Mode = 0
-	Upper  Mode = 1
+	Falling Mode = -2 // as fast as it can, behind its demand
+	Lower   Mode = -1 // at the lower limit
+	Linear  Mode = 0  // as demanded
+	Upper   Mode = 1
+	Rising  Mode = 2
 )
 
 // ErrAlgebraic reports a loop of direct parts with a gain of −1 or beyond: the model has
