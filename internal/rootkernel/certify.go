@@ -195,9 +195,15 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 			miss = k.valueError(m)
 		}
 		d2 := dr*dr + di*di
+		if !(d2 > 0x1p-900 && d2 < 0x1p900) {
+			return Disc{}, Imprecise
+		}
+		// In this order, and with the sum for the modulus, no product underflows that matters:
+		// h = 0 would claim a root.
 		t := 1 / d2
-		hx, hy := -(pr*dr+pi*di)*t, -(pi*dr-pr*di)*t
-		rho := k.discRadius(r, math.Sqrt(d2), m, math.Sqrt(hx*hx+hy*hy), miss, k.slopeError())
+		ur, ui := dr*t, di*t
+		hx, hy := -(pr*ur + pi*ui), -(pi*ur - pr*ui)
+		rho := k.discRadius(r, math.Sqrt(d2), m, math.Abs(hx)+math.Abs(hy), miss, k.slopeError())
 		X, Y := x+hx, y+hy
 		if rho <= 0x1p-54*r && rho <= 0x1p-48*math.Abs(Y) && Y > 0 {
 			if rho <= 0x1p-48*math.Abs(X) {
