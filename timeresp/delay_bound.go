@@ -82,13 +82,15 @@ func (q *delayEquation) decay() (d decay) {
 			s.mean = true
 		}
 	}
+	next := 1
 	for block := 1; block <= mostBlocks && block*q.cells <= mostBoundCells; block++ {
 		for j := range solutions {
 			solutions[j].interval(q, a, b, direct)
 		}
-		if block < 4 && block&(block-1) != 0 || block >= 4 && block%(block/4+1) != 0 {
+		if block < next {
 			continue
 		}
+		next += 1 + next/4
 		p := make([][]float64, n+1)
 		worst := 0.0
 		for i := range p {
