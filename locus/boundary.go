@@ -7,13 +7,14 @@ import (
 	"github.com/polewright/polewright/internal/exact"
 )
 
-// A boundary describes one side of a curve through the plane that is symmetric about the real
-// axis, by its upper half: points γ(x) with x in [lo, hi], on which every polynomial splits into
+// A form describes a curve through the plane by points γ(x) with x in [lo, hi], on which every
+// polynomial splits into
 //
 //	p(γ(x)) = c(x)·(re(x) + j·√h(x)·im(x)),   re, im and h polynomials with dyadic coefficients,
 //
 // with one factor c(x) ≠ 0 for all p of the same formal degree. So the condition for a real gain,
-// Im(A·conj B) = 0, is the polynomial im_A·re_B - re_A·im_B = 0 and exact, whatever the curve:
+// Im(A·conj B) = 0, is the polynomial im_A·re_B - re_A·im_B = 0 and exact, whatever the curve.
+// Those that are symmetric about the real axis are described by their upper half:
 //
 //	line Re s = σ:     x = ω², h = x, even and odd part of p(σ + jω)
 //	circle |s| = r:    x = cos θ, h = 1 - x², Σ cᵢrⁱTᵢ(x) and Σ cᵢrⁱUᵢ₋₁(x)
@@ -21,23 +22,33 @@ import (
 //	line Im s = ω:     x = Re s, h = ω², even and odd part in jω of p(x + jω)
 //
 // The ray uses sin iφ = sin φ·Uᵢ₋₁(cos φ): no sine is rounded.
-type boundary interface {
-	// split returns re and im.
-	split(p exact.Poly) (re, im exact.Poly)
+type form interface {
+	// split returns re and im of two polynomials, for the higher of their degrees.
+	split(a, b exact.Poly) (reA, imA, reB, imB exact.Poly)
 	// under returns h.
 	under() exact.Poly
 	// interval returns lo and hi.
 	interval() (lo, hi exact.Dyadic)
-	// real returns the x in [lo, hi] at which γ(x) is real; there a branch on the real axis meets
-	// the curve.
+	// real returns the x at the ends of the interval at which γ(x) is real; there a branch on the
+	// real axis meets the curve.
 	real() []exact.Dyadic
-	// point returns γ(x), in the closed upper half-plane.
+	// mirrored tells whether the conjugates of the points belong to the curve too.
+	mirrored() bool
+	// point returns γ(x).
 	point(x *big.Float, bits uint) bigComplex
-	// side returns +1 if s lies strictly inside, -1 if outside, 0 if on the curve or too close to
-	// tell.
+}
+
+// A constraint is one of the sets that a region is the intersection of.
+type constraint interface {
+	// contacts returns the contacts of the moving roots with its boundary, in no order. whole
+	// tells that a piece of the boundary belongs to the locus; then the contacts with that piece
+	// are those with extreme gains.
+	contacts(call string, r reduced) (list []contact, whole bool, err error)
+	// side returns +1 if s lies strictly inside, -1 if outside, 0 if on the boundary or too close
+	// to tell.
 	side(s bigComplex) int
-	// holds tells whether all roots of p, which is not zero, lie strictly inside.
-	holds(p exact.Poly) bool
+	// count counts the roots of p, which is not zero.
+	count(call string, p exact.Poly) (exact.Count, error)
 }
 
 // A halfPlane is Re s < sigma.
@@ -51,7 +62,7 @@ var (
 	identity      = exact.FromFloats(0, 1)
 )
 
-func (r halfPlane) split(p exact.Poly) (re, im exact.Poly) { return alternate(p.Shift(r.sigma)) }
+func (r halfPlane) splitOne(p exact.Poly) (re, im exact.Poly) { return alternate(p.Shift(r.sigma)) }
 
 // alternate splits p(jω) = re(ω²) + jω·im(ω²).
 func alternate(p exact.Poly) (re, im exact.Poly) {
@@ -76,34 +87,8 @@ func (r halfPlane) point(x *big.Float, bits uint) bigComplex {
 	return bigComplex{round(r.sigma, bits), newFloat(bits).Sqrt(x)}
 }
 
-func (r halfPlane) holds(p exact.Poly) bool {
-	if p.Degree() < 1 {
-		return true
-	}
-	re, im := r.split(p)
-	square := func(q exact.Poly) exact.Poly { return spread(q, 2) }
-	return halfTurns(square(re), square(im).Mul(identity)) == p.Degree()
-}
-
-// spread returns q(xⁿ).
-func spread(q exact.Poly, n int) exact.Poly {
-	if q.IsZero() {
-		return q
-	}
-	c, e := q.Integers()
-	r := make([]*big.Int, (len(c)-1)*n+1)
-	for i := range r {
-		r[i] = new(big.Int)
-	}
-	for i, x := range c {
-		r[i*n] = x
-	}
-	return exact.New(r, e)
-}
-
 // halfTurns returns by how many half turns, counter-clockwise, the argument of re + j·im grows
-// from x = -∞ to +∞, if the two have no common real root; each such root takes away at least
-// one from the absolute value of the answer.
+// from x = -∞ to +∞, common real roots left out.
 func halfTurns(re, im exact.Poly) int {
 	switch {
 	case im.IsZero() || re.IsZero():
@@ -119,7 +104,7 @@ func halfTurns(re, im exact.Poly) int {
 // A sector is |arg(-s)| < acos zeta.
 type sector struct{ zeta exact.Dyadic }
 
-func (r sector) split(p exact.Poly) (re, im exact.Poly) {
+func (r sector) splitOne(p exact.Poly) (re, im exact.Poly) {
 	c := r.zeta.Neg()
 	n := p.Degree()
 	res, ims := make([]exact.Dyadic, n+1), make([]exact.Dyadic, n+1)
@@ -148,19 +133,13 @@ func (r sector) point(x *big.Float, bits uint) bigComplex {
 	return bigComplex{newFloat(bits).Mul(x, round(r.zeta.Neg(), bits)), sine.Mul(sine, x)}
 }
 
-// holds uses that the sector is the intersection of two half-planes which mirror each other:
-// all roots are left of the one line if and only if all are right of the other.
-func (r sector) holds(p exact.Poly) bool {
-	return p.Degree() < 1 || halfTurns(r.split(p)) == p.Degree()
-}
-
 // A disc is |s| < radius, or its exterior |s| > radius.
 type disc struct {
 	radius  exact.Dyadic
 	outside bool
 }
 
-func (r disc) split(p exact.Poly) (re, im exact.Poly) {
+func (r disc) splitOne(p exact.Poly) (re, im exact.Poly) {
 	p = p.Stretch(r.radius)
 	// Σ cᵢTᵢ and Σ cᵢUᵢ₋₁ with both kinds by their recurrence.
 	t0, t1 := exact.FromFloats(1), identity
@@ -192,38 +171,10 @@ func (r disc) point(x *big.Float, bits uint) bigComplex {
 	return bigComplex{newFloat(bits).Mul(radius, x), newFloat(bits).Mul(radius, sine)}
 }
 
-// holds counts the roots inside by the turns of p along the upper half of the circle: half as
-// many as along all of it.
-func (r disc) holds(p exact.Poly) bool {
-	if p.Degree() < 1 {
-		return true
-	}
-	re, im := r.split(p)
-	if re.SignAt(one) == 0 || re.SignAt(one.Neg()) == 0 {
-		return false
-	}
-	if re.IsZero() {
-		return false
-	}
-	inside := exact.CauchyIndex(im, re, one.Neg(), one)
-	if !r.outside {
-		return inside == p.Degree()
-	}
-	if inside != 0 {
-		return false
-	}
-	if g := exact.GCD(re, im); g.Degree() > 0 {
-		if n, _ := g.CountReal(one.Neg(), one, exact.Closed); n > 0 {
-			return false
-		}
-	}
-	return true
-}
-
 // A strip is |Im s| < omega.
 type strip struct{ omega exact.Dyadic }
 
-func (r strip) split(p exact.Poly) (re, im exact.Poly) {
+func (r strip) splitOne(p exact.Poly) (re, im exact.Poly) {
 	// Taylor: p(x + jω) = Σ (jω)ⁱ/i!·p⁽ⁱ⁾(x); coefficients of p⁽ⁱ⁾/i! are binomial multiples.
 	power := one
 	for i := 0; i <= p.Degree(); i++ {
@@ -268,7 +219,75 @@ func (r strip) point(x *big.Float, bits uint) bigComplex {
 	return bigComplex{newFloat(bits).Set(x), round(r.omega, bits)}
 }
 
-// holds counts the roots below the upper line, which then are above the lower one.
-func (r strip) holds(p exact.Poly) bool {
-	return p.Degree() < 1 || -halfTurns(r.split(p)) == p.Degree()
+func (r halfPlane) split(a, b exact.Poly) (reA, imA, reB, imB exact.Poly) {
+	reA, imA = r.splitOne(a)
+	reB, imB = r.splitOne(b)
+	return
+}
+
+func (r sector) split(a, b exact.Poly) (reA, imA, reB, imB exact.Poly) {
+	reA, imA = r.splitOne(a)
+	reB, imB = r.splitOne(b)
+	return
+}
+
+func (r disc) split(a, b exact.Poly) (reA, imA, reB, imB exact.Poly) {
+	reA, imA = r.splitOne(a)
+	reB, imB = r.splitOne(b)
+	return
+}
+
+func (r strip) split(a, b exact.Poly) (reA, imA, reB, imB exact.Poly) {
+	reA, imA = r.splitOne(a)
+	reB, imB = r.splitOne(b)
+	return
+}
+
+func (r halfPlane) mirrored() bool { return true }
+func (r sector) mirrored() bool    { return true }
+func (r disc) mirrored() bool      { return true }
+func (r strip) mirrored() bool     { return true }
+
+func (r halfPlane) contacts(call string, f reduced) ([]contact, bool, error) {
+	return f.contactsWith(call, r)
+}
+
+func (r sector) contacts(call string, f reduced) ([]contact, bool, error) {
+	return f.contactsWith(call, r)
+}
+
+func (r disc) contacts(call string, f reduced) ([]contact, bool, error) {
+	return f.contactsWith(call, r)
+}
+
+func (r strip) contacts(call string, f reduced) ([]contact, bool, error) {
+	return f.contactsWith(call, r)
+}
+
+func (r halfPlane) count(_ string, p exact.Poly) (exact.Count, error) {
+	return exact.LeftOf(p, r.sigma), nil
+}
+
+func (r sector) count(_ string, p exact.Poly) (exact.Count, error) {
+	return exact.InSector(p, r.zeta), nil
+}
+
+func (r disc) count(_ string, p exact.Poly) (exact.Count, error) {
+	c := exact.InDisc(p, r.radius)
+	if r.outside {
+		c.Inside, c.Outside = c.Outside, c.Inside
+	}
+	return c, nil
+}
+
+// count counts the roots above the upper line, as many as are below the lower one.
+func (r strip) count(_ string, p exact.Poly) (exact.Count, error) {
+	n := p.Degree()
+	if n < 1 {
+		return exact.Count{}, nil
+	}
+	re, im := r.splitOne(p)
+	_, on := exact.GCD(re, im).CountReal(minusInfinity, plusInfinity, exact.Open)
+	above := (n - on + halfTurns(re, im)) / 2
+	return exact.Count{Inside: n - 2*on - 2*above, Boundary: 2 * on, Outside: 2 * above}, nil
 }

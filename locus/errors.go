@@ -9,3 +9,11 @@ type BoundaryOnLocusError struct {
 func (e *BoundaryOnLocusError) Error() string {
 	return "locus: a whole piece of the region's boundary belongs to the locus"
 }
+
+// An UndecidedError says that a question could not be settled within the bounds on work.
+type UndecidedError struct {
+	Call string // the method
+	What string // what is undecided
+}
+
+func (e *UndecidedError) Error() string { return e.Call + ": undecided: " + e.What }

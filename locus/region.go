@@ -22,18 +22,18 @@ type Region interface {
 // A known region is an intersection of sides of boundaries.
 type known interface {
 	Region
-	// parts returns them, or what is wrong with the arguments.
-	parts(call string) ([]boundary, error)
+	// constraints returns them, or what is wrong with the arguments.
+	constraints(call string) ([]constraint, error)
 }
 
-func partsOf(call string, r Region) ([]boundary, error) {
+func constraintsOf(call string, r Region) ([]constraint, error) {
 	switch r := r.(type) {
 	case nil:
 		return nil, &poly.ArgumentError{Call: call, Argument: "r", Reason: "no region"}
 	case known:
-		return r.parts(call)
+		return r.constraints(call)
 	}
-	return nil, errSkeleton
+	return []constraint{userRegion{r}}, nil
 }
 
 func invalidRegion(call, constructor, argument string, value float64, wanted string) error {
@@ -51,12 +51,14 @@ func LeftOf(sigma float64) Region { return leftOf{sigma} }
 type leftOf struct{ sigma float64 }
 
 func (r leftOf) Contains(s complex128) bool { return real(s) < r.sigma }
-func (r leftOf) Boundary() []Curve          { return nil }
-func (r leftOf) parts(call string) ([]boundary, error) {
+func (r leftOf) Boundary() []Curve {
+	return []Curve{Line(complex(r.sigma, 0), 1i)}
+}
+func (r leftOf) constraints(call string) ([]constraint, error) {
 	if !finite(r.sigma) {
 		return nil, invalidRegion(call, "LeftOf", "sigma", r.sigma, "a finite number is wanted")
 	}
-	return []boundary{halfPlane{exact.Float(r.sigma)}}, nil
+	return []constraint{halfPlane{exact.Float(r.sigma)}}, nil
 }
 
 // Damped returns the sector |arg(-s)| < acos zeta, 0 < zeta < 1: roots with a damping ratio
@@ -69,12 +71,15 @@ type damped struct{ zeta float64 }
 func (r damped) Contains(s complex128) bool {
 	return real(s) < 0 && finitePoint(s) && r.zeta > 0 && r.zeta < 1 && sector{exact.Float(r.zeta)}.side(exactly(s)) > 0
 }
-func (r damped) Boundary() []Curve { return nil }
-func (r damped) parts(call string) ([]boundary, error) {
+func (r damped) Boundary() []Curve {
+	root := math.Sqrt((1 - r.zeta) * (1 + r.zeta))
+	return []Curve{Ray(0, complex(-r.zeta, root)), Ray(0, complex(-r.zeta, -root))}
+}
+func (r damped) constraints(call string) ([]constraint, error) {
 	if !(r.zeta > 0 && r.zeta < 1) {
 		return nil, invalidRegion(call, "Damped", "zeta", r.zeta, "a number between 0 and 1 is wanted")
 	}
-	return []boundary{sector{exact.Float(r.zeta)}}, nil
+	return []constraint{sector{exact.Float(r.zeta)}}, nil
 }
 
 // Within returns the disc |s| < radius, radius > 0 in rad/s: roots with a natural frequency
@@ -93,8 +98,8 @@ type within struct {
 func (r within) Contains(s complex128) bool {
 	return finitePoint(s) && r.radius > 0 && finite(r.radius) && disc{exact.Float(r.radius), r.outside}.side(exactly(s)) > 0
 }
-func (r within) Boundary() []Curve { return nil }
-func (r within) parts(call string) ([]boundary, error) {
+func (r within) Boundary() []Curve { return []Curve{Circle(0, r.radius)} }
+func (r within) constraints(call string) ([]constraint, error) {
 	if !(r.radius > 0 && finite(r.radius)) {
 		name := "Within"
 		if r.outside {
@@ -102,7 +107,7 @@ func (r within) parts(call string) ([]boundary, error) {
 		}
 		return nil, invalidRegion(call, name, "radius", r.radius, "a finite number above 0 is wanted")
 	}
-	return []boundary{disc{exact.Float(r.radius), r.outside}}, nil
+	return []constraint{disc{exact.Float(r.radius), r.outside}}, nil
 }
 
 // Strip returns the strip |Im s| < omega, omega > 0 in rad/s: roots whose oscillation is slower
@@ -112,12 +117,14 @@ func Strip(omega float64) Region { return slower{omega} }
 type slower struct{ omega float64 }
 
 func (r slower) Contains(s complex128) bool { return math.Abs(imag(s)) < r.omega }
-func (r slower) Boundary() []Curve          { return nil }
-func (r slower) parts(call string) ([]boundary, error) {
+func (r slower) Boundary() []Curve {
+	return []Curve{Line(complex(0, r.omega), 1), Line(complex(0, -r.omega), 1)}
+}
+func (r slower) constraints(call string) ([]constraint, error) {
 	if !(r.omega > 0 && finite(r.omega)) {
 		return nil, invalidRegion(call, "Strip", "omega", r.omega, "a finite number above 0 is wanted")
 	}
-	return []boundary{strip{exact.Float(r.omega)}}, nil
+	return []constraint{strip{exact.Float(r.omega)}}, nil
 }
 
 // All returns the intersection of regions; of none, the whole plane.
@@ -144,10 +151,10 @@ func (r all) Boundary() []Curve {
 	return curves
 }
 
-func (r all) parts(call string) ([]boundary, error) {
-	var parts []boundary
+func (r all) constraints(call string) ([]constraint, error) {
+	var parts []constraint
 	for _, one := range r {
-		more, err := partsOf(call, one)
+		more, err := constraintsOf(call, one)
 		if err != nil {
 			return nil, err
 		}
@@ -155,7 +162,3 @@ func (r all) parts(call string) ([]boundary, error) {
 	}
 	return parts, nil
 }
-
-// OnSamples returns the image of r under z = e^(s·period): it holds z if Log(z)/period, in the
-// principal strip |Im s| ≤ π/period, lies in r, and z = 0 if r reaches to Re s = -∞.
-func OnSamples(r Region, period float64) Region { return r }

@@ -7,13 +7,13 @@ import (
 	"github.com/polewright/polewright/internal/exact"
 )
 
-// A Segment is a part of the real axis, from Lo to Hi; ends may be infinite.
-type Segment struct{ Lo, Hi float64 }
+// A RealSegment is a part of the real axis, from Lo to Hi; ends may be infinite.
+type RealSegment struct{ Lo, Hi float64 }
 
 // RealSegments returns the parts of the real axis that belong to the locus of gains of the given
 // sign, ascending. They end at poles and zeros of odd multiplicity; those of even multiplicity
 // may lie inside. Factors common to both polynomials take no part.
-func (f Family) RealSegments(sign Sign) ([]Segment, error) {
+func (f Family) RealSegments(sign Sign) ([]RealSegment, error) {
 	const call = "locus.Family.RealSegments"
 	if err := f.valid(call); err != nil {
 		return nil, err
@@ -40,10 +40,10 @@ func (f Family) RealSegments(sign Sign) ([]Segment, error) {
 	}
 	at := product.SignAt(minusInfinity)
 	lo := math.Inf(-1)
-	var segments []Segment
+	var segments []RealSegment
 	for _, x := range append(ends, math.Inf(1)) {
 		if at == wanted && lo < x {
-			segments = append(segments, Segment{lo, x})
+			segments = append(segments, RealSegment{lo, x})
 		}
 		lo, at = x, -at
 	}

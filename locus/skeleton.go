@@ -8,5 +8,3 @@ var errSkeleton = errors.New("locus: skeleton")
 // Option adjusts a call of this package.
 type Option func(*settings)
 type settings struct{ trace traceSettings }
-
-type Curve struct{}
