@@ -10,7 +10,7 @@ import (
 )
 
 // A Curve is a piece of a region's boundary: points At(t) of the plane for t in an interval.
-// [Line], [Ray], [Segment], [Circle] and [Arc] are treated exactly, as the numbers they were
+// [StraightLine], [Ray], [Segment], [Circle] and [Arc] are treated exactly, as the numbers they were
 // made from; [Parametric] makes any other. What is wrong with their arguments is reported by
 // the calls that use the curve.
 //
@@ -40,9 +40,9 @@ func invalidCurve(constructor, argument, reason string) Curve {
 	return Curve{err: &poly.ArgumentError{Call: "locus." + constructor, Argument: argument, Reason: reason}}
 }
 
-// Line returns the whole line through a point in a direction, which must not be 0.
-func Line(through, direction complex128) Curve {
-	return straight("Line", through, direction, math.Inf(-1), math.Inf(1))
+// StraightLine returns the whole line through a point in a direction, which must not be 0.
+func StraightLine(through, direction complex128) Curve {
+	return straight("StraightLine", through, direction, math.Inf(-1), math.Inf(1))
 }
 
 // Ray returns the half of a line that begins at a point.

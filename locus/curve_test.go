@@ -102,7 +102,7 @@ func TestOwnRegions(t *testing.T) {
 func TestInvalidCurves(t *testing.T) {
 	f := family(t, poly.New(1, 3, 2, 0), poly.New(1))
 	for name, c := range map[string]locus.Curve{
-		"direction":  locus.Line(0, 0),
+		"direction":  locus.StraightLine(0, 0),
 		"not finite": locus.Ray(complex(math.NaN(), 0), 1),
 		"no length":  locus.Segment(1, 1),
 		"radius":     locus.Circle(0, -1),

@@ -52,7 +52,7 @@ type leftOf struct{ sigma float64 }
 
 func (r leftOf) Contains(s complex128) bool { return real(s) < r.sigma }
 func (r leftOf) Boundary() []Curve {
-	return []Curve{Line(complex(r.sigma, 0), 1i)}
+	return []Curve{StraightLine(complex(r.sigma, 0), 1i)}
 }
 func (r leftOf) constraints(call string) ([]constraint, error) {
 	if !finite(r.sigma) {
@@ -118,7 +118,7 @@ type slower struct{ omega float64 }
 
 func (r slower) Contains(s complex128) bool { return math.Abs(imag(s)) < r.omega }
 func (r slower) Boundary() []Curve {
-	return []Curve{Line(complex(0, r.omega), 1), Line(complex(0, -r.omega), 1)}
+	return []Curve{StraightLine(complex(0, r.omega), 1), StraightLine(complex(0, -r.omega), 1)}
 }
 func (r slower) constraints(call string) ([]constraint, error) {
 	if !(r.omega > 0 && finite(r.omega)) {
