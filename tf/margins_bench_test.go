@@ -60,8 +60,11 @@ func BenchmarkMargins(b *testing.B) {
 			for b.Loop() {
 				l := loops[i%len(loops)]
 				i++
-				a := newAxisForm(poly.New(l.num...), poly.New(l.den...), 0, 0)
-				if _, err := a.margins(0); err != nil {
+				g, err := New(poly.New(l.num...), poly.New(l.den...))
+				if err != nil {
+					b.Fatal(err)
+				}
+				if _, err := (Loop{Plant: g}).Margins(); err != nil {
 					b.Fatal(err)
 				}
 			}

@@ -132,12 +132,17 @@ func draw(t testing.TB, r *rand.Rand, sampled, delayed bool) drawnLoop {
 
 // at evaluates by the roots; s is z of a sampled loop.
 func (l drawnLoop) at(s complex128) complex128 {
+	return l.near(s, 0)
+}
+
+// near evaluates at origin + s, s small: roots about the origin keep their digits.
+func (l drawnLoop) near(s, origin complex128) complex128 {
 	y := complex(l.gain, 0)
 	for i, p := range l.poles {
 		if i < len(l.zeros) {
-			y *= s - l.zeros[i]
+			y *= s - (l.zeros[i] - origin)
 		}
-		y /= s - p
+		y /= s - (p - origin)
 	}
 	if l.dead != 0 {
 		y *= cmplx.Exp(-s * complex(l.dead, 0))
@@ -147,7 +152,8 @@ func (l drawnLoop) at(s complex128) complex128 {
 
 func (l drawnLoop) atFrequency(w float64) complex128 {
 	if l.period != 0 {
-		return l.at(cmplx.Exp(complex(0, w*l.period)))
+		sin, cos := math.Sincos(w * l.period / 2)
+		return l.near(complex(-2*sin*sin, 2*sin*cos), 1)
 	}
 	return l.at(complex(0, w))
 }
@@ -241,6 +247,9 @@ func checkAgainstSweep(t *testing.T, l drawnLoop) {
 			continue
 		}
 		x := value[i-1]
+		if l.dead*(grid[i]-grid[i-1]) > 0.5 {
+			continue // the grid is too coarse here
+		}
 		clear := func(v float64) bool { return math.Abs(v) > 1e-9 }
 		if a, b := cmplx.Abs(x)-1, cmplx.Abs(y)-1; a*b < 0 && clear(a) && clear(b) {
 			if n := between(m.GainCrossovers, grid[i-1], grid[i]); n&1 == 0 {

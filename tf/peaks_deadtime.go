@@ -6,7 +6,7 @@ import (
 
 const (
 	// peakTolerance is the relative width to which the supremum of a magnitude with dead time
-	// is enclosed.
+	// is enclosed, as far as rounding allows: a peak above about 10³ has fewer digits.
 	peakTolerance = 1e-13
 	// mostCells bounds the search.
 	mostCells = 200000
@@ -147,7 +147,8 @@ func (f *delayedSum) leastSquare(end float64, best, bestAt float64) (least, at f
 		if value < best*(1-4*unitRoundoff) {
 			best, bestAt = value, c.centre
 		}
-		if lower >= best*(1-peakTolerance) {
+		// Rounding of 1 + L is about a unit of 1 where this nearly vanishes.
+		if lower >= best*(1-peakTolerance-32*unitRoundoff/math.Sqrt(best)) {
 			continue
 		}
 		if c.half <= 4*unitRoundoff*c.centre {
