@@ -110,6 +110,8 @@ func newProbe(r *limited, i int, lead float64) *probe {
 		p = riseProbe(r.limit)
 	case peakTime:
 		p = peakProbe(i, r.limit-lead)
+	case effortForStep: // without actuator limits, which the search does not take: linear
+		p = boundProbe(i, 0, r.limit/r.second, func(s *sample) *signal { return s.u }, func(c spans) float64 { return c.u })
 	case effort:
 		p = boundProbe(i, 0, r.limit, func(s *sample) *signal { return s.u }, func(c spans) float64 { return c.u })
 	case loadPeak:

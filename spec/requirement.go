@@ -29,7 +29,7 @@ type kind struct {
 	highest   float64 // 0: no highest
 	second    *second
 	stepped   bool // judged on a time response: actuator limits matter
-	measure   func(ctx context.Context, e *Evidence, r *limited) (measured, error)
+	measure   measure
 }
 
 // A second describes the second number of a requirement.

@@ -19,9 +19,9 @@ var (
 	settlingTime = &kind{word: "settling time", quantity: "settling time", dimension: seconds, open: true, stepped: true,
 		second: &second{word: "band", dimension: fraction, between: [2]float64{0, 1}}, measure: measureSettling}
 
-	stepError     = &kind{word: "step error", quantity: "steady error of the unit step", dimension: fraction, measure: measureSteadyError}
-	rampError     = &kind{word: "ramp error", quantity: "steady error of the unit ramp", dimension: seconds, measure: measureSteadyError}
-	parabolaError = &kind{word: "parabola error", quantity: "steady error of the unit parabola", dimension: secondsSquared, measure: measureSteadyError}
+	stepError     = &kind{word: "step error", quantity: "steady error of the unit step", dimension: fraction, measure: steady(0)}
+	rampError     = &kind{word: "ramp error", quantity: "steady error of the unit ramp", dimension: seconds, measure: steady(1)}
+	parabolaError = &kind{word: "parabola error", quantity: "steady error of the unit parabola", dimension: secondsSquared, measure: steady(2)}
 
 	effort        = &kind{word: "effort", quantity: "largest effort for the unit step", open: true, stepped: true, measure: measureEffort}
 	effortForStep = &kind{word: "effort for a step", quantity: "largest effort for the step", open: true, stepped: true,
@@ -41,10 +41,10 @@ var (
 	loadRecovery = &kind{word: "load recovery time", quantity: "recovery time after a unit step of load", dimension: seconds, open: true, stepped: true,
 		second: &second{word: "to", between: [2]float64{0, inf}}, measure: measureLoadRecovery}
 
-	absoluteIntegral     = &kind{word: "integral of absolute error", quantity: "integral of the absolute error", dimension: seconds, open: true, stepped: true, measure: measureIntegral}
-	squaredIntegral      = &kind{word: "integral of squared error", quantity: "integral of the squared error", dimension: seconds, open: true, stepped: true, measure: measureIntegral}
-	timeAbsoluteIntegral = &kind{word: "integral of time-weighted absolute error", quantity: "integral of the time-weighted absolute error", dimension: secondsSquared, open: true, stepped: true, measure: measureIntegral}
-	timeSquaredIntegral  = &kind{word: "integral of time-weighted squared error", quantity: "integral of the time-weighted squared error", dimension: secondsSquared, open: true, stepped: true, measure: measureIntegral}
+	absoluteIntegral     = &kind{word: "integral of absolute error", quantity: "integral of the absolute error", dimension: seconds, open: true, stepped: true, measure: integral((*signal).absolute, 0)}
+	squaredIntegral      = &kind{word: "integral of squared error", quantity: "integral of the squared error", dimension: seconds, open: true, stepped: true, measure: integral((*signal).squared, 0)}
+	timeAbsoluteIntegral = &kind{word: "integral of time-weighted absolute error", quantity: "integral of the time-weighted absolute error", dimension: secondsSquared, open: true, stepped: true, measure: integral((*signal).absolute, 1)}
+	timeSquaredIntegral  = &kind{word: "integral of time-weighted squared error", quantity: "integral of the time-weighted squared error", dimension: secondsSquared, open: true, stepped: true, measure: integral((*signal).squared, 1)}
 
 	bandwidthBetween = &kind{word: "bandwidth", quantity: "bandwidth", side: atLeast, dimension: frequency,
 		second: &second{word: "at most", dimension: frequency, between: [2]float64{0, inf}}, measure: measureBandwidth}

@@ -115,7 +115,7 @@ func newSignal(numerator []float64, lead float64, poles []complex128) *signal {
 	}
 	store := make([]float64, 5*n)
 	s := &signal{
-		modes: &modes{re: store[0:0:n], im: store[n:n:2*n]},
+		modes: &modes{re: store[0:0:n], im: store[n : n : 2*n]},
 		wr:    store[2*n : 2*n : 3*n], wi: store[3*n : 3*n : 4*n], size: store[4*n : 4*n : 5*n],
 	}
 	// The final value, N(0)/D(0), with D(0) = lead·∏(-p): a pair gives |p|².

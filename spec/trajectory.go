@@ -84,13 +84,13 @@ const (
 	// known to stepAngle⁴/384 of what the fast modes carry, and a pair of extrema in one
 	// step shows in the second derivative.
 	stepAngle = 0.5
-	maxSteps  = 1 << 14
+	maxSteps  = 1 << 16
 	deadBelow = 1e-15
 )
 
 // trace samples the signal until the time given, and on until the envelope has fallen to
-// small, and finds the extrema. It gives up after limit samples; tail then tells how much
-// may still come.
+// small, and finds the extrema. It gives up limit samples after the time given; tail then
+// tells how much may still come.
 func (s *signal) trace(until, small float64, limit int) {
 	m := s.modes
 	n := len(m.re)
@@ -103,6 +103,7 @@ func (s *signal) trace(until, small float64, limit int) {
 	zr, zi, qr, qi := work[0:n], work[n:2*n], work[2*n:3*n], work[3*n:4*n]
 	dead := deadBelow * s.scale
 	t := 0.0
+	late := 0       // samples before the time given
 	previous := 0.0 // second derivative at the last sample
 	for {
 		rate, rest := 0.0, 0.0
@@ -121,7 +122,10 @@ func (s *signal) trace(until, small float64, limit int) {
 			}
 			zr[i], zi[i] = e*(s.wr[i]*cos-s.wi[i]*sin), e*(s.wr[i]*sin+s.wi[i]*cos)
 		}
-		if t >= until && (rest <= small || rate == 0) || len(s.t) >= limit {
+		if t < until {
+			late = len(s.t)
+		}
+		if t >= until && (rest <= small || rate == 0 || len(s.t) >= late+limit) || len(s.t) >= maxSteps {
 			s.horizon, s.tail = t, rest
 			s.add(t, zr, zi, &previous)
 			s.swing = s.variationFrom(t)

@@ -1,0 +1,322 @@
+package spec
+
+import (
+	"context"
+	"errors"
+	"math"
+
+	"github.com/polewright/polewright/poly"
+	"github.com/polewright/polewright/tf"
+	"github.com/polewright/polewright/timeresp"
+)
+
+// What each requirement of this package reads off the evidence. The loop is stable here.
+
+func ofStep(e *Evidence, band float64, read func(f timeresp.Figures) measured) (measured, error) {
+	var f timeresp.Figures
+	var err error
+	if band > 0 {
+		f, err = e.Figures(band)
+	} else {
+		f, err = e.anyFigures()
+	}
+	if err != nil {
+		return measured{}, err
+	}
+	if ok, why := final(f); !ok {
+		return absent(why), nil
+	}
+	return read(f), nil
+}
+
+func measureOvershoot(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.Overshoot, f.PeakTime, "s") })
+}
+
+func measureUndershoot(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.Undershoot, f.UndershootTime, "s") })
+}
+
+func measureRise(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.RiseTime, f.Reach90, "s") })
+}
+
+func measurePeakTime(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return ofStep(e, 0, func(f timeresp.Figures) measured {
+		if math.IsNaN(f.PeakTime) {
+			return absent("the response has no peak above its final value")
+		}
+		return at(f.PeakTime, f.PeakTime, "s")
+	})
+}
+
+func measureSettling(_ context.Context, e *Evidence, r *limited) (measured, error) {
+	return ofStep(e, r.second, func(f timeresp.Figures) measured { return at(f.SettlingTime, f.SettlingTime, "s") })
+}
+
+type measure = func(ctx context.Context, e *Evidence, r *limited) (measured, error)
+
+// steady measures the steady error of the input tⁿ/n!.
+func steady(n int) measure {
+	return func(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+		m := at(e.m.steadyError(n, 1), none, "")
+		if math.IsInf(m.reached, 1) {
+			m.reason = "the error grows without bound"
+		}
+		return m, nil
+	}
+}
+
+func measureEffort(_ context.Context, e *Evidence, r *limited) (measured, error) {
+	return largestEffort(e, 1, r.limit)
+}
+
+func largestEffort(e *Evidence, size, limit float64) (measured, error) {
+	u, err := e.trajectory(toEffort, 0, 1e-9)
+	if err != nil {
+		return measured{}, err
+	}
+	if u == nil {
+		m := at(inf, 0, "s")
+		m.reason = "the effort has an impulse at the step"
+		return m, nil
+	}
+	v, w, _ := u.largestAbs(0, 0, inf)
+	if math.IsInf(w, 1) {
+		m := at(size*v, none, "")
+		m.reason = "approached in the steady state"
+		if size*v > limit {
+			m.reason = "reached in the steady state"
+		}
+		return m, nil
+	}
+	return at(size*v, w+e.m.toEffort, "s"), nil
+}
+
+func measureEffortForStep(_ context.Context, e *Evidence, r *limited) (measured, error) {
+	l := e.loop.Limits
+	if l.Rate != 0 {
+		return measured{}, &tf.UnsupportedError{Call: "spec: effort for a step", What: "a limited rate of the actuator"}
+	}
+	m, err := largestEffort(e, r.second, r.limit)
+	if err != nil {
+		return m, err
+	}
+	if l.Amplitude > 0 && m.reached > l.Amplitude {
+		// The linear controller asks for more than the actuator gives: the largest effort is
+		// the actuator's limit.
+		m.reached, m.at, m.atUnit, m.reason = l.Amplitude, none, "", "the actuator is at its limit"
+	}
+	return m, nil
+}
+
+// margin reads a margin; a degenerate loop has none.
+func margin(e *Evidence, read func(m tf.Margins) measured) (measured, error) {
+	m, err := e.Margins()
+	if err != nil {
+		var degenerate *tf.DegenerateError
+		if errors.As(err, &degenerate) {
+			return absent(degenerate.What), nil
+		}
+		return measured{}, err
+	}
+	return read(m), nil
+}
+
+// crossoverOf returns the frequency at which a margin is attained.
+func crossoverOf(list []tf.Crossover, margin float64) float64 {
+	for _, c := range list {
+		if c.Margin == margin || c.Margin == -margin {
+			return c.Frequency
+		}
+	}
+	return none
+}
+
+func measureGainMargin(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured {
+		g := at(m.GainIncrease, crossoverOf(m.PhaseCrossovers, m.GainIncrease), "rad/s")
+		if math.IsInf(m.GainIncrease, 1) {
+			g.reason = "no increase of the gain destabilises"
+		}
+		return g
+	})
+}
+
+func measureGainReductionMargin(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured {
+		g := at(1/m.GainDecrease, crossoverOf(m.PhaseCrossovers, m.GainDecrease), "rad/s")
+		if m.GainDecrease == 0 {
+			g.reason = "no reduction of the gain destabilises"
+		}
+		return g
+	})
+}
+
+func measurePhaseMargin(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured {
+		g := at(math.Abs(m.PhaseMargin), crossoverOf(m.GainCrossovers, m.PhaseMargin), "rad/s")
+		if math.IsInf(g.reached, 1) {
+			g.reason = "there is no gain crossover"
+		}
+		return g
+	})
+}
+
+func measureDelayMargin(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured {
+		g := at(m.Delay, none, "")
+		for _, c := range m.GainCrossovers {
+			angle := c.Margin
+			if angle <= 0 {
+				angle += 2 * math.Pi
+			}
+			if math.Abs(angle/c.Frequency-m.Delay) <= 1e-12*m.Delay {
+				g.at, g.atUnit = c.Frequency, "rad/s"
+			}
+		}
+		if math.IsInf(m.Delay, 1) {
+			g.reason = "no dead time destabilises"
+		}
+		return g
+	})
+}
+
+func measureSensitivityPeak(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured { return at(m.SensitivityPeak, m.SensitivityPeakAt, "rad/s") })
+}
+
+func measureComplementaryPeak(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	return margin(e, func(m tf.Margins) measured { return at(m.ComplementaryPeak, m.ComplementaryPeakAt, "rad/s") })
+}
+
+func measureDamping(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	poles, err := e.Poles()
+	if err != nil {
+		return measured{}, err
+	}
+	m := measured{reached: 1, at: none, pole: noPole}
+	for i, r := range poles {
+		if z := tf.DampingRatio(r.Value); i == 0 || z < m.reached {
+			m.reached, m.pole = z, r.Value
+		}
+	}
+	if imag(m.pole) < 0 {
+		m.pole = complex(real(m.pole), -imag(m.pole))
+	}
+	return m, nil
+}
+
+func measurePoles(_ context.Context, e *Evidence, r *limited) (measured, error) {
+	poles, err := e.Poles()
+	if err != nil {
+		return measured{}, err
+	}
+	m := measured{at: none, pole: noPole}
+	for _, p := range poles {
+		if !r.region.Contains(p.Value) {
+			m.reached += float64(p.Multiplicity)
+			m.pole = p.Value
+		}
+	}
+	return m, nil
+}
+
+func measureLoadPeak(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	s, err := e.trajectory(loadToOutput, 0, 1e-9)
+	if err != nil {
+		return measured{}, err
+	}
+	if s == nil {
+		return at(inf, 0, "s"), nil
+	}
+	v, w, _ := s.largestAbs(0, 0, inf)
+	if math.IsInf(w, 1) {
+		w = none
+	}
+	return at(v, w, "s"), nil
+}
+
+func measureLoadRecovery(_ context.Context, e *Evidence, r *limited) (measured, error) {
+	s, err := e.trajectory(loadToOutput, 0, 1e-9)
+	if err != nil {
+		return measured{}, err
+	}
+	if s == nil || math.Abs(s.final) > r.second {
+		return absent("the output never comes back: its steady deviation is larger"), nil
+	}
+	t := s.lastOutside(r.second)
+	return at(t, t, "s"), nil
+}
+
+// integral measures ∫tⁿ·(…) dt of the error.
+func integral(of func(s *signal, n int) float64, n int) measure {
+	return func(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+		s, err := e.trajectory(toOutput, 0, 1e-12)
+		if err != nil {
+			return measured{}, err
+		}
+		if s == nil {
+			return absent("the response has an impulse"), nil
+		}
+		return at(of(s, n), none, ""), nil
+	}
+}
+
+func measureBandwidth(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	if !e.m.rational() {
+		return measured{}, &tf.UnsupportedError{Call: "spec: bandwidth", What: "loops with dead time"}
+	}
+	// |T|² = |T(0)|²/2, a polynomial in x = ω².
+	num, den := e.m.output.at(1), e.m.character.at(1).Mul(e.m.prefilter)
+	s := newSpectrum(num, den)
+	n0, d0 := s.n2.Coefficient(0), s.d2.Coefficient(0)
+	if n0 == 0 {
+		return absent("the magnitude at zero frequency is zero"), nil
+	}
+	roots, err := positiveRoots(s.n2.Scale(2 * d0).Sub(s.d2.Scale(n0)))
+	if err != nil {
+		return measured{}, err
+	}
+	for i, x := range roots {
+		hi := inf
+		if i+1 < len(roots) {
+			hi = roots[i+1]
+		}
+		if y := inside(x, hi); 2*d0*s.n2.At(y) < n0*s.d2.At(y) {
+			return at(math.Sqrt(x), math.Sqrt(x), "rad/s"), nil
+		}
+	}
+	m := at(inf, none, "")
+	m.reason = "the magnitude never falls under 1/√2 of its value at zero frequency"
+	return m, nil
+}
+
+func measureNoise(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	if !e.m.rational() {
+		return measured{}, &tf.UnsupportedError{Call: "spec: noise amplification", What: "loops with dead time"}
+	}
+	v, w, err := supremumOfMagnitude(e.m.noise.at(1), e.m.character.at(1))
+	if err != nil {
+		return measured{}, err
+	}
+	return at(v, w, "rad/s"), nil
+}
+
+// supremumOfMagnitude returns the supremum over frequency of |num/den| and where it is
+// attained or approached: at 0, at infinity, or where the derivative of |num|²/|den|² by ω²
+// vanishes.
+func supremumOfMagnitude(num, den poly.Poly) (value, where float64, err error) {
+	s := newSpectrum(num, den)
+	roots, err := positiveRoots(s.n2.Derivative().Mul(s.d2).Sub(s.n2.Mul(s.d2.Derivative())))
+	if err != nil {
+		return 0, 0, err
+	}
+	value, where = -1, 0
+	for _, x := range append(roots, 0, inf) {
+		if v := 1 / s.gainAt(x); v > value {
+			value, where = v, math.Sqrt(x)
+		}
+	}
+	return value, where, nil
+}

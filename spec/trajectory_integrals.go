@@ -1,0 +1,106 @@
+package spec
+
+import (
+	"math"
+	"math/cmplx"
+)
+
+// lastOutside returns the last time at which |f| exceeds the limit, 0 if it never does. The
+// final value has to lie within it.
+func (s *signal) lastOutside(limit float64) float64 {
+	// Monotone stretches run from extremum to extremum; look from the end.
+	knots := make([]float64, 0, len(s.turns)+2)
+	knots = append(knots, 0)
+	for i := range s.turns {
+		s.estimate(&s.turns[i])
+		knots = append(knots, s.turns[i].t)
+	}
+	knots = append(knots, s.horizon)
+	for j := len(knots) - 2; j >= 0; j-- {
+		a, b := knots[j], knots[j+1]
+		fa, _ := s.at(a)
+		fb, _ := s.at(b)
+		if math.Abs(fb) > limit*(1+1e-15) && j == len(knots)-2 {
+			return b
+		}
+		if math.Abs(fa) <= limit {
+			continue
+		}
+		sign := 1.0
+		if fa < 0 {
+			sign = -1
+		}
+		return increasing(a, b, a+(b-a)/2, func(t float64) (float64, float64) {
+			f, d := s.at(t)
+			return limit - sign*f, -sign * d
+		})
+	}
+	return 0
+}
+
+// squared returns ∫tⁿ(f - final)² dt, n 0 or 1, in closed form: with all poles written out,
+// the sum of wᵢwⱼ/(-(pᵢ + pⱼ))^(n+1).
+func (s *signal) squared(n int) float64 {
+	sum := 0.0
+	term := func(w, p complex128) float64 {
+		q := -p
+		if n == 1 {
+			q *= q
+		}
+		return real(w / q)
+	}
+	for i := range s.wr {
+		wi, pi := complex(s.wr[i], s.wi[i]), complex(s.modes.re[i], s.modes.im[i])
+		for j := range s.wr {
+			wj, pj := complex(s.wr[j], s.wi[j]), complex(s.modes.re[j], s.modes.im[j])
+			// Re(a)·Re(b) = (Re(ab) + Re(a·conj b))/2.
+			sum += (term(wi*wj, pi+pj) + term(wi*cmplx.Conj(wj), pi+cmplx.Conj(pj))) / 2
+		}
+	}
+	return sum
+}
+
+// absolute returns ∫tⁿ|f - final| dt, n 0 or 1, up to the horizon, which has to be far out:
+// the antiderivative between the zeros of f - final, one in each monotone stretch at most.
+func (s *signal) absolute(n int) float64 {
+	antiderivative := func(t float64) float64 {
+		sum := 0.0
+		for i := range s.wr {
+			p := complex(s.modes.re[i], s.modes.im[i])
+			z := complex(s.wr[i], s.wi[i]) * cmplx.Exp(p*complex(t, 0)) / p
+			if n == 1 {
+				z *= complex(t, 0) - 1/p
+			}
+			sum += real(z)
+		}
+		return sum
+	}
+	total, last := 0.0, antiderivative(0)
+	from := 0.0
+	add := func(to float64) {
+		a := antiderivative(to)
+		total += math.Abs(a - last)
+		last, from = a, to
+	}
+	stretch := func(to float64) {
+		fa, _ := s.at(from)
+		fb, _ := s.at(to)
+		if ea, eb := fa-s.final, fb-s.final; ea*eb < 0 {
+			sign := 1.0
+			if ea > 0 {
+				sign = -1
+			}
+			add(increasing(from, to, from+(to-from)/2, func(t float64) (float64, float64) {
+				f, d := s.at(t)
+				return sign * (f - s.final), sign * d
+			}))
+		}
+		add(to)
+	}
+	for i := range s.turns {
+		s.estimate(&s.turns[i])
+		stretch(s.turns[i].t)
+	}
+	stretch(s.horizon)
+	return total
+}
