@@ -187,7 +187,15 @@ func measureSensitivityPeak(_ context.Context, e *Evidence, _ *limited) (measure
 }
 
 func measureComplementaryPeak(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	return margin(e, func(m tf.Margins) measured { return at(m.ComplementaryPeak, m.ComplementaryPeakAt, "rad/s") })
+	p, err := e.loop.ComplementaryPeak()
+	if err != nil {
+		var degenerate *tf.DegenerateError
+		if errors.As(err, &degenerate) {
+			return absent(degenerate.What), nil
+		}
+		return measured{}, err
+	}
+	return at(p.Magnitude, p.Frequency, "rad/s"), nil
 }
 
 func measureDamping(_ context.Context, e *Evidence, _ *limited) (measured, error) {

@@ -25,7 +25,7 @@ type settings struct {
 }
 
 func newSettings(opt []Option) *settings {
-	s := &settings{evaluations: 6000, band: 0.02}
+	s := &settings{evaluations: 20000, band: 0.02}
 	for _, o := range opt {
 		if o != nil {
 			o(s)
@@ -49,7 +49,7 @@ func VaryController(fixed, scaled tf.Function) Option {
 func VarySensor() Option { return func(s *settings) { s.vary = sensorGain } }
 
 // Evaluations limits how many closed loops the search between two critical gains looks at
-// before it stops proving and reports what it may have missed; 0 means the default, 6000.
+// before it stops proving and reports what it may have missed; 0 means the default, 20000.
 func Evaluations(most int) Option {
 	return func(s *settings) {
 		if most > 0 {

@@ -244,13 +244,10 @@ func (e *engine) part(numerator []float64, lead float64, poles []complex128, wan
 
 // supremum bounds |f - about| at every time.
 func supremum(s *signal, about float64) float64 {
-	m := 0.0
-	for _, f := range s.f {
-		m = math.Max(m, math.Abs(f-about))
-	}
-	// Between two samples an extremum stands out by no more than the slope times the step.
+	m := math.Max(math.Abs(s.f[0]-about), math.Abs(s.f[len(s.f)-1]-about))
 	for i := range s.turns {
-		m = math.Max(m, math.Abs(s.estimate(&s.turns[i])-about))
+		f := s.turns[i].f
+		m = math.Max(m, math.Abs(f-about)+roughness*math.Abs(f-s.final))
 	}
 	return math.Max(m, math.Abs(s.final-about)+s.tail)
 }

@@ -1,9 +1,6 @@
 package spec
 
-import (
-	"math"
-	"slices"
-)
+import "math"
 
 // The search for gain windows looks at hundreds of closed loops that differ in the gain
 // alone. A trajectory is the step response of one of them, as a sum over the modes in
@@ -34,9 +31,13 @@ type signal struct {
 // turn is an extremum in a cell of the samples.
 type turn struct {
 	lo, hi  float64 // bracket of the sign change of the derivative
-	t, f    float64
+	t, f    float64 // until refined: of the cubic through the samples
 	refined bool
 }
+
+// roughness bounds the error of the cubic at an extremum, relative to its distance from the
+// final value and to the steps about it.
+const roughness = 1e-3
 
 // at returns value and derivative at time t ≥ 0.
 func (s *signal) at(t float64) (f, d float64) {
@@ -94,6 +95,11 @@ const (
 func (s *signal) trace(until, small float64, limit int) {
 	m := s.modes
 	n := len(m.re)
+	if s.t == nil {
+		const room = 192
+		store := make([]float64, 3*room)
+		s.t, s.f, s.d = store[0:0:room], store[room:room:2*room], store[2*room:2*room]
+	}
 	s.t, s.f, s.d, s.turns = s.t[:0], s.f[:0], s.d[:0], s.turns[:0]
 	var store [4 * 32]float64
 	work := store[:0]
@@ -179,13 +185,29 @@ func (s *signal) add(t float64, zr, zi []float64, previous *float64) {
 		case d0 == 0 && n == 1:
 			// The start of a strictly proper response is no extremum.
 		case d0 > 0 && d <= 0 || d0 < 0 && d >= 0:
-			s.turns = append(s.turns, turn{lo: t0, hi: t, t: t0 + (t-t0)*d0/(d0-d)})
+			s.turns = append(s.turns, cubicTurn(t0, t, s.f[n-1], f, d0, d))
 		case d0*c0 < 0 && d*c > 0:
 			s.dip(t0, t, d0, c0, d, c)
 		}
 	}
 	s.t, s.f, s.d = append(s.t, t), append(s.f, f), append(s.d, d)
 	*previous = c
+}
+
+// cubicTurn returns the extremum of the cubic with the given values and slopes, of opposite
+// sign, at its ends.
+func cubicTurn(t0, t1, f0, f1, d0, d1 float64) turn {
+	h := t1 - t0
+	a, b := d0*h, d1*h
+	c2, c3 := 3*(f1-f0)-2*a-b, a+b-2*(f1-f0) // f0 + x(a + x(c2 + x·c3)), x in [0, 1]
+	x := a / (a - b)
+	for range 2 {
+		g, gg := a+x*(2*c2+3*x*c3), 2*c2+6*x*c3
+		if y := x - g/gg; y > 0 && y < 1 {
+			x = y
+		}
+	}
+	return turn{lo: t0, hi: t1, t: t0 + x*h, f: f0 + x*(a+x*(c2+x*c3))}
 }
 
 // dip handles a step in which the derivative falls towards zero and grows again: where the
@@ -207,7 +229,10 @@ func (s *signal) dip(t0, t1, d0, c0, d1, c1 float64) {
 			if da*d0 > 0 {
 				mid = b
 			}
-			s.turns = append(s.turns, turn{lo: t0, hi: mid, t: t0 + (mid-t0)/2}, turn{lo: mid, hi: t1, t: mid + (t1-mid)/2})
+			for _, u := range []turn{{lo: t0, hi: mid, t: t0 + (mid-t0)/2}, {lo: mid, hi: t1, t: mid + (t1-mid)/2}} {
+				s.refine(&u)
+				s.turns = append(s.turns, u)
+			}
 			return
 		}
 		if math.Abs(da) < math.Abs(db) {
@@ -266,17 +291,9 @@ func (s *signal) refine(u *turn) {
 	u.refined = true
 }
 
-// estimate returns the value at an extremum to about stepAngle⁴/384 of the fast modes.
+// estimate returns the value at an extremum, to rounding.
 func (s *signal) estimate(u *turn) float64 {
-	if !u.refined {
-		f, d := s.at(u.t)
-		// Twice: one Newton step in value would need the curvature; a refined point is as cheap.
-		if d != 0 {
-			s.refine(u)
-			return u.f
-		}
-		u.f, u.refined = f, true
-	}
+	s.refine(u)
 	return u.f
 }
 
@@ -301,15 +318,8 @@ func (s *signal) largest(sign, from, to float64) (value, where, above float64) {
 		if u.lo >= to {
 			break
 		}
-		// Cheap bound first: the samples about the extremum and the slope there.
-		if j, ok := slices.BinarySearch(s.t, u.hi); ok || j < len(s.t) {
-			if j > 0 {
-				h := s.t[j] - s.t[j-1]
-				top := math.Max(sign*s.f[j], sign*s.f[j-1]) + h*math.Max(math.Abs(s.d[j]), math.Abs(s.d[j-1]))
-				if top < value {
-					continue
-				}
-			}
+		if !u.refined && sign*u.f+roughness*math.Abs(u.f-s.final) < value {
+			continue
 		}
 		if x := sign * s.estimate(u); x > value && u.t >= from && u.t <= to {
 			value, where = x, u.t
@@ -344,8 +354,7 @@ func (s *signal) firstAt(sign, level float64) float64 {
 		for k < len(s.turns) && s.turns[k].hi <= s.t[j] {
 			u := &s.turns[k]
 			k++
-			h := s.t[j] - s.t[j-1]
-			if math.Max(sign*s.f[j], sign*s.f[j-1])+h*math.Max(math.Abs(s.d[j]), math.Abs(s.d[j-1])) < level {
+			if !u.refined && sign*u.f+roughness*math.Abs(u.f-s.final) < level {
 				continue
 			}
 			if sign*s.estimate(u) >= level {
@@ -373,15 +382,14 @@ func (s *signal) cross(sign, level, lo, hi float64) float64 {
 
 // variation bounds the total variation over t > 0, the jump at 0 included.
 func (s *signal) variation() float64 {
-	bound := math.Abs(s.f[0]) + s.variationFrom(0)
 	sum := math.Abs(s.f[0])
 	last := s.f[0]
 	for i := range s.turns {
-		f := s.estimate(&s.turns[i])
-		sum += math.Abs(f - last)
+		f := s.turns[i].f
+		sum += math.Abs(f-last) + 2*roughness*math.Abs(f-s.final)
 		last = f
 	}
 	end := s.f[len(s.f)-1]
 	sum += math.Abs(end-last) + s.swing
-	return math.Min(bound, sum)
+	return math.Min(math.Abs(s.f[0])+s.variationFrom(0), sum)
 }

@@ -341,10 +341,12 @@ func (h *hunt) gap(a, b float64) float64 {
 }
 
 const (
-	resolution = 5e-5 // of a gap: where halving stops, half of what is promised
-	reach      = 1e4  // beyond the critical gains: how far windows are searched
-	further    = 1e9  // beyond that: how far the verdict is sampled
-	edgeOffset = 1e-5 // of a gap: how near to an end of stability the search begins
+	resolution  = 5e-5 // of a gap: where halving stops, half of what is promised
+	reachDown   = 1e4  // below the critical gains: how far windows are searched
+	reachUp     = 1e3  // above them
+	furtherDown = 1e9  // beyond that: how far the verdict is sampled
+	furtherUp   = 1e3
+	edgeOffset  = 1e-5 // of a gap: how near to an end of stability the search begins
 )
 
 // search replaces the windows of g by the parts of them that the seeker accepts.
@@ -391,8 +393,8 @@ func (h *hunt) searchWindow(ctx context.Context, g *Gains, s *seeker, w GainWind
 	}
 	var gains []float64
 	if lo == 0 {
-		first := math.Min(h.scale[0]/reach, hi/reach)
-		for q := further; q > 1; q /= 1e3 {
+		first := math.Min(h.scale[0]/reachDown, hi/reachDown)
+		for q := furtherDown; q > 1; q /= 1e3 {
 			gains = append(gains, first/q)
 		}
 		gains = append(gains, first)
@@ -401,9 +403,9 @@ func (h *hunt) searchWindow(ctx context.Context, g *Gains, s *seeker, w GainWind
 		gains = append(gains, lo+offset(w.Lo, h.gap(lo, math.Min(hi, 2*lo))))
 	}
 	if math.IsInf(hi, 1) {
-		last := math.Max(h.scale[1]*reach, lo*reach)
+		last := math.Max(h.scale[1]*reachUp, lo*10)
 		gains = append(gains, last)
-		for q := 1e3; q <= further; q *= 1e3 {
+		for q := 10.0; q <= furtherUp; q *= 10 {
 			gains = append(gains, last*q)
 		}
 		g.SearchedTo = math.Min(g.SearchedTo, last)

@@ -323,7 +323,9 @@ func (q quadratic) span(x float64) (lo, hi float64, ok bool) {
 	return math.Max(lo, 0), hi, true
 }
 
-// holes returns the forbidden gains.
+// holes returns the forbidden gains. Over a piece, the ends of span are extreme where
+// F = ak² + bk + c and its derivative by x vanish together: at a root of their resultant by k,
+// or at the ends of the piece.
 func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 	var knots []float64
 	for _, p := range []poly.Poly{q.b.Mul(q.b).Sub(q.a.Mul(q.c).Scale(4)), q.a, q.b} {
@@ -333,8 +335,23 @@ func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 		}
 		knots = append(knots, roots...)
 	}
-	knots = append(knots, 0, inf)
+	da, db, dc := q.a.Derivative(), q.b.Derivative(), q.c.Derivative()
+	ac := q.a.Mul(dc).Sub(q.c.Mul(da))
+	ab := q.a.Mul(db).Sub(q.b.Mul(da))
+	bc := q.b.Mul(dc).Sub(q.c.Mul(db))
+	turns, err := positiveRoots(ac.Mul(ac).Sub(ab.Mul(bc)))
+	if err != nil {
+		return nil, err
+	}
 	slices.Sort(knots)
+	small, large := 1.0, 1.0 // of the finite features
+	for i, x := range append(slices.Clone(knots), turns...) {
+		if i == 0 {
+			small, large = x, x
+		}
+		small, large = math.Min(small, x), math.Max(large, x)
+	}
+	knots = append(append([]float64{0}, knots...), inf)
 	knots = slices.Compact(knots)
 	cause.Kind = Crossing
 	var holes []GainWindow
@@ -345,106 +362,62 @@ func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 			joined = false
 			continue
 		}
-		lo := q.extreme(a, b, func(x float64) float64 {
-			if l, _, ok := q.span(x); ok {
-				return l
+		lo, hi := inf, 0.0
+		consider := func(l, h float64) { lo, hi = math.Min(lo, l), math.Max(hi, h) }
+		for _, x := range turns {
+			if x > a && x < b {
+				if l, h, ok := q.span(x); ok {
+					consider(l, h)
+				}
 			}
-			return inf
-		})
-		hi := -q.extreme(a, b, func(x float64) float64 {
-			if _, h, ok := q.span(x); ok {
-				return -h
+		}
+		for _, x := range [2]float64{a, b} {
+			switch {
+			case x == 0:
+				consider(q.limit(small*0x1p-50, 0x1p-20))
+			case math.IsInf(x, 1):
+				consider(q.limit(large*0x1p50, 0x1p20))
+			default:
+				// At the end of a piece both roots of F meet, or a or b changes its sign.
+				if l, h, ok := q.span(x); ok {
+					consider(l, h)
+				} else if l, h, ok := q.span(x + (inside(a, b)-x)*0x1p-50); ok {
+					consider(l, h)
+				} else if k := -q.b.At(x) / (2 * q.a.At(x)); k > 0 {
+					consider(k, k)
+				}
 			}
-			return 0
-		})
-		hole := GainWindow{Lo: End{Gain: lo, Closed: true, By: []Cause{cause}}, Hi: End{Gain: hi, Closed: true, By: []Cause{cause}}}
+		}
 		if joined {
 			// The same piece goes on where only a or b changed its sign.
 			h := &holes[len(holes)-1]
 			h.Lo.Gain, h.Hi.Gain = math.Min(h.Lo.Gain, lo), math.Max(h.Hi.Gain, hi)
 		} else {
-			holes = append(holes, hole)
+			holes = append(holes, GainWindow{Lo: End{Gain: lo, Closed: true, By: []Cause{cause}}, Hi: End{Gain: hi, Closed: true, By: []Cause{cause}}})
 		}
 		_, _, joined = q.span(b)
 	}
 	return holes, nil
 }
 
-// extreme returns the infimum of f over (a, b), by samples and golden section.
-func (q quadratic) extreme(a, b float64, f func(float64) float64) float64 {
-	// Map (0, 1) to (a, b): dense at both ends, over many decades if an end is 0 or infinite.
-	at := func(u float64) float64 {
+// limit returns the limits of span for x towards 0 or infinity: power laws far from every
+// finite feature, told by one more step.
+func (q quadratic) limit(x, step float64) (lo, hi float64) {
+	l1, h1, ok1 := q.span(x)
+	l2, h2, ok2 := q.span(x * step)
+	if !ok1 || !ok2 {
+		return inf, 0
+	}
+	trend := func(a, b float64) float64 {
 		switch {
-		case a == 0 && math.IsInf(b, 1):
-			return math.Exp(40 * (2*u - 1))
-		case a == 0:
-			return b * math.Exp(-40*(1-u)*(1-u))
-		case math.IsInf(b, 1):
-			return a * math.Exp(40*u*u)
+		case b > 8*a:
+			return inf
+		case b < a/8:
+			return 0
 		}
-		v := u * u * (3 - 2*u)
-		return a * math.Pow(b/a, v)
+		return b
 	}
-	g := func(u float64) float64 { return f(at(u)) }
-	const n = 96
-	var values [n + 1]float64
-	best, where := inf, 0
-	for i := range values {
-		u := float64(i) / n
-		if i == 0 {
-			u = 1e-9
-		} else if i == n {
-			u = 1 - 1e-9
-		}
-		values[i] = g(u)
-		if values[i] < best {
-			best, where = values[i], i
-		}
-	}
-	if math.IsInf(best, 0) {
-		return best
-	}
-	for i := 1; i < n; i++ { // every dip that comes near the best
-		if i != where && !(values[i] <= values[i-1] && values[i] <= values[i+1] && values[i] < best+0.05*math.Abs(best)) {
-			continue
-		}
-		best = math.Min(best, golden(g, float64(i-1)/n, float64(i+1)/n))
-	}
-	if where == 0 {
-		best = math.Min(best, golden(g, 0, 1.0/n))
-	}
-	if where == n {
-		best = math.Min(best, golden(g, 1-1.0/n, 1))
-	}
-	for _, x := range []float64{a, b} { // limits at the ends of the piece
-		if x > 0 && !math.IsInf(x, 1) {
-			best = math.Min(best, f(x))
-		} else if x == 0 {
-			best = math.Min(best, f(0))
-		}
-	}
-	return best
-}
-
-// golden returns the minimum of a function with one dip in [a, b].
-func golden(f func(float64) float64, a, b float64) float64 {
-	const ratio = 0.6180339887498949
-	x, y := b-ratio*(b-a), a+ratio*(b-a)
-	fx, fy := f(x), f(y)
-	best := math.Min(fx, fy)
-	for range 60 {
-		if fx < fy {
-			b, y, fy = y, x, fx
-			x = b - ratio*(b-a)
-			fx = f(x)
-		} else {
-			a, x, fx = x, y, fy
-			y = a + ratio*(b-a)
-			fy = f(y)
-		}
-		best = math.Min(best, math.Min(fx, fy))
-	}
-	return best
+	return trend(l1, l2), trend(h1, h2)
 }
 
 // sensitivityHoles: |1/(1+L)| > peak, that is d2 > peak²·|D + kN|².
