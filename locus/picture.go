@@ -167,6 +167,22 @@ func (b *box) put(s complex128) {
 	b.ImLo, b.ImHi = min(b.ImLo, imag(s)), max(b.ImHi, imag(s))
 }
 
+// centroid returns where the asymptotes meet, if there are any.
+func (l *Locus) centroid() (float64, bool) {
+	n, m := l.family.fixed.Degree(), l.family.scaled.Degree()
+	if n == m || n < 0 || m < 0 {
+		return 0, false
+	}
+	sum := 0.0
+	for _, mark := range l.poles {
+		sum += real(mark.S) * float64(mark.Multiplicity)
+	}
+	for _, mark := range l.zeros {
+		sum -= real(mark.S) * float64(mark.Multiplicity)
+	}
+	return sum / float64(n-m), true
+}
+
 // makeFrame finds the drawing window of a traced locus.
 func (l *Locus) makeFrame() {
 	b := newBox()
@@ -194,10 +210,8 @@ func (l *Locus) makeFrame() {
 			}
 		}
 	}
-	for sign, wanted := range map[Sign]bool{Positive: l.hi > 0, Negative: l.lo < 0} {
-		if a := l.family.Asymptotes(sign); wanted && len(a.Angles) > 0 {
-			b.put(complex(a.Centroid, 0))
-		}
+	if centroid, ok := l.centroid(); ok {
+		b.put(complex(centroid, 0))
 	}
 	if !(b.ReLo <= b.ReHi) {
 		for i := range l.Branches {

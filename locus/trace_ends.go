@@ -3,6 +3,8 @@ package locus
 import (
 	"math"
 	"math/cmplx"
+
+	"github.com/polewright/polewright/poly"
 )
 
 // farGain is where, in gains of the plane, the neighbourhood of κ = ±∞ is worth looking at.
@@ -11,15 +13,75 @@ const farGain = 0x1p20
 // begin places the rows at the start of the walk.
 func (t *tracker) begin() error {
 	p := t.plane
-	at, roots := t.family.fixed, t.poles
-	if t.from != 0 {
-		at = t.family.At(p.fromK(t.from))
-		var err error
-		if roots, err = rootsOf(at); err != nil {
-			return err
+	t.κ, t.limiting = t.from, -1
+	if t.from == 0 {
+		return t.beginAt(t.family.fixed, t.poles)
+	}
+	// In float64 first; the discs are proven for the exact family. Multiple roots at this
+	// gain, or one at infinity, show only in the exact one.
+	t.pencil.set(t.from)
+	if roots, err := byPower(t.pencil.f).Roots(); err == nil && len(roots) == p.n {
+		if t.beginSimple(roots) {
+			return nil
 		}
 	}
-	t.κ, t.limiting = t.from, -1
+	at := t.family.At(p.fromK(t.from))
+	roots, err := rootsOf(at)
+	if err != nil {
+		return err
+	}
+	return t.beginAt(at, roots)
+}
+
+// beginSimple is begin with approximate simple roots x of the plane. It is false if they do not
+// turn out to be that.
+func (t *tracker) beginSimple(roots []poly.Root) bool {
+	rows := make([]row, 0, len(roots))
+	for i, root := range roots {
+		x := root.Value
+		if imag(x) < 0 {
+			continue
+		}
+		r := row{x: real(x), y: imag(x)}
+		near := math.Inf(1)
+		for j, other := range roots {
+			if j != i {
+				near = min(near, cmplx.Abs(x-other.Value))
+			}
+		}
+		if math.IsInf(near, 1) {
+			near = cmplx.Abs(x) + 1
+		}
+		if !t.correct(&r, near) {
+			return false
+		}
+		rows = append(rows, r)
+	}
+	reach := t.certify(rows, nil)
+	if reach == 0 {
+		return false
+	}
+	t.name(rows)
+	t.commit(t.from, reach, rows)
+	return true
+}
+
+// name gives each row a chain and each root a branch.
+func (t *tracker) name(rows []row) {
+	for i := range rows {
+		r := &rows[i]
+		owner, mirror := t.newBranch(t.from), -1
+		if r.y > 0 {
+			// the lower one comes first, as in the order of roots
+			owner, mirror = t.newBranch(t.from), owner
+		}
+		r.chain = t.newChain(r.y == 0, owner, mirror, t.from, tip{})
+	}
+}
+
+// beginAt places the rows at the roots of the exact polynomial at the first gain.
+func (t *tracker) beginAt(at poly.Poly, roots []poly.Root) error {
+	p := t.plane
 	t.pencil.set(t.from)
 	var rows []row
 	var group []*cell
@@ -51,21 +113,13 @@ func (t *tracker) begin() error {
 	}
 	for i := range rows {
 		r := &rows[i]
-		real := r.y == 0
-		owner, mirror := t.newBranch(t.from), -1
-		if !real {
-			mirror = t.newBranch(t.from)
-			// the lower one comes first, as in the order of roots
-			owner, mirror = mirror, owner
-		}
-		r.chain = t.newChain(real, owner, mirror, t.from, tip{})
 		near := math.Inf(1)
 		for j := range rows {
 			if j != i {
 				near = min(near, math.Hypot(r.x-rows[j].x, r.y-rows[j].y))
 			}
 		}
-		if !real {
+		if r.y > 0 {
 			near = min(near, 2*r.y)
 		}
 		for _, c := range group {
@@ -87,6 +141,7 @@ func (t *tracker) begin() error {
 			return t.fail("the roots at the first gain cannot be told apart")
 		}
 	}
+	t.name(rows)
 	if len(group) == 0 {
 		t.commit(t.from, reach, rows)
 		return nil

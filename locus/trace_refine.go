@@ -9,10 +9,10 @@ import (
 // at returns where the root of a chain is at a gain of the plane.
 func (c *chain) at(p *plane, κ float64) (complex128, bool) {
 	if v := c.tail.cell; v != nil && (len(c.knots) == 0 || κ > c.knots[len(c.knots)-1].upto) {
-		return c.tail.at(p, κ)
+		return c.tail.polished(p, κ)
 	}
 	if v := c.head.cell; v != nil && (len(c.knots) == 0 || κ < c.knots[0].from) {
-		return c.head.at(p, κ)
+		return c.head.polished(p, κ)
 	}
 	i := sort.Search(len(c.knots), func(i int) bool { return c.knots[i].from > κ }) - 1
 	if i < 0 {
@@ -95,19 +95,22 @@ func hermite(z, v, p, q, t, h float64) float64 {
 	return u*u*(z*(1+2*t)+v*h*t) + t*t*(p*(1+2*u)-q*h*u)
 }
 
-// at returns where the root is that a tip describes.
-func (e tip) at(p *plane, κ float64) (complex128, bool) {
+// at returns where the root is that a tip describes, to the accuracy of float64 in the
+// coordinates of the cell.
+func (e tip) at(κ float64) (complex128, bool) {
 	c := e.cell
 	if κ == c.gain || c.reciprocal && math.IsInf(κ, 0) {
 		return c.centre, !c.atInfinity
 	}
 	h, ok := c.solve(e.sector, c.offset(κ))
-	if !ok {
-		return 0, false
-	}
-	x := c.point(h)
-	if c.reciprocal {
-		κ = 1 / c.offset(κ)
+	return c.point(h), ok
+}
+
+// polished is at with the errors of the cell's coefficients taken out.
+func (e tip) polished(p *plane, κ float64) (complex128, bool) {
+	x, ok := e.at(κ)
+	if !ok || κ == e.cell.gain || math.IsInf(κ, 0) {
+		return x, ok
 	}
 	return p.polish(x, κ), true
 }

@@ -140,7 +140,7 @@ func (s *shaper) inCell(e tip, from, to float64) {
 			if v == u1 {
 				κ = outer
 			}
-			x, ok := e.at(s.plane, κ)
+			x, ok := e.at(κ)
 			if !ok {
 				break
 			}
@@ -150,7 +150,7 @@ func (s *shaper) inCell(e tip, from, to float64) {
 			}
 		}
 		if u0 > 0 && len(points) > 0 && cmplx.Abs(points[len(points)-1].s) <= s.far {
-			if x, ok := e.at(s.plane, inner); ok {
+			if x, ok := e.at(inner); ok {
 				points = append(points, point{inner, x})
 			}
 		}
@@ -162,8 +162,8 @@ func (s *shaper) inCell(e tip, from, to float64) {
 		}
 		return
 	}
-	x0, ok0 := e.at(s.plane, inner)
-	x1, ok1 := e.at(s.plane, outer)
+	x0, ok0 := e.at(inner)
+	x1, ok1 := e.at(outer)
 	if !ok0 || !ok1 {
 		return
 	}
@@ -172,7 +172,7 @@ func (s *shaper) inCell(e tip, from, to float64) {
 	refine = func(u0, u1 float64, x0, x1 complex128, depth int) {
 		mid := (u0 + u1) / 2
 		κ := gain(mid, sign)
-		x, ok := e.at(s.plane, κ)
+		x, ok := e.at(κ)
 		if !ok || depth > 12 {
 			return
 		}

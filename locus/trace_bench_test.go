@@ -48,6 +48,19 @@ func randomPlant(r *rand.Rand, n int) (fixed, scaled []float64) {
 	return fixed, scaled
 }
 
+type plant struct{ fixed, scaled []float64 }
+
+// randomPlants returns the plants of a benchmark. Nothing is kept between calls, so that each
+// is new every time.
+func randomPlants(n int) []plant {
+	r := rand.New(rand.NewPCG(1, uint64(n)))
+	plants := make([]plant, 64)
+	for i := range plants {
+		plants[i].fixed, plants[i].scaled = randomPlant(r, n)
+	}
+	return plants
+}
+
 // sweep is what a user would write by hand: eigenvalues at a grid of gains, each set matched
 // to the last by nearest neighbours.
 func sweep(fixed, scaled []float64, lo, hi float64, count int) [][]complex128 {
@@ -87,12 +100,12 @@ func sweep(fixed, scaled []float64, lo, hi float64, count int) [][]complex128 {
 func BenchmarkTrace(b *testing.B) {
 	for _, n := range []int{4, 8, 12, 20} {
 		b.Run(fmt.Sprintf("method=trace/degree=%d", n), func(b *testing.B) {
-			r := rand.New(rand.NewPCG(1, uint64(n)))
+			plants := randomPlants(n)
 			var points, sum float64
+			next := 0
 			for b.Loop() {
-				b.StopTimer()
-				fixed, scaled := randomPlant(r, n)
-				b.StartTimer()
+				fixed, scaled := plants[next%len(plants)].fixed, plants[next%len(plants)].scaled
+				next++
 				f, err := Parameter(poly.New(fixed...), poly.New(scaled...))
 				if err != nil {
 					b.Fatal(err)
@@ -115,12 +128,12 @@ func BenchmarkTrace(b *testing.B) {
 			}
 		})
 		b.Run(fmt.Sprintf("method=eigenvalues/degree=%d", n), func(b *testing.B) {
-			r := rand.New(rand.NewPCG(1, uint64(n)))
+			plants := randomPlants(n)
+			next := 0
 			for b.Loop() {
-				b.StopTimer()
-				fixed, scaled := randomPlant(r, n)
-				b.StartTimer()
-				sweep(fixed, scaled, 1e-3, 1e3, 1000)
+				plant := plants[next%len(plants)]
+				next++
+				sweep(plant.fixed, plant.scaled, 1e-3, 1e3, 1000)
 			}
 		})
 	}
