@@ -97,6 +97,9 @@ func newCell(f, b []complex128, errF, errB []float64, m int) *cell {
 	for i := range b {
 		c.real = c.real && imag(b[i]) == 0
 	}
+	if c.real {
+		c.lead = complex(real(c.lead), 0) // no negative zero: its argument is π, not -π
+	}
 	c.bound = lowF * (1 - q)
 	if !(c.width > 0) || math.IsInf(c.width, 0) && m > 0 {
 		c.width = min(c.width, math.MaxFloat64)
@@ -166,8 +169,8 @@ func (p *plane) vertexCell(x complex128, order int, errX float64) *cell {
 		return nil
 	}
 	c.centre, c.gain, c.gainLow, c.slack = x, κ.hi, κ.lo, slack
-	c.radius *= 0.998 // the true centre is elsewhere by errX
-	c.width *= 0.97   // and its gain by slack
+	c.shift()
+	c.width *= 0.97 // the true gain is elsewhere by slack
 	return c
 }
 
@@ -249,8 +252,15 @@ func (p *plane) multipleCell(x complex128, κ float64, m int, errX float64) *cel
 		return nil
 	}
 	c.centre, c.gain = x, κ
-	c.radius *= 0.998
+	c.shift()
 	return c
+}
+
+// shift makes a cell that is proved about the true centre one about a point within a thousandth
+// of its radius: between 0.997 and 0.999 of it there must be no root.
+func (c *cell) shift() {
+	c.radius *= 0.998
+	c.width *= math.Pow(0.996, float64(c.order))
 }
 
 // escapeCell returns the cell of the roots that tend to infinity as κ → ±∞.
@@ -301,12 +311,15 @@ func taylorReal(c []float64, x float64) {
 	}
 }
 
+// ahead tells whether the gain of the cell is above κ.
+func (c *cell) ahead(κ float64) bool { return (c.gain-κ)+c.gainLow > 0 }
+
 // offset returns the gain in the coordinate of the cell.
 func (c *cell) offset(κ float64) float64 {
 	if c.reciprocal {
 		return 1 / κ
 	}
-	return κ - c.gain - c.gainLow
+	return (κ - c.gain) - c.gainLow
 }
 
 // angle returns the direction of sector l for the sign of the offset, in the coordinate h.
@@ -346,8 +359,11 @@ func (c *cell) realSector(l int, offset float64) bool {
 	if !c.real {
 		return false
 	}
-	half := 2 * l // direction in units of π/m
-	if (real(c.lead) < 0) != (offset < 0) {
+	half := 2 * l // the direction in units of π/m, as angle counts it
+	if real(c.lead) < 0 {
+		half++
+	}
+	if offset < 0 {
 		half++
 	}
 	return half%c.order == 0

@@ -217,7 +217,8 @@ func (t *tracker) leave(group []*cell, members, sectors []int, rest []row, centr
 	next := make([]row, 0, len(t.rows)+2)
 	next = append(next, rest...)
 	for g, v := range group {
-		if !(exit > v.gain+v.slack) {
+		starts := v.atInfinity || !slices.Contains(members, g)
+		if exit <= v.gain && !(starts && t.from == t.end) {
 			continue // the walk ends at the vertex
 		}
 		heirs := t.turn(v, g, members, sectors)
@@ -226,6 +227,9 @@ func (t *tracker) leave(group []*cell, members, sectors []int, rest []row, centr
 				continue // the mirror image of another
 			}
 			r := row{chain: t.newChain(v.realSector(l, +1), heirs[l][0], heirs[l][1], v.gain, tip{v, l})}
+			if exit <= v.gain {
+				continue // a single gain: the branches are this point
+			}
 			h, ok := v.solve(l, v.offset(exit))
 			if !ok {
 				return t.fail("a branch that leaves a break point cannot be computed")
@@ -237,6 +241,10 @@ func (t *tracker) leave(group []*cell, members, sectors []int, rest []row, centr
 			c.upto = exit
 			next = append(next, r)
 		}
+	}
+	if exit <= centre {
+		t.κ, t.rows = exit, t.rows[:0]
+		return nil
 	}
 	for len(t.vertices) > 0 {
 		passed := false
@@ -307,6 +315,7 @@ func (t *tracker) arrive(group []*cell, next []row, rest int, centre, exit float
 		t.κ = exit
 		return t.fail("the branches that leave a break point cannot be told apart")
 	}
+	t.sharpen(next)
 	t.commit(exit, reach, next)
 	return nil
 }

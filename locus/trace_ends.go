@@ -61,6 +61,7 @@ func (t *tracker) beginSimple(roots []poly.Root) bool {
 	if reach == 0 {
 		return false
 	}
+	t.sharpen(rows)
 	t.name(rows)
 	t.commit(t.from, reach, rows)
 	return true
@@ -189,7 +190,7 @@ func (t *tracker) findEnds() (float64, error) {
 		}
 	}
 	// Off the border, and where the members are well within their discs.
-	return 2 / width, nil
+	return max(2/width, 1), nil
 }
 
 // tips matches the rows with the end cells, one for each.

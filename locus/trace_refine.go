@@ -24,7 +24,8 @@ func (c *chain) at(p *plane, κ float64) (complex128, bool) {
 	if !ok {
 		return 0, false
 	}
-	return p.polish(x, κ), true
+	k := &c.knots[i]
+	return p.polish(x, κ, k.radius-math.Hypot(real(x)-k.x, imag(x)-k.y)), true
 }
 
 // near computes the root at a gain that knot i covers, by Newton's method, and makes sure
@@ -112,12 +113,16 @@ func (e tip) polished(p *plane, κ float64) (complex128, bool) {
 	if !ok || κ == e.cell.gain || math.IsInf(κ, 0) {
 		return x, ok
 	}
-	return p.polish(x, κ), true
+	limit := 0.01 * cmplx.Abs(x-e.cell.centre)
+	if e.cell.atInfinity {
+		limit = 0.01 * cmplx.Abs(x)
+	}
+	return p.polish(x, κ, limit), true
 }
 
 // polish takes the rounding errors of float64 out of a root: Newton's method with F in twice
-// the precision. It keeps a real root real.
-func (p *plane) polish(x complex128, κ float64) complex128 {
+// the precision. It keeps a real root real and moves by less than limit.
+func (p *plane) polish(x complex128, κ, limit float64) complex128 {
 	for range 3 {
 		a := precise(p.a, p.tailA, real(x), imag(x))
 		b := precise(p.b, p.tailB, real(x), imag(x))
@@ -128,7 +133,7 @@ func (p *plane) polish(x complex128, κ float64) complex128 {
 			y = y*x + complex(p.a[i]+float64(κ*p.b[i]), 0)
 		}
 		step := f / d
-		if cmplx.IsNaN(step) || cmplx.IsInf(step) || cmplx.Abs(step) > 1e-4*cmplx.Abs(x) && cmplx.Abs(x) > 0 {
+		if !(cmplx.Abs(step) < limit) {
 			return x
 		}
 		if imag(x) == 0 {

@@ -147,6 +147,9 @@ func (t *tracker) walk() error {
 		}
 		before := t.κ
 		to := min(t.κ+t.reach, limit)
+		if to-t.κ > t.reach { // the sum was rounded up
+			to = math.Nextafter(to, math.Inf(-1))
+		}
 		if !t.stepTowards(to) {
 			if !t.ask() {
 				return t.fail("the branches come closer than the arithmetic can part")
@@ -204,9 +207,25 @@ func (t *tracker) step(to float64) bool {
 			return false
 		}
 	}
+	t.sharpen(next)
 	t.extend(to)
 	t.commit(to, reach, next)
 	return true
+}
+
+// sharpen improves the places of proven rows whose last correction was not small beside the
+// separation that they turned out to have: its error is about the square over that.
+func (t *tracker) sharpen(rows []row) {
+	for i := range rows {
+		r := &rows[i]
+		if math.Abs(r.zx-r.x)+math.Abs(r.zy-r.y) <= 1e-6*r.near {
+			continue
+		}
+		better := row{x: r.zx, y: r.zy}
+		if t.correct(&better, r.near) && math.Hypot(better.zx-r.x, better.zy-r.y) < r.radius {
+			r.zx, r.zy = better.zx, better.zy
+		}
+	}
 }
 
 // extend lets the last knots hold up to a gain.
@@ -263,6 +282,9 @@ func hermiteRest(z, v, p, q, d, h float64) float64 {
 
 // correct improves a row by Newton's method until the rest is small beside the separation.
 func (t *tracker) correct(r *row, near float64) bool {
+	if math.IsInf(near, 1) { // it is the only one
+		near = math.Hypot(r.x, r.y) + minNormal
+	}
 	precise := false
 	for range 10 {
 		t.pencil.at(r.x, r.y, &r.v)
@@ -296,7 +318,7 @@ func (t *tracker) correct(r *row, near float64) bool {
 
 // nextVertex returns the vertex ahead with the smallest gain, nil if none is known.
 func (t *tracker) nextVertex() *cell {
-	for len(t.vertices) > 0 && t.vertices[0].gain <= t.κ {
+	for len(t.vertices) > 0 && !t.vertices[0].ahead(t.κ) {
 		t.vertices = t.vertices[1:]
 	}
 	if len(t.vertices) == 0 {
@@ -386,7 +408,7 @@ func (t *tracker) lookAt(x0, size float64) {
 		}
 		if math.Abs(step) <= 4*unitRoundoff*math.Abs(x) || math.Abs(step) <= 1e-9*size {
 			κ := -a / b
-			if !(κ > t.κ) || κ > t.κ+8*t.reach || κ > t.end*(1+1e-12)+minNormal && κ > t.end {
+			if !(κ >= t.κ*(1-1e-12*math.Copysign(1, t.κ))) || κ > t.κ+8*t.reach || κ > t.end {
 				return
 			}
 			for _, v := range t.vertices {
@@ -394,7 +416,7 @@ func (t *tracker) lookAt(x0, size float64) {
 					return
 				}
 			}
-			if c := p.vertexCell(complex(x, 0), 2, -1); c != nil && c.gain > t.κ {
+			if c := p.vertexCell(complex(x, 0), 2, -1); c != nil && c.ahead(t.κ) {
 				t.addVertex(c)
 			}
 			return
@@ -414,7 +436,7 @@ func (t *tracker) ask() bool {
 	}
 	for _, point := range points {
 		κ := t.plane.toK(point.Gain)
-		if imag(point.S) < 0 || κ <= t.κ || κ > t.end*(1+8*unitRoundoff)+8*unitRoundoff*math.Abs(t.end) {
+		if imag(point.S) < 0 || κ < t.κ || κ > t.end {
 			continue
 		}
 		x := t.plane.toX(point.S)
@@ -422,7 +444,7 @@ func (t *tracker) ask() bool {
 		if imag(x) == 0 && point.Order == 2 {
 			errX = -1
 		}
-		if c := t.plane.vertexCell(x, point.Order, errX); c != nil {
+		if c := t.plane.vertexCell(x, point.Order, errX); c != nil && c.ahead(t.κ) {
 			t.addVertex(c)
 		}
 	}
