@@ -183,7 +183,13 @@ func (c *cell) place(r *row, κ float64) (int, bool) {
 		// |1/x - 1/z| ≤ |x - z|/(|x|·|z|)
 		settled *= size * size * 1.1
 	}
-	if !(size+settled < c.radius && settled*float64(c.order) < 0.1*size) {
+	if !(size+settled < c.radius) {
+		return 0, false
+	}
+	if c.order == 1 {
+		return 0, true // it is the only root there
+	}
+	if !(settled*float64(c.order) < 0.1*size) {
 		return 0, false
 	}
 	return c.sector(h, offset)
