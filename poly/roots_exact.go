@@ -33,60 +33,53 @@ func (s *Solver) exactly(p Poly, zeros int, call string) ([]Root, error) {
 
 // simple finds the roots of a square-free polynomial that is not zero at 0.
 func (s *Solver) simple(f exact.Poly, call string) ([]located, error) {
-	mirrored := symmetric(f)
-	found, ok, err := s.attempt(f, mirrored, call)
-	if ok || err != nil {
-		return found, err
+	if symmetric(f) {
+		return s.parted(f, true, call)
 	}
-	// The real part of some root may be zero. If so, it is a root of the greatest common
-	// divisor of f(s) and f(-s), which has all its roots in pairs s, -s.
-	g := exact.GCD(f, mirror(f))
-	if g.Degree() == 0 {
-		return locate(call, f, s.kernel.Points(), false)
-	}
-	rest, _ := f.Divide(g)
-	found, ok, err = s.attempt(g, true, call)
-	if err != nil {
-		return nil, err
-	}
-	if !ok {
-		if found, err = locate(call, g, s.kernel.Points(), true); err != nil {
-			return nil, err
+	discs, failure := s.approachFactor(f, false)
+	if failure == rootkernel.OnAxis || failure == rootkernel.Meeting {
+		// The real part of some root may be zero. If so, it is a root of the greatest common
+		// divisor of f(s) and f(-s), which has all its roots in pairs s, -s.
+		if g := exact.GCD(f, mirror(f)); g.Degree() > 0 {
+			rest, _ := f.Divide(g)
+			found, err := s.parted(g, true, call)
+			if err != nil || rest.Degree() == 0 {
+				return found, err
+			}
+			others, err := s.parted(rest, false, call)
+			return append(found, others...), err
 		}
 	}
-	if rest.Degree() == 0 {
-		return found, nil
-	}
-	others, ok, err := s.attempt(rest, false, call)
-	if !ok && err == nil {
-		others, err = locate(call, rest, s.kernel.Points(), false)
-	}
-	return append(found, others...), err
+	return s.finish(f, discs, failure, false, call)
 }
 
-// attempt lets the fast stages and Newton's iteration in math/big try. It is not ok if the
-// real part of a root remains in doubt.
-func (s *Solver) attempt(f exact.Poly, mirrored bool, call string) (found []located, ok bool, err error) {
+// parted finds the roots of a square-free polynomial that has either all roots in pairs s, -s
+// (mirrored) or none.
+func (s *Solver) parted(f exact.Poly, mirrored bool, call string) ([]located, error) {
+	discs, failure := s.approachFactor(f, mirrored)
+	return s.finish(f, discs, failure, mirrored, call)
+}
+
+// approachFactor runs the fast stages on f.
+func (s *Solver) approachFactor(f exact.Poly, mirrored bool) ([]rootkernel.Disc, rootkernel.Failure) {
 	k := &s.kernel
-	n := f.Degree()
 	c, lo, exponents, plain := split(f)
-	var failure rootkernel.Failure
-	discs := make([]rootkernel.Disc, 0, n)
+	discs := make([]rootkernel.Disc, 0, f.Degree())
 	if plain {
 		k.Set(c, lo)
 		k.Mirrored = mirrored
-		discs, failure = approach(k, discs, false)
-	} else {
-		k.SetScaled(c, lo, exponents)
-		k.Mirrored = mirrored
-		k.Start(0)
-		discs, failure = approachCarefully(k, discs, false)
+		return approach(k, discs, false)
 	}
-	switch failure {
-	case rootkernel.OnAxis:
-		return nil, false, nil
-	case rootkernel.Imprecise:
-		if more, ok := polish(f, k.Left, mirrored); ok {
+	k.SetScaled(c, lo, exponents)
+	k.Mirrored = mirrored
+	k.Start(0)
+	return approachCarefully(k, discs, false)
+}
+
+// finish settles with math/big what the fast stages left.
+func (s *Solver) finish(f exact.Poly, discs []rootkernel.Disc, failure rootkernel.Failure, mirrored bool, call string) ([]located, error) {
+	if failure == rootkernel.OnAxis || failure == rootkernel.Imprecise {
+		if more, ok := polish(f, s.kernel.Left, mirrored); ok {
 			discs = append(discs, more...)
 			rootkernel.Sort(discs)
 			if rootkernel.Disjoint(discs) {
@@ -95,14 +88,13 @@ func (s *Solver) attempt(f exact.Poly, mirrored bool, call string) (found []loca
 		}
 	}
 	if failure != rootkernel.None {
-		found, err = locate(call, f, k.Points(), mirrored)
-		return found, true, err
+		return locate(call, f, s.kernel.Points(), mirrored)
 	}
-	found = make([]located, 0, len(discs))
+	found := make([]located, 0, len(discs))
 	for _, d := range discs {
 		found = append(found, located{d, 1, 1})
 	}
-	return found, true, nil
+	return found, nil
 }
 
 // mirror returns f(-s).

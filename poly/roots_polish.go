@@ -14,9 +14,7 @@ import (
 func polish(f exact.Poly, points []rootkernel.Point, mirrored bool) ([]rootkernel.Disc, bool) {
 	a, _ := f.Integers()
 	discs := make([]rootkernel.Disc, 0, len(points))
-	// Sixteen bits of each word of precision are lost at worst to rounding here; the others
-	// follow from the condition of the root.
-	var evaluators [3]*evaluator
+	var evaluators [4]*evaluator
 	for _, point := range points {
 		arrived := false
 		z := bigComplex{new(big.Float).SetFloat64(point.X), new(big.Float).SetFloat64(point.Y)}

@@ -100,6 +100,9 @@ func checkShape(t testing.TB, p Poly, roots []Root) {
 			}
 		}
 		for j, q := range roots[:i] {
+			if gap := math.Abs(real(r.Value)-real(q.Value)) + math.Abs(imag(r.Value)-imag(q.Value)); gap > 4*(r.Radius+q.Radius) {
+				continue
+			}
 			x := new(big.Float).SetPrec(2400).SetFloat64(real(r.Value))
 			y := new(big.Float).SetPrec(2400).SetFloat64(imag(r.Value))
 			x.Sub(x, new(big.Float).SetFloat64(real(q.Value)))

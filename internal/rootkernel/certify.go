@@ -130,14 +130,13 @@ func Disjoint(discs []Disc) bool {
 const floor = 0x1p-960
 
 // discRadius returns the radius R of a disc about z + h that holds exactly one root, from
-// r = |z|, |p′(z)| by compensated evaluation, m, h = -p/p′ rounded (which adds 10u·|p|), a
-// bound on the error of p(z) and one on that of p′(z) relative to (n+2)²·m/r; it is infinite
-// where nothing can be said.
+// r = |z|, |p′(z)| as evaluated, m, |h|, a bound on |p(z) + h·p′(z)| for that p′(z) and one on
+// its error relative to (n+2)²·m/r; it is infinite or NaN where nothing can be said.
 //
 // On the circle of radius R about z + h, p differs from its tangent p + p′·(s - z - h) by at
 // most n²·m/r²·R²/2·1.01, and the tangent's modulus is at least |p′|·R - |p|. Where that is
 // more, both have the same number of zeros inside (Rouché), and the tangent has one.
-func (k *Kernel) discRadius(r, d, m, h, valueError, slopeError float64) float64 {
+func (k *Kernel) discRadius(r, d, m, h, tangent, slopeError float64) float64 {
 	n := float64(k.n)
 	tau := h / r
 	if !(tau < 0x1p-20/n) {
@@ -148,7 +147,7 @@ func (k *Kernel) discRadius(r, d, m, h, valueError, slopeError float64) float64 
 	if !(slope > d/2) {
 		return math.Inf(1)
 	}
-	residue := valueError*1.01 + bend*tau*(tau/2+slopeError) + 10*u*h*d
+	residue := tangent*1.01 + bend*tau*(tau/2+slopeError) + 4*u*h*d
 	radius := residue / slope * 1.02
 	if !(bend/r*(radius/r) < 0.019*slope) {
 		return math.Inf(1)
@@ -198,11 +197,11 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 		if !(d2 > 0x1p-900 && d2 < 0x1p900) {
 			return Disc{}, Imprecise
 		}
-		// In this order, and with the sum for the modulus, no product underflows that matters:
-		// h = 0 would claim a root.
 		t := 1 / d2
-		ur, ui := dr*t, di*t
+		ur, ui := dr*t, di*t // in this order no product underflows that matters
 		hx, hy := -(pr*ur + pi*ui), -(pi*ur - pr*ui)
+		// |p + h·p′| as it is, whatever may have been lost on the way to h.
+		miss += math.Abs(pr+(hx*dr-hy*di)) + math.Abs(pi+(hx*di+hy*dr)) + 8*u*(math.Abs(pr)+math.Abs(pi))
 		rho := k.discRadius(r, math.Sqrt(d2), m, math.Abs(hx)+math.Abs(hy), miss, k.slopeError())
 		X, Y := x+hx, y+hy
 		if rho <= 0x1p-54*r && rho <= 0x1p-48*math.Abs(Y) && Y > 0 {
@@ -249,6 +248,7 @@ func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 			miss = k.valueError(m)
 		}
 		h := -p / d
+		miss += math.Abs(p+h*d) + 8*u*math.Abs(p)
 		rho := k.discRadius(r, math.Abs(d), m, math.Abs(h), miss, k.slopeError())
 		X := x + h
 		if rho <= 0x1p-54*r {
