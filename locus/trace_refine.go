@@ -47,8 +47,23 @@ func (c *chain) near(q *pencil, i int, κ float64) (complex128, bool) {
 	if math.Hypot(x-k.x, y-k.y) >= k.radius {
 		x, y = k.x, k.y
 	}
-	for _, precise := range []bool{false, true} {
-		if x, y, ok := c.converge(q, k, x, y, precise); ok {
+	for _, try := range [...]struct {
+		x, y    float64
+		precise bool
+	}{{x, y, false}, {k.zx, k.zy, false}, {x, y, true}, {k.zx, k.zy, true}} {
+		if x, y, ok := c.converge(q, k, try.x, try.y, try.precise); ok {
+			return complex(x, y), true
+		}
+	}
+	// Little by little from the knot.
+	defer q.set(κ)
+	for steps := 8; steps <= 512; steps *= 8 {
+		x, y, ok := k.zx, k.zy, true
+		for i := 1; i <= steps && ok; i++ {
+			q.set(k.κ + (κ-k.κ)*float64(i)/float64(steps))
+			x, y, ok = c.converge(q, k, x, y, true)
+		}
+		if ok {
 			return complex(x, y), true
 		}
 	}
