@@ -17,6 +17,9 @@ func polish(f exact.Poly, points []rootkernel.Point, mirrored bool) ([]rootkerne
 	var evaluators [4]*evaluator
 	for _, point := range points {
 		arrived := false
+		if math.IsNaN(point.X-point.X) || math.IsNaN(point.Y-point.Y) {
+			return nil, false
+		}
 		z := bigComplex{new(big.Float).SetFloat64(point.X), new(big.Float).SetFloat64(point.Y)}
 		for level := range evaluators {
 			bits := uint(192) << (level)
@@ -24,6 +27,9 @@ func polish(f exact.Poly, points []rootkernel.Point, mirrored bool) ([]rootkerne
 				evaluators[level] = newEvaluator(a, bits)
 			}
 			if d, ok := evaluators[level].newton(z, point.Y == 0, mirrored); ok {
+				if math.IsInf(d.X, 0) || math.IsInf(d.Y, 0) || d.X == 0 && d.Y == 0 {
+					return nil, false // no float64: the next stage says so
+				}
 				discs = append(discs, d)
 				arrived = true
 				break

@@ -43,6 +43,9 @@ func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
 	failure := None
 	for _, q := range k.pairs() {
 		d, why := k.certifyPair(q.x, q.y)
+		if why == None && !d.normal() {
+			why = Imprecise
+		}
 		if why == None {
 			dst = append(dst, d)
 		} else {
@@ -52,6 +55,9 @@ func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
 	}
 	for _, q := range k.reals() {
 		d, why := k.certifyReal(q.x)
+		if why == None && !d.normal() {
+			why = Imprecise
+		}
 		if why == None {
 			dst = append(dst, d)
 		} else {
@@ -64,6 +70,13 @@ func (k *Kernel) Certify(dst []Disc, origin bool) ([]Disc, Failure) {
 		failure = Meeting
 	}
 	return dst, failure
+}
+
+// normal reports whether nothing of the disc has left the range of normal numbers on its way out
+// of the frame it was proven in.
+func (d Disc) normal() bool {
+	return d.Radius <= math.MaxFloat64 &&
+		(d.X == 0 || math.Abs(d.X) > 0x1p-900) && (d.Y == 0 || d.Y > 0x1p-900)
 }
 
 // Sort orders discs by X, then Y.
