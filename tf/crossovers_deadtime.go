@@ -18,6 +18,7 @@ const (
 // A delayedPhase lists the phase crossovers of a function with dead time.
 type delayedPhase struct {
 	crossovers []Crossover
+	beyond     []Crossover // those found beyond the list
 	completeTo float64
 	smallest   float64 // the smallest margin above 1 of all, listed or not; +Inf if none
 	largest    float64 // the largest below 1, likewise; 0 if none
@@ -120,6 +121,8 @@ func (a *axisForm) delayedPhaseCrossovers(upTo float64) (delayedPhase, error) {
 	for _, c := range all {
 		if c.Frequency <= out.completeTo {
 			out.crossovers = append(out.crossovers, c)
+		} else {
+			out.beyond = append(out.beyond, c)
 		}
 		if c.Margin > 1 {
 			out.smallest = min(out.smallest, c.Margin)

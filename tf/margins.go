@@ -1,6 +1,8 @@
 package tf
 
 import (
+	"cmp"
+	"errors"
 	"math"
 
 	"github.com/polewright/polewright/poly"
@@ -44,55 +46,62 @@ type Margins struct {
 	Stable poly.Verdict
 }
 
-// margins computes everything that Margins has.
-func (a *axisForm) margins(upTo float64) (Margins, error) {
-	var m Margins
-	var err error
-	if m.GainCrossovers, err = a.gainCrossovers(); err != nil {
+// margins computes everything that Margins has. After a [*DegenerateError] the fields that are
+// defined are filled all the same.
+func (a *axisForm) margins(upTo float64) (m Margins, err error) {
+	var degenerate error
+	failed := func(err error) bool {
+		var d *DegenerateError
+		if errors.As(err, &d) {
+			degenerate = cmp.Or(degenerate, err)
+			return false
+		}
+		return err != nil
+	}
+	if m.GainCrossovers, err = a.gainCrossovers(); failed(err) {
 		return Margins{}, err
 	}
 	m.Stable = a.stable()
 	m.CompleteTo = math.Inf(1)
 	m.GainIncrease, m.GainDecrease = math.Inf(1), 0
-	tail := 0.0
+	var s Peak
 	if a.deadTime == 0 {
-		if m.PhaseCrossovers, err = a.phaseCrossovers(); err != nil {
+		if m.PhaseCrossovers, err = a.phaseCrossovers(); failed(err) {
 			return Margins{}, err
 		}
 		for _, c := range m.PhaseCrossovers {
 			m.account(c.Margin)
 		}
 		m.account(a.marginAtInfinity())
+		s, err = a.peak(sensitivityCurve)
 	} else {
 		d, err := a.delayedPhaseCrossovers(upTo)
-		if err != nil {
+		if failed(err) {
 			return Margins{}, err
 		}
 		m.PhaseCrossovers, m.CompleteTo = d.crossovers, d.completeTo
 		m.account(d.smallest)
 		m.account(d.largest)
-		tail = d.tail
+		s, err = a.delayedPeak(sensitivityCurve, d)
+		if failed(err) {
+			return Margins{}, err
+		}
 	}
-	m.account(a.marginAtZero())
-	var s Peak
-	if a.deadTime == 0 {
-		s, err = a.peak(sensitivityCurve)
-	} else {
-		s, err = a.delayedPeak(sensitivityCurve, tail)
-	}
-	if err != nil {
+	if failed(err) {
 		return Margins{}, err
 	}
+	m.account(a.marginAtZero())
 	m.SensitivityPeak, m.SensitivityPeakAt = s.Magnitude, s.Frequency
 	m.PhaseMargin = smallestPhase(m.GainCrossovers)
 	m.Delay = a.delayMargin(m.GainCrossovers, m.Stable)
-	if m.Stable != poly.Holds {
+	if m.Stable != poly.Holds || degenerate != nil {
 		m.withdraw()
 	}
-	return m, nil
+	return m, degenerate
 }
 
-// withdraw takes back what would claim safety for a loop that is not proven stable.
+// withdraw takes back what would claim safety for a loop that is not proven stable, or whose
+// crossovers are not a list.
 func (m *Margins) withdraw() {
 	m.Delay = 0
 	if math.IsInf(m.GainIncrease, 1) {
@@ -125,7 +134,7 @@ func (a *axisForm) closedLoopPeak(c curve) (Peak, error) {
 	if err != nil {
 		return Peak{}, err
 	}
-	return a.delayedPeak(c, d.tail)
+	return a.delayedPeak(c, d)
 }
 
 // smallestPhase returns the margin of least magnitude, +Inf if there is none.
@@ -155,10 +164,10 @@ func (a *axisForm) delayMargin(list []Crossover, stable poly.Verdict) float64 {
 	return least
 }
 
-// Margins returns the margins of the loop. A loop whose |L| is 1 at every frequency, whose L is
-// -1 at every frequency, or real and negative over a whole range of them, gets a
-// [*DegenerateError]; what [Loop.Open] refuses is refused. A prefilter stands outside the loop, but
-// an unstable one fails Stable.
+// Margins returns the margins of the loop. A loop whose |L| is 1 at every frequency, or whose L
+// is real and negative over a whole range of frequencies, gets a [*DegenerateError] beside
+// the fields that are defined all the same; Delay claims nothing then. What [Loop.Open] refuses is
+// refused. A prefilter stands outside the loop, but an unstable one fails Stable.
 func (l Loop) Margins(opt ...Option) (Margins, error) {
 	const call = "tf.Loop.Margins"
 	o, err := l.openForm(call)
@@ -170,16 +179,11 @@ func (l Loop) Margins(opt ...Option) (Margins, error) {
 		return Margins{}, err
 	}
 	m, err := o.margins(upTo)
-	if err != nil || m.Stable == poly.Fails {
-		return m, err
-	}
-	if v, err := l.prefilterStable(); err != nil {
-		return Margins{}, err
-	} else if v != poly.Holds {
-		m.Stable = v
+	if m.Stable == poly.Holds && !l.prefilterStable() {
+		m.Stable = poly.Fails
 		m.withdraw()
 	}
-	return m, nil
+	return m, err
 }
 
 // openForm makes the open loop ready.
@@ -192,12 +196,11 @@ func (l Loop) openForm(call string) (*axisForm, error) {
 }
 
 // prefilterStable tells whether the poles of the prefilter lie in the region of stability.
-func (l Loop) prefilterStable() (poly.Verdict, error) {
+func (l Loop) prefilterStable() bool {
 	if l.Prefilter.isWire() || l.Prefilter.Denominator().Degree() < 1 {
-		return poly.Holds, nil
+		return true
 	}
-	a := newAxisForm(poly.Poly{}, l.Prefilter.Denominator(), 0, l.Prefilter.Period())
-	return a.stable(), nil
+	return newAxisForm(poly.Poly{}, l.Prefilter.Denominator(), 0, l.Prefilter.Period()).stable() == poly.Holds
 }
 
 // axis returns g ready for questions on frequency.

@@ -1,6 +1,7 @@
 package tf
 
 import (
+	"errors"
 	"math"
 	"testing"
 
@@ -190,5 +191,59 @@ func TestMarginsOfReferences(t *testing.T) {
 				check(t, "gain increase", m.GainIncrease, w)
 			}
 		})
+	}
+}
+
+// Loops at the edges of what margins are: each has a defined answer or a typed error.
+func TestDegenerateLoops(t *testing.T) {
+	tests := []struct {
+		text       string
+		degenerate bool
+		stable     poly.Verdict
+		gain       int
+		peak       float64
+		peakAt     float64
+	}{
+		{"1", true, poly.Holds, 0, 0.5, 0},
+		{"-1", true, poly.Fails, 0, math.Inf(1), 0},
+		{"(1-s)/(1+s)", true, poly.Fails, 0, math.Inf(1), math.Inf(1)},
+		{"exp(-s)", true, poly.Fails, 0, math.Inf(1), math.Inf(1)},
+		{"1/z^3, period 1", true, poly.Fails, 0, math.Inf(1), math.Pi / 3},
+		{"-0.5", true, poly.Holds, 0, 2, 0},
+		{"1/s^2", true, poly.Fails, 1, math.Inf(1), 1},
+		{"0.5", false, poly.Holds, 0, 2.0 / 3, 0},
+		{"0", false, poly.Holds, 0, 1, 0},
+		{"0/(s-1)", false, poly.Fails, 0, 1, 0},
+		{"(s-1)/((s-1)(s+2))", false, poly.Fails, 0, 1, math.Inf(1)},
+		{"(s^2+4)/(s (s^2+4))", false, poly.Fails, 1, 1, math.Inf(1)},
+		{"exp(-s)(s^2+1)/((s^2+1)(s+2))", false, poly.Fails, 0, math.NaN(), math.NaN()},
+		{"(z+1)/((z+1)(z-0.5)), period 1", false, poly.Fails, 1, 3, math.Pi},
+		{"-s/(s+1)", false, poly.Fails, 0, math.Inf(1), math.Inf(1)},
+		{"8/(s+1)^3", false, poly.Fails, 1, math.Inf(1), math.Sqrt(3)},
+		{"0.5 exp(-s)", false, poly.Holds, 0, 2, math.Pi},
+		{"2 exp(-s)", false, poly.Fails, 0, 1, math.Pi},
+		{"s", false, poly.Holds, 1, 1, 0},
+	}
+	for _, test := range tests {
+		m, err := (Loop{Plant: MustParse(test.text)}).Margins()
+		var d *DegenerateError
+		if errors.As(err, &d) != test.degenerate || err != nil && !test.degenerate {
+			t.Errorf("%s: error %v", test.text, err)
+		}
+		if m.Stable != test.stable {
+			t.Errorf("%s: stable %v, want %v", test.text, m.Stable, test.stable)
+		}
+		if len(m.GainCrossovers) != test.gain {
+			t.Errorf("%s: gain crossovers %v, want %d", test.text, m.GainCrossovers, test.gain)
+		}
+		near := func(got, want float64) bool {
+			return math.IsNaN(want) || got == want || math.Abs(got-want) < 1e-12*math.Abs(want)
+		}
+		if !near(m.SensitivityPeak, test.peak) || !near(m.SensitivityPeakAt, test.peakAt) {
+			t.Errorf("%s: sensitivity peak %v at %v, want %v at %v", test.text, m.SensitivityPeak, m.SensitivityPeakAt, test.peak, test.peakAt)
+		}
+		if m.Stable != poly.Holds && m.Delay != 0 {
+			t.Errorf("%s: delay margin %v of a loop that is not stable", test.text, m.Delay)
+		}
 	}
 }

@@ -154,7 +154,7 @@ func (e *exactAxis) peak(c curve) (Peak, error) {
 		top, bottom = e.nn, ff
 	}
 	if bottom.IsZero() {
-		return Peak{}, &DegenerateError{Call: "tf: peak", What: "the open loop is -1 at every frequency"}
+		return Peak{Magnitude: math.Inf(1)}, &DegenerateError{Call: "tf: peak", What: "the open loop is -1 at every frequency"}
 	}
 	best := Peak{Magnitude: math.Inf(-1)}
 	at := func(x *big.Float, frequency float64) {

@@ -122,7 +122,7 @@ func (f *delayedSum) enclose(c cell) (value, slope, lower float64) {
 		q1, q2 := b1/bLow, b2/bLow
 		l1 := n1/bLow + l0*q1
 		l2 := n2/bLow + 2*n1/bLow*q1 + l0*q2 + 2*l0*q1*q1
-		bend := 2 * (l1*l1 + (1+l0)*l2)
+		bend := 2 * (l1*l1 + min(1+l0, math.Sqrt(value)+l1*c.half)*l2)
 		if s := value - math.Abs(slope)*c.half - bend*c.half*c.half/2; s > lower {
 			lower = s
 		}
@@ -193,10 +193,10 @@ func (f *delayedSum) polish(v float64) float64 {
 	return x1
 }
 
-// delayedPeak returns the supremum of |D/F| or |N/F| with dead time. Beyond tail the rational
-// part is monotone in magnitude, and a crossing of the negative real axis stands at tail: no
-// later value is larger than the one there or the one approached at infinity.
-func (a *axisForm) delayedPeak(c curve, tail float64) (Peak, error) {
+// delayedPeak returns the supremum of |D/F| or |N/F| with dead time. Beyond phase.tail the rational
+// part is monotone in magnitude, and a crossing of the negative real axis stands there: no
+// later value is larger than that at the crossing or the one approached at infinity.
+func (a *axisForm) delayedPeak(c curve, phase delayedPhase) (Peak, error) {
 	top, bottom, tau := a.n, a.d, a.deadTime*a.unit
 	n, d := a.numerator, a.denominator
 	if c == complementaryCurve {
@@ -227,12 +227,25 @@ func (a *axisForm) delayedPeak(c curve, tail float64) (Peak, error) {
 	if math.IsInf(best.Magnitude, 1) {
 		return best, nil
 	}
+	// At a phase crossover 1 + L is real. One that comes up to a value approached at infinity
+	// attains it.
+	for _, list := range [...][]Crossover{phase.crossovers, phase.beyond} {
+		for _, x := range list {
+			y := 1 / math.Abs(1-1/x.Margin)
+			if c == complementaryCurve {
+				y /= x.Margin
+			}
+			if y > best.Magnitude || y >= best.Magnitude*(1-8*unitRoundoff) && math.IsInf(best.Frequency, 1) {
+				best = Peak{y, x.Frequency}
+			}
+		}
+	}
 	f := newDelayedSum(top, bottom, a.degree, tau)
 	start := math.Inf(1)
 	if best.Magnitude > 0 {
 		start = 1 / (best.Magnitude * best.Magnitude)
 	}
-	least, at, ok := f.leastSquare(tail*(1+1e-12), start, -1)
+	least, at, ok := f.leastSquare(phase.tail*(1+1e-12), start, -1)
 	if !ok {
 		return Peak{}, &UnsupportedError{Call: "tf: peak", What: "a loop with dead time whose peak is not enclosed within the bounded work"}
 	}
