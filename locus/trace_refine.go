@@ -9,10 +9,10 @@ import (
 // at returns where the root of a chain is at a gain of the plane.
 func (c *chain) at(p *plane, κ float64) (complex128, bool) {
 	if v := c.tail.cell; v != nil && (len(c.knots) == 0 || κ > c.knots[len(c.knots)-1].upto) {
-		return c.tail.polished(p, κ)
+		return c.tail.polished(p, κ, -1)
 	}
 	if v := c.head.cell; v != nil && (len(c.knots) == 0 || κ < c.knots[0].from) {
-		return c.head.polished(p, κ)
+		return c.head.polished(p, κ, +1)
 	}
 	i := sort.Search(len(c.knots), func(i int) bool { return c.knots[i].from > κ }) - 1
 	if i < 0 {
@@ -115,17 +115,21 @@ func hermite(z, v, p, q, t, h float64) float64 {
 // coordinates of the cell.
 func (e tip) at(κ float64) (complex128, bool) {
 	c := e.cell
-	if κ == c.gain || c.reciprocal && math.IsInf(κ, 0) {
+	if c.reciprocal && math.IsInf(κ, 0) || !c.atInfinity && κ == c.gain {
 		return c.centre, !c.atInfinity
 	}
 	h, ok := c.solve(e.sector, c.offset(κ))
 	return c.point(h), ok
 }
 
-// polished is at with the errors of the cell's coefficients taken out.
-func (e tip) polished(p *plane, κ float64) (complex128, bool) {
+// polished is at with the errors of the cell's coefficients taken out. At infinity the chain is
+// only on its side of the exact gain, which may lie beside the float64.
+func (e tip) polished(p *plane, κ, side float64) (complex128, bool) {
+	if c := e.cell; c.atInfinity && !c.reciprocal && !(c.offset(κ)*side > 0) {
+		return 0, false
+	}
 	x, ok := e.at(κ)
-	if !ok || κ == e.cell.gain || math.IsInf(κ, 0) {
+	if !ok || !e.cell.atInfinity && κ == e.cell.gain || math.IsInf(κ, 0) {
 		return x, ok
 	}
 	limit := 0.01 * cmplx.Abs(x-e.cell.centre)
