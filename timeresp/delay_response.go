@@ -313,3 +313,5 @@ func (s *stepwise) rate() float64 { return s.w }
 func (s *stepwise) ultimate() float64 { return s.limit }
 
 func (s *stepwise) horizon() float64 { return 0 }
+
+func (s *stepwise) calm(level float64) float64 { return calmBySearch(s, level) }

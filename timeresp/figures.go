@@ -43,6 +43,8 @@ type curve interface {
 	cellStart(tau float64) float64
 	// horizon returns the τ from which on the spread of nodes bounds what is still to come.
 	horizon() float64
+	// calm returns a τ not before the horizon from which on the spread is at most the level.
+	calm(level float64) float64
 }
 
 // A signal is a curve that starts at rest.
@@ -450,25 +452,8 @@ func (s *scan) run() {
 
 // settle returns the last entry into the band.
 func (s *scan) settle() float64 {
-	// The horizon: from there on the modes together cannot leave the band.
-	horizon := s.curve.horizon()
-	n := s.node(horizon)
-	if n.spread > s.band {
-		lo, hi := n.t, max(n.t, 1)
-		for s.node(hi).spread > s.band {
-			lo = hi
-			hi *= 2
-		}
-		for range 12 {
-			m := lo + (hi-lo)/2
-			if s.node(m).spread <= s.band {
-				hi = m
-			} else {
-				lo = m
-			}
-		}
-		n = s.node(hi)
-	}
+	// From the horizon on the modes together cannot leave the band.
+	n := node{t: s.curve.calm(s.band / math.Abs(s.inverse))}
 	outside := func(n *node) bool { return !(math.Abs(n.y-1) <= s.band) }
 	for n.t > 0 {
 		var a, b node
@@ -521,3 +506,27 @@ func (s *scan) backward(a, b *node, depth int) (float64, bool) {
 type NoFinalValueError struct{ Call string }
 
 func (e *NoFinalValueError) Error() string { return e.Call + ": the response has no final value" }
+
+// calmBySearch finds a τ where the spread of the nodes, which does not grow, is at most the
+// level.
+func calmBySearch(c curve, level float64) float64 {
+	var n node
+	lo := c.horizon()
+	if c.node(lo, false, &n); n.spread <= level {
+		return lo
+	}
+	hi := max(lo, 1)
+	for c.node(hi, false, &n); !(n.spread <= level) && hi < math.MaxFloat64/4; c.node(hi, false, &n) {
+		lo = hi
+		hi *= 2
+	}
+	for range 12 {
+		m := lo + (hi-lo)/2
+		if c.node(m, false, &n); n.spread <= level {
+			hi = m
+		} else {
+			lo = m
+		}
+	}
+	return hi
+}

@@ -31,6 +31,7 @@ type pole struct {
 type mode struct {
 	re, im, reLo, imLo float64
 	ar, ai             float64 // a[0]
+	size, fourth       float64 // |a[0]|, |a[0]·p⁴|
 	first, count       int32   // of the a; count is 1 for a simple pole
 }
 
@@ -59,10 +60,11 @@ const (
 	maxPieces  = 40
 
 	// modalRounding bounds the rounding of one mode's value relative to its envelope:
-	// exponential and sine are good to a unit in the last place or better, the argument is
-	// compensated, then three products and a sum.
-	modalRounding = 8 * 0x1p-53
-	tolerance     = 5e-12 // of max |y| on [0, t], half of what is promised
+	// exponential and sine are good to a unit in the last place or better and the argument
+	// is compensated; up to six products lie behind a power in a block of samples, then
+	// there are three products and a sum.
+	modalRounding = 12 * 0x1p-53
+	tolerance     = 8e-12 // of max |y| on [0, t], below the 1e-11 that is promised
 )
 
 // newKernel inverts a strictly proper transform.
@@ -89,7 +91,13 @@ func (k *kernel) expand(f *transform) {
 		}
 		a = a[:p.multiplicity]
 		shiftedSeries(a, f.num, p.at)
+		if p.multiplicity == 1 {
+			a[0] = a[0].div(f.separation(i))
+		}
 		for j := range f.poles {
+			if p.multiplicity == 1 {
+				break
+			}
 			q := &f.poles[j]
 			if j != i {
 				divideSeries(a, p.at.sub(q.at), q.multiplicity)
@@ -130,13 +138,62 @@ func (k *kernel) expand(f *transform) {
 				k.amplitudes = append(k.amplitudes, c)
 			}
 		}
+		m.measure()
 		k.modes = append(k.modes, m)
 	}
+}
+
+// measure sets what the bounds need.
+func (m *mode) measure() {
+	square := m.re*m.re + m.im*m.im
+	m.size = math.Hypot(m.ar, m.ai)
+	m.fourth = m.size * square * square
+}
+
+// separation returns the product of the distances of pole i from all others.
+func (f *transform) separation(i int) wideComplex {
+	p := &f.poles[i]
+	product := wideComplex{re: wide{1, 0}}
+	for j := range f.poles {
+		q := &f.poles[j]
+		var d wideComplex
+		real := p.at.im.hi == 0
+		switch {
+		case q.at.im.hi == 0 && j != i:
+			d = wideComplex{p.at.re.sub(q.at.re), p.at.im}
+		case q.at.im.hi == 0:
+			continue
+		case j == i:
+			d = wideComplex{im: p.at.im.mulFloat(2)}
+		case real:
+			re := p.at.re.sub(q.at.re)
+			d.re = re.mul(re).add(q.at.im.mul(q.at.im))
+		default:
+			re := p.at.re.sub(q.at.re)
+			d = wideComplex{re, p.at.im.sub(q.at.im)}.mul(wideComplex{re, p.at.im.add(q.at.im)})
+		}
+		for range q.multiplicity {
+			if d.im.hi == 0 && real {
+				product.re = product.re.mul(d.re)
+			} else {
+				product = product.mul(d)
+			}
+		}
+	}
+	return product
 }
 
 // shiftedSeries sets a to the first coefficients of num about p, by repeated synthetic
 // division.
 func shiftedSeries(a []wideComplex, num []wide, p wideComplex) {
+	if len(a) == 1 && p.im.hi == 0 {
+		var y wide
+		for i := len(num) - 1; i >= 0; i-- {
+			y = y.mul(p.re).add(num[i])
+		}
+		a[0] = wideComplex{re: y}
+		return
+	}
 	if len(a) == 1 {
 		var y wideComplex
 		for i := len(num) - 1; i >= 0; i-- {
@@ -181,18 +238,23 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	if n == 0 {
 		return 0, true
 	}
-	terms := earlyTerms + 2*n
-	buffer := make([]wide, 2*terms)
-	y, next := buffer[:terms], buffer[terms:]
+	shift := earlyTerms + 2 + n/2 // terms of a derivative's series in a step
+	terms := shift + n
+	var small [128]wide
+	buffer := small[:]
+	if 2*terms > len(buffer) {
+		buffer = make([]wide, 2*terms)
+	}
+	y, next := buffer[:terms], buffer[terms:2*terms]
+	var smallEarly [8 * earlyTerms]float64
+	early := smallEarly[:0]
+	defer func() { k.early = append([]float64(nil), early...) }()
 	for i := 0; i < n; i++ { // y⁽ⁱ⁾(0+) by long division
 		var c wide
 		if j := n - 1 - i; j < len(f.num) {
 			c = f.num[j]
 		}
-		for j := 1; j <= i; j++ {
-			c = c.sub(f.den[n-j].mul(y[i-j]))
-		}
-		y[i] = c
+		y[i] = c.sub(dotWide(y[:i], f.den[n-i:n]))
 	}
 	k.leading = 0
 	for k.leading < n && y[k.leading].hi == 0 {
@@ -203,9 +265,13 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 		return 0, true
 	}
 	weights := taylorWeights()
-	sizes := make([]float64, n)
+	var smallSizes [24]float64
+	sizes := smallSizes[:]
+	if n > len(sizes) {
+		sizes = make([]float64, n)
+	}
 	// What is lost of a derivative in a step: the roundings, and the terms left out.
-	lossOfStep := max(0x1p-98, weightTable[terms+1-n].hi)
+	lossOfStep := max(0x1p-98, weightTable[shift].hi)
 	for piece := 0; ; piece++ {
 		start := earlyStep * float64(piece)
 		if k.roundingAt(start) <= tolerance*largest {
@@ -223,26 +289,18 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 			return largest, false
 		}
 		for i := n; i < terms; i++ {
-			var c wide
-			for j := 1; j <= n; j++ {
-				c = c.sub(f.den[n-j].mul(y[i-j]))
-			}
-			y[i] = c
+			y[i] = dotWide(y[i-n:i], f.den[:n]).neg()
 		}
 		skip := 0
 		if piece == 0 {
 			skip = k.leading
 		}
 		for i := 0; i < earlyTerms; i++ {
-			k.early = append(k.early, y[i+skip].hi*weights[i+skip].hi)
+			early = append(early, y[i+skip].hi*weights[i+skip].hi)
 		}
 		k.earlyEnd = start + earlyStep
 		for i := 0; i < n; i++ { // step on
-			var sum wide
-			for j := terms - 1 - i; j >= 0; j-- {
-				sum = sum.add(y[i+j].mul(weights[j]))
-			}
-			next[i] = sum
+			next[i] = dotWide(y[i:i+shift], weights[:shift])
 		}
 		y, next = next, y
 		largest = math.Max(largest, math.Abs(y[0].hi))
@@ -317,36 +375,17 @@ func (k *modal) modalAt(tau, lo float64) float64 {
 	}
 	for i := range k.modes {
 		m := &k.modes[i]
-		re := m.re * tau
-		reLo := math.FMA(m.re, tau, -re) + m.reLo*tau + m.re*lo
-		e := math.Exp(re)
-		e += e * reLo
-		if m.im == 0 {
-			if m.count == 1 {
-				y += m.ar * e
-				continue
-			}
-			a := k.amplitudes[m.first : m.first+m.count]
-			sum := 0.0
-			for j := len(a) - 1; j >= 0; j-- {
-				sum = sum*tau + real(a[j])
-			}
-			y += sum * e
+		re, im := m.turn(tau, lo)
+		if m.count == 1 {
+			y += m.ar*re - m.ai*im
 			continue
 		}
-		im := m.im * tau
-		imLo := math.FMA(m.im, tau, -im) + m.imLo*tau + m.im*lo
-		sin, cos := math.Sincos(im)
-		sin, cos = sin+imLo*cos, cos-imLo*sin
-		ar, ai := m.ar, m.ai
-		if m.count > 1 {
-			a := k.amplitudes[m.first : m.first+m.count]
-			ar, ai = 0, 0
-			for j := len(a) - 1; j >= 0; j-- {
-				ar, ai = ar*tau+real(a[j]), ai*tau+imag(a[j])
-			}
+		a := k.amplitudes[m.first : m.first+m.count]
+		ar, ai := 0.0, 0.0
+		for j := len(a) - 1; j >= 0; j-- {
+			ar, ai = ar*tau+real(a[j]), ai*tau+imag(a[j])
 		}
-		y += e * (ar*cos - ai*sin)
+		y += ar*re - ai*im
 	}
 	return y
 }

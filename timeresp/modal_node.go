@@ -49,6 +49,31 @@ func (n *node) suggest() {
 // horizon is where the early polynomials end.
 func (k *kernel) horizon() float64 { return k.earlyEnd }
 
+// calm takes the slowest mode for the rate at which the spread shrinks: not too early.
+func (k *kernel) calm(level float64) float64 {
+	if len(k.stages) > 0 {
+		return calmBySearch(k, level)
+	}
+	slowest := math.Inf(1)
+	for i := range k.modes {
+		if k.modes[i].count > 1 {
+			return calmBySearch(k, level)
+		}
+		slowest = min(slowest, -k.modes[i].re)
+	}
+	tau := k.earlyEnd
+	for {
+		spread := 0.0
+		for i := range k.modes {
+			spread += math.Exp(k.modes[i].re*tau) * k.modes[i].size
+		}
+		if spread <= level {
+			return tau
+		}
+		tau += math.Log(spread/level)/slowest*(1+1e-12) + 1e-12*tau
+	}
+}
+
 func (k *kernel) fourth(a, b *node) float64 {
 	if b.t <= k.earlyEnd {
 		return k.earlyFourth(a.t, b.t)
@@ -76,36 +101,38 @@ func (k *modal) modalNode(tau float64, n *node) {
 	}
 	for i := range k.modes {
 		m := &k.modes[i]
-		re := m.re * tau
-		reLo := math.FMA(m.re, tau, -re) + m.reLo*tau
-		e := math.Exp(re)
-		e += e * reLo
-		sin, cos := 0.0, 1.0
-		if m.im != 0 {
-			im := m.im * tau
-			imLo := math.FMA(m.im, tau, -im) + m.imLo*tau
-			sin, cos = math.Sincos(im)
-			sin, cos = sin+imLo*cos, cos-imLo*sin
-		}
+		e := math.Exp(m.re * tau)
 		if m.count == 1 {
-			vr, vi := e*(m.ar*cos-m.ai*sin), e*(m.ar*sin+m.ai*cos)
+			n.spread += e * m.size
+			n.fourth += e * m.fourth
+			if m.im == 0 {
+				v := m.ar * e
+				n.y += v
+				v *= m.re
+				n.d += v
+				n.c += v * m.re
+				continue
+			}
+			y := m.im * tau
+			lo := math.FMA(m.im, tau, -y) + m.imLo*tau
+			sin, cos := math.Sincos(y)
+			sin, cos = e*(sin+lo*cos), e*(cos-lo*sin)
+			vr, vi := m.ar*cos-m.ai*sin, m.ar*sin+m.ai*cos
 			n.y += vr
 			dr, di := vr*m.re-vi*m.im, vr*m.im+vi*m.re
 			n.d += dr
 			n.c += dr*m.re - di*m.im
-			size := e * math.Sqrt(m.ar*m.ar+m.ai*m.ai)
-			square := m.re*m.re + m.im*m.im
-			n.spread += size
-			n.fourth += size * square * square
 			continue
 		}
-		k.confluentNode(m, tau, e, sin, cos, n)
+		cos, sin := m.turn(tau, 0)
+		k.confluentNode(m, tau, e, cos, sin, n)
 	}
 }
 
-// confluentNode adds the share of a multiple pole. With q(τ) = Σ a[k]τ^k its derivatives are
+// confluentNode adds the share of a multiple pole, e being e^(Re p·τ) and re + j·im e^(pτ).
+// With q(τ) = Σ a[k]τ^k its derivatives are
 // e^(pτ)·((D+p)ʲq).
-func (k *modal) confluentNode(m *mode, tau, e, sin, cos float64, n *node) {
+func (k *modal) confluentNode(m *mode, tau, e, re, im float64, n *node) {
 	a := k.amplitudes[m.first : m.first+m.count]
 	p := complex(m.re, m.im)
 	var q [5]complex128 // derivatives of q
@@ -115,7 +142,7 @@ func (k *modal) confluentNode(m *mode, tau, e, sin, cos float64, n *node) {
 		q[1] = q[1]*x + q[0]
 		q[0] = q[0]*x + a[j]
 	}
-	turn := complex(e*cos, e*sin)
+	turn := complex(re, im)
 	y := q[0]
 	d := q[1] + p*q[0]
 	c := q[2] + p*(2*q[1]+p*q[0])

@@ -121,10 +121,3 @@ func (r *Response) Impulses() (times, areas []float64) {
 	}
 	return times, areas
 }
-
-// Sample fills out with the response at start, start + step, and so on, in seconds.
-func (r *Response) Sample(out []float64, start, step float64) {
-	for i := range out {
-		out[i] = r.At(start + float64(i)*step)
-	}
-}

@@ -518,6 +518,7 @@ func (g *stage) addMode(m *longMode, double bool) {
 	if len(a) > 1 {
 		g.amplitudes = append(g.amplitudes, a...)
 	}
+	n.measure()
 	g.modes = append(g.modes, n)
 }
 

@@ -136,3 +136,5 @@ func (s *superposition) horizon() float64 {
 	}
 	return end
 }
+
+func (s *superposition) calm(level float64) float64 { return calmBySearch(s, level) }

@@ -20,13 +20,14 @@ type factor struct {
 func scaledCoefficients(p poly.Poly, scale int) []wide {
 	n := p.Degree() + 1
 	out := make([]wide, n)
-	inexact := false
-	for i := range out {
-		hi := p.Coefficient(i)
-		out[i].hi = math.Ldexp(hi, scale*i)
-		inexact = inexact || isRounded(hi)
+	var buffer [24]float64
+	near := buffer[:0]
+	for i := n - 1; i >= 0; i-- {
+		c := p.Coefficient(i)
+		near = append(near, c)
+		out[i].hi = math.Ldexp(c, scale*i)
 	}
-	if !inexact {
+	if poly.New(near...).Equal(p) { // no coefficient is rounded
 		return out
 	}
 	integers, exponent := p.Integers()
@@ -34,12 +35,6 @@ func scaledCoefficients(p poly.Poly, scale int) []wide {
 		out[i] = wideFromInteger(n, exponent+scale*i)
 	}
 	return out
-}
-
-// isRounded reports whether a coefficient may be a rounded one: one that fills all 53 bits,
-// or is out of range.
-func isRounded(x float64) bool {
-	return math.Float64bits(x)&0xff != 0 || math.IsInf(x, 0)
 }
 
 // wideFromInteger returns n·2^exponent to 106 bits.
@@ -198,8 +193,9 @@ func (f *transform) addPole(p pole) {
 	f.poles = append(f.poles, p)
 }
 
-// refine improves pole j, known to 2⁻⁵⁰, by one step of Newton's method on the derivative
-// of den of which it is a simple root.
+// refine improves pole j, known to about 2⁻⁵⁰, by Newton's method on the derivative of den
+// of which it is a simple root: one step of a value in wide arithmetic over a slope in
+// float64, and more as long as they are not small.
 func (f *transform) refine(j int) {
 	p := &f.poles[j]
 	den := f.den
@@ -212,19 +208,30 @@ func (f *transform) refine(j int) {
 			den = den[:len(den)-1]
 		}
 	}
-	for range 2 {
-		var y, d wideComplex
-		for i := len(den) - 1; i >= 0; i-- {
-			d = d.mul(p.at).add(y)
-			y = y.mul(p.at)
-			y.re = y.re.add(den[i])
+	for range 4 {
+		at := p.at.complex()
+		var slope complex128
+		for i := len(den) - 1; i > 0; i-- {
+			slope = slope*at + complex(float64(i)*den[i].hi, 0)
 		}
-		if d.abs() == 0 {
+		if slope == 0 {
 			return
 		}
-		step := y.div(d)
-		p.at = p.at.sub(step)
-		if step.abs() <= 0x1p-80*p.at.abs() {
+		var y wideComplex
+		if p.at.im.hi == 0 {
+			for i := len(den) - 1; i >= 0; i-- {
+				y.re = y.re.mul(p.at.re).add(den[i])
+			}
+		} else {
+			for i := len(den) - 1; i >= 0; i-- {
+				y = y.mul(p.at)
+				y.re = y.re.add(den[i])
+			}
+		}
+		step := y.complex() / slope
+		p.at.re = p.at.re.addFloat(-real(step))
+		p.at.im = p.at.im.addFloat(-imag(step))
+		if abs(step) <= 0x1p-49*p.at.abs() {
 			return
 		}
 	}

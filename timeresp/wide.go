@@ -58,6 +58,25 @@ func (a wide) div(b wide) wide {
 	return quickSum(q, q2).addFloat(r.hi / b.hi)
 }
 
+// dotWide returns Σ a[i]·b[i], the roundings gathered apart and added at the end
+// (compensated dot product: T. Ogita, S. M. Rump and S. Oishi, Accurate sum and dot product,
+// SIAM J. Sci. Comput. 26 (2005) 1955–1988, Algorithm 5.3), with an error of some 2⁻¹⁰⁰·Σ|a·b|.
+func dotWide(a, b []wide) wide {
+	b = b[:len(a)]
+	var sum, rest float64
+	for i := range a {
+		x, y := a[i], b[i]
+		p := x.hi * y.hi
+		e := math.FMA(x.hi, y.hi, -p)
+		e = math.FMA(x.hi, y.lo, math.FMA(x.lo, y.hi, e))
+		s := sum + p
+		t := s - sum
+		rest += e + ((sum - (s - t)) + (p - t))
+		sum = s
+	}
+	return quickSum(sum, rest)
+}
+
 // scale multiplies by 2^n.
 func (a wide) scale(n int) wide { return wide{math.Ldexp(a.hi, n), math.Ldexp(a.lo, n)} }
 
