@@ -80,3 +80,65 @@ func BenchmarkRoots(b *testing.B) {
 		})
 	}
 }
+
+// wilkinson returns the coefficients of (s-1)(s-2)…(s-n), exact in float64 up to n = 15 and
+// nearest beyond (J. H. Wilkinson, Rounding Errors in Algebraic Processes, 1963).
+func wilkinson(n int) []float64 {
+	p := New(1)
+	for k := 1; k <= n; k++ {
+		p = p.Mul(New(1, -float64(k)))
+	}
+	return roundedPoly(p).coefficientsDown()
+}
+
+// coefficientsDown returns the coefficients as New takes them.
+func (p Poly) coefficientsDown() []float64 {
+	c := make([]float64, p.Degree()+1)
+	for i := range c {
+		c[i] = p.Coefficient(p.Degree() - i)
+	}
+	return c
+}
+
+// Ill-conditioned and large polynomials, all bars met.
+func BenchmarkRootsHard(b *testing.B) {
+	r := rand.New(rand.NewSource(100))
+	normal := make([]float64, 101)
+	for i := range normal {
+		normal[i] = r.NormFloat64()
+	}
+	repeated := New(1)
+	for range 8 {
+		repeated = repeated.Mul(New(1, 1))
+	}
+	cluster := New(1)
+	for k := range 3 {
+		cluster = cluster.Mul(New(1, 1+float64(k)*1e-6))
+	}
+	for _, input := range []struct {
+		name string
+		c    []float64
+	}{
+		{"wilkinson20", wilkinson(20)}, {"normal100", normal}, {"(s+1)^8", repeated.coefficientsDown()},
+		{"cluster3", cluster.coefficientsDown()}, {"s^16-1", append(append([]float64{1}, make([]float64, 15)...), -1)},
+	} {
+		b.Run(fmt.Sprintf("roots=%s/method=certified", input.name), func(b *testing.B) {
+			for b.Loop() {
+				roots, err := New(input.c...).Roots()
+				if err != nil {
+					b.Fatal(err)
+				}
+				for _, r := range roots {
+					sink += r.Value
+				}
+			}
+		})
+		b.Run(fmt.Sprintf("roots=%s/method=companion", input.name), func(b *testing.B) {
+			for b.Loop() {
+				for _, s := range baseline.CompanionRoots(input.c) {
+					sink += s
+				}
+			}
+		})
+	}
+}

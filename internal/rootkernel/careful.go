@@ -91,23 +91,28 @@ func (k *Kernel) exponent(i int) int {
 	return k.exponents[i]
 }
 
-// values returns p(t), p′(t), m = Σ|cᵢ||t|ⁱ and a bound on the error of p(t), in the frame,
-// for r = |t|: both values by compensated Horner schemes, as explained at discRadius.
+// values returns p(t), p′(t), |p″(t)|/2, m = Σ|cᵢ||t|ⁱ and a bound on the error of p(t), in the
+// frame, for r = |t|: the first two by compensated Horner schemes, as explained above
+// discRadius.
 //
 // The bound runs along (Higham, Accuracy and Stability of Numerical Algorithms, 2nd ed.,
-// section 5.1): a step of the scheme for the errors, e ← e·t + ε, with ε summed from parts,
-// rounds by less than 8u·(|e||t| + Σ|parts|); coefficients known to twice the working
-// precision add 2u²·m. 10 instead of 8 pays for rounding the bound itself.
+// section 5.1). A step of the scheme for the errors is e ← e·t + ε, with ε summed from
+// parts. On the real axis it rounds by at most 2u·|e||t| + 3u·Σ|parts|. Off it, each part of
+// e·t + ε rounds by at most three times u of the products and four times u of its parts, which
+// makes 3√2·u·(|Re e| + |Im e|)·|t| + 4u·Σ|parts| in all. 3.1 and 4.4 pay for rounding
+// the bound itself; coefficients known to twice the working precision add 2u²·m.
 //
 // The scheme of the derivative sums errors of both kinds, twice as many, each gathered over
 // one power more: an a-priori bound of 2⁻⁹⁸(n+2)³·m/|t| covers it.
-func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, m, miss float64) {
-	var epr, epi, edr, edi float64
+func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, p2, m, miss float64) {
+	var epr, epi, edr, edi, qr, qi float64
 	c, lo := f.c[:n+1], f.lo[:n+1]
 	pr, epr = c[n], lo[n]
 	m = math.Abs(pr) + floor
 	for i := n - 1; i >= 0; i-- {
 		m = m*r + math.Abs(c[i]) + floor
+
+		qr, qi = qr*x-qi*y+dr, qr*y+qi*x+di // half the second derivative
 
 		// d ← d·z + p
 		p1, p2 := float64(dr*x), float64(di*y)
@@ -133,17 +138,18 @@ func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, m, miss float64)
 		miss = miss*r + ((math.Abs(epr)+math.Abs(epi))*r + parts)
 		epr, epi = epr*x-epi*y+((e1-e2)+(f1+f2)+lo[i]), epr*y+epi*x+((e3+e4)+f3)
 	}
-	return pr + epr, pi + epi, dr + edr, di + edi, m, 10*u*miss + 0x1p-104*m
+	return pr + epr, pi + epi, dr + edr, di + edi, math.Abs(qr) + math.Abs(qi), m, 4.4*u*miss + 0x1p-104*m
 }
 
 // valuesReal does the same on the real axis.
-func (f *frame) valuesReal(n int, x, r float64) (p, d, m, miss float64) {
-	var ep, ed float64
+func (f *frame) valuesReal(n int, x, r float64) (p, d, p2, m, miss float64) {
+	var ep, ed, q2 float64
 	c, lo := f.c[:n+1], f.lo[:n+1]
 	p, ep = c[n], lo[n]
 	m = math.Abs(p) + floor
 	for i := n - 1; i >= 0; i-- {
 		m = m*r + math.Abs(c[i]) + floor
+		q2 = q2*x + d
 		q := float64(d * x)
 		e1 := math.FMA(d, x, -q)
 		var f1 float64
@@ -155,7 +161,7 @@ func (f *frame) valuesReal(n int, x, r float64) (p, d, m, miss float64) {
 		miss = miss*r + (math.Abs(ep)*r + math.Abs(e1) + math.Abs(f1) + math.Abs(lo[i]))
 		ep = ep*x + (e1 + f1 + lo[i])
 	}
-	return p + ep, d + ed, m, 10*u*miss + 0x1p-104*m
+	return p + ep, d + ed, math.Abs(q2), m, 3.1*u*miss + 0x1p-104*m
 }
 
 // twoSum returns a + b rounded and what the rounding lost (Knuth, The Art of Computer

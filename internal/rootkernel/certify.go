@@ -143,24 +143,23 @@ func Disjoint(discs []Disc) bool {
 const floor = 0x1p-960
 
 // discRadius returns the radius R of a disc about z + h that holds exactly one root, from
-// r = |z|, |p′(z)| as evaluated, m, |h|, a bound on |p(z) + h·p′(z)| for that p′(z) and one on
-// its error relative to (n+2)²·m/r; it is infinite or NaN where nothing can be said.
+// r = |z|, |p′(z)| as evaluated, |h|, and bounds: bend on |p″|·r² within 2⁻⁵²·r of the segment
+// from z to z + h, tangent on |p(z) + h·p′(z)| for that p′(z), slopeMiss on its error. It is
+// infinite or NaN where nothing can be said.
 //
 // On the circle of radius R about z + h, p differs from its tangent p + p′·(s - z - h) by at
-// most n²·m/r²·R²/2·1.01, and the tangent's modulus is at least |p′|·R - |p|. Where that is
-// more, both have the same number of zeros inside (Rouché), and the tangent has one.
-func (k *Kernel) discRadius(r, d, m, h, tangent, slopeError float64) float64 {
-	n := float64(k.n)
+// most bend/r²·R²/2, and the tangent's modulus is at least |p′|·R - |p|. Where that is more,
+// both have the same number of zeros inside (Rouché), and the tangent has one.
+func (k *Kernel) discRadius(r, d, h, bend, tangent, slopeMiss float64) float64 {
 	tau := h / r
-	if !(tau < 0x1p-20/n) {
+	if !(tau < 0x1p-20/float64(k.n)) {
 		return math.Inf(1)
 	}
-	bend := (n + 2) * (n + 2) * 1.02 * m // |p″|·r² near z
-	slope := d*(1-8*u) - bend/r*(slopeError+tau)
+	slope := d*(1-8*u) - slopeMiss - bend/r*tau
 	if !(slope > d/2) {
 		return math.Inf(1)
 	}
-	residue := tangent*1.01 + bend*tau*(tau/2+slopeError) + 4*u*h*d
+	residue := tangent*1.01 + bend*tau*tau + slopeMiss*h + 4*u*h*d
 	radius := residue / slope * 1.02
 	if !(bend/r*(radius/r) < 0.019*slope) {
 		return math.Inf(1)
@@ -168,19 +167,28 @@ func (k *Kernel) discRadius(r, d, m, h, tangent, slopeError float64) float64 {
 	return radius
 }
 
-// slopeError returns the error bound of p′, relative to (n+2)²·m/|z|, in both modes.
-func (k *Kernel) slopeError() float64 {
-	if k.careful {
-		return 0x1p-98 * float64(k.n+2)
-	}
-	return 10 * u
+// fastBounds returns the bounds on |p″|·r² and on the errors of p and p′, after compensated.
+func (k *Kernel) fastBounds(m, r float64) (bend, miss, slopeMiss float64) {
+	n := float64(k.n + 2)
+	bend = n * n * 1.02 * m
+	return bend, n * n * 0x1p-101 * m, bend / r * (10 * u)
 }
 
-// valueError returns the error bound of the compensated p(z).
-func (k *Kernel) valueError(m float64) float64 {
+// carefulBounds does so after values; p2 is |p″|/2 as evaluated, h the step. Horner's rule for
+// p″ errs by less than 24(n+2)³·u·m/r², and p‴ is at most n³·m/r³.
+func (k *Kernel) carefulBounds(m, r, p2, h float64) (bend, slopeMiss float64) {
 	n := float64(k.n + 2)
-	return n * n * 0x1p-101 * m
+	cube := n * n * n * m
+	return 2.01*p2*r*r + cube*(24*u+1.05*(h/r+0x1p-52)), cube / r * 0x1p-98
 }
+
+// sharp is how small a disc about a point must be beside its modulus, before the centre is
+// rounded; each part must be known to partSharp of itself.
+const (
+	sharp        = 0x1p-54
+	sharpCareful = 0x1p-52
+	partSharp    = 0x1p-48
+)
 
 // attempts limits the evaluations for one point.
 const attempts = 4
@@ -188,15 +196,15 @@ const attempts = 4
 func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 	failure := Imprecise
 	for range attempts {
-		unit := 1.0
-		var r, pr, pi, dr, di, m, miss float64
+		unit, enough := 1.0, sharp
+		var r, pr, pi, dr, di, p2, m, bend, miss, slopeMiss float64
 		if k.careful {
 			if r = math.Hypot(x, y); !k.enter(r) {
 				return Disc{}, Imprecise
 			}
-			unit = k.frame.unit
+			unit, enough = k.frame.unit, sharpCareful
 			x, y, r = x/unit, y/unit, r/unit
-			pr, pi, dr, di, m, miss = k.frame.values(k.n, x, y, r)
+			pr, pi, dr, di, p2, m, miss = k.frame.values(k.n, x, y, r)
 		} else {
 			square := float64(x*x) + float64(y*y)
 			if !(square > 0x1p-900 && square < 0x1p900) {
@@ -204,7 +212,7 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 			}
 			r = math.Sqrt(square)
 			pr, pi, dr, di, m = k.compensated(x, y, r)
-			miss = k.valueError(m)
+			bend, miss, slopeMiss = k.fastBounds(m, r)
 		}
 		d2 := dr*dr + di*di
 		if !(d2 > 0x1p-900 && d2 < 0x1p900) {
@@ -213,12 +221,16 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 		t := 1 / d2
 		ur, ui := dr*t, di*t // in this order no product underflows that matters
 		hx, hy := -(pr*ur + pi*ui), -(pi*ur - pr*ui)
+		h := math.Abs(hx) + math.Abs(hy)
+		if k.careful {
+			bend, slopeMiss = k.carefulBounds(m, r, p2, h)
+		}
 		// |p + h·p′| as it is, whatever may have been lost on the way to h.
 		miss += math.Abs(pr+(hx*dr-hy*di)) + math.Abs(pi+(hx*di+hy*dr)) + 8*u*(math.Abs(pr)+math.Abs(pi))
-		rho := k.discRadius(r, math.Sqrt(d2), m, math.Abs(hx)+math.Abs(hy), miss, k.slopeError())
+		rho := k.discRadius(r, math.Sqrt(d2), h, bend, miss, slopeMiss)
 		X, Y := x+hx, y+hy
-		if rho <= 0x1p-54*r && rho <= 0x1p-48*math.Abs(Y) && Y > 0 {
-			if rho <= 0x1p-48*math.Abs(X) {
+		if rho <= enough*r && rho <= partSharp*math.Abs(Y) && Y > 0 {
+			if rho <= partSharp*math.Abs(X) {
 				lostX, lostY := (x-X)+hx, (y-Y)+hy
 				up := unit * (1 + 0x1p-48)
 				return Disc{
@@ -243,28 +255,31 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 
 func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 	for range attempts {
-		unit := 1.0
+		unit, enough := 1.0, sharp
 		r := math.Abs(x)
-		var p, d, m, miss float64
+		var p, d, p2, m, bend, miss, slopeMiss float64
 		if k.careful {
 			if !k.enter(r) {
 				return Disc{}, Imprecise
 			}
-			unit = k.frame.unit
+			unit, enough = k.frame.unit, sharpCareful
 			x, r = x/unit, r/unit
-			p, d, m, miss = k.frame.valuesReal(k.n, x, r)
+			p, d, p2, m, miss = k.frame.valuesReal(k.n, x, r)
 		} else {
 			if !(r > 0x1p-450 && r < 0x1p450) {
 				return Disc{}, Imprecise
 			}
 			p, d, m = k.compensatedReal(x, r)
-			miss = k.valueError(m)
+			bend, miss, slopeMiss = k.fastBounds(m, r)
 		}
 		h := -p / d
+		if k.careful {
+			bend, slopeMiss = k.carefulBounds(m, r, p2, math.Abs(h))
+		}
 		miss += math.Abs(p+h*d) + 8*u*math.Abs(p)
-		rho := k.discRadius(r, math.Abs(d), m, math.Abs(h), miss, k.slopeError())
+		rho := k.discRadius(r, math.Abs(d), math.Abs(h), bend, miss, slopeMiss)
 		X := x + h
-		if rho <= 0x1p-54*r {
+		if rho <= enough*r {
 			half := (math.Abs((x-X)+h) + rho) * (unit * (1 + 0x1p-48))
 			return Disc{X: X * unit, Radius: half, HalfX: half}, None
 		}

@@ -141,7 +141,7 @@ func (k *Kernel) movePair(i int) bool {
 		}
 		unit, tiny = k.frame.unit, rounding*rounding
 		x, y = x/unit, y/unit
-		pr, pi, dr, di, _, _ = k.frame.values(k.n, x, y, r/unit)
+		pr, pi, dr, di, _, _, _ = k.frame.values(k.n, x, y, r/unit)
 		sr, si, gr, gi = k.othersScaled(x, y, i)
 	} else {
 		pr, pi, dr, di = k.quadratic(x, y)
@@ -211,8 +211,8 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 		unit, tiny = k.frame.unit, rounding
 		ratio := k.ratio(x1, x2, i, j)
 		x1, x2, gap = x1/unit, x2/unit, gap/unit
-		p1, d1, _, _ = k.frame.valuesReal(k.n, x1, r1/unit)
-		p2, d2, _, _ = k.frame.valuesReal(k.n, x2, r2/unit)
+		p1, d1, _, _, _ = k.frame.valuesReal(k.n, x1, r1/unit)
+		p2, d2, _, _, _ = k.frame.valuesReal(k.n, x2, r2/unit)
 		s1, s2 = k.othersRealScaled(x1, i, j), k.othersRealScaled(x2, i, j)
 		f = p2 / p1 * ratio
 	} else {
@@ -269,7 +269,7 @@ func (k *Kernel) moveReal(i int) bool {
 		}
 		unit, tiny = k.frame.unit, rounding
 		x /= unit
-		p, d, _, _ = k.frame.valuesReal(k.n, x, math.Abs(x))
+		p, d, _, _, _ = k.frame.valuesReal(k.n, x, math.Abs(x))
 		s = k.othersRealScaled(x, i, i)
 	} else {
 		p, d = k.horner(x)
