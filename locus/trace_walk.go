@@ -213,17 +213,32 @@ func (t *tracker) step(to float64) bool {
 	return true
 }
 
-// sharpen improves the places of proven rows whose last correction was not small beside the
-// separation that they turned out to have: its error is about the square over that.
+// sharpen improves the places of proven rows that a correction has not yet made good: its error
+// is about its square over the separation, and that of rounding.
 func (t *tracker) sharpen(rows []row) {
 	for i := range rows {
 		r := &rows[i]
-		if math.Abs(r.zx-r.x)+math.Abs(r.zy-r.y) <= 1e-6*r.near {
+		step := math.Abs(r.zx-r.x) + math.Abs(r.zy-r.y)
+		noise := r.v.errF / (math.Abs(r.v.dRe) + math.Abs(r.v.dIm))
+		if step <= 1e-6*r.near && noise <= 1e-9*r.near {
 			continue
 		}
 		better := row{x: r.zx, y: r.zy}
-		if t.correct(&better, r.near) && math.Hypot(better.zx-r.x, better.zy-r.y) < r.radius {
-			r.zx, r.zy = better.zx, better.zy
+		for range 3 {
+			t.pencil.at(better.x, better.y, &better.v)
+			t.plane.precisely(better.x, better.y, t.pencil.κ, &better.v)
+			dx, dy, ok := better.v.newton()
+			if r.y == 0 {
+				dy = 0
+			}
+			better.x, better.y = better.x+dx, better.y+dy
+			if !ok || !(math.Hypot(better.x-r.x, better.y-r.y) < r.radius) {
+				break
+			}
+			r.zx, r.zy = better.x, better.y
+			if math.Abs(dx)+math.Abs(dy) <= 1e-9*r.near {
+				break
+			}
 		}
 	}
 }
