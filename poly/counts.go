@@ -11,9 +11,6 @@ import (
 // exactly on its boundary, and outside. The zero value counts none.
 type Count struct{ Inside, Boundary, Outside int }
 
-// fastDegree is the highest degree for which the stages in float64 are tried.
-const fastDegree = 60
-
 // CountLeftOf counts the roots with Re s < sigma, on the line Re s = sigma and beyond it,
 // without looking for them; sigma may be infinite. At 0, Inside is the number of roots in the
 // open left half-plane, and a polynomial is a Hurwitz polynomial if that is all of them.
@@ -38,8 +35,8 @@ func (p Poly) CountLeftOf(sigma float64) (Count, error) {
 	case math.IsInf(sigma, -1):
 		return Count{Outside: n}, nil
 	}
-	if c, ok := p.countByRouth(sigma); ok {
-		return c, nil
+	if c, ok := exact.FilterLeftOf(p.c, p.exact != nil, sigma); ok {
+		return Count(c), nil
 	}
 	return Count(exact.LeftOf(p.integers(), exact.Float(sigma))), nil
 }
@@ -68,8 +65,8 @@ func (p Poly) CountInSector(zeta float64) (Count, error) {
 		_, on := p.integers().CountReal(exact.Float(math.Inf(-1)), exact.Float(0), exact.OpenClosed)
 		return Count{Boundary: on, Outside: p.Degree() - on}, nil
 	}
-	if c, ok := p.countAlongRay(zeta); ok {
-		return c, nil
+	if c, ok := exact.FilterInSector(p.c, p.exact != nil, zeta); ok {
+		return Count(c), nil
 	}
 	return Count(exact.InSector(p.integers(), exact.Float(zeta))), nil
 }
@@ -98,8 +95,8 @@ func (p Poly) CountInDisc(radius float64) (Count, error) {
 		_, zeros := p.integers().StripZero()
 		return Count{Boundary: zeros, Outside: n - zeros}, nil
 	}
-	if c, ok := p.countBySchurCohn(radius); ok {
-		return c, nil
+	if c, ok := exact.FilterInDisc(p.c, p.exact != nil, radius); ok {
+		return Count(c), nil
 	}
 	return Count(exact.InDisc(p.integers(), exact.Float(radius))), nil
 }

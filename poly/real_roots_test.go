@@ -180,7 +180,8 @@ func checkRealRoots(t *testing.T, p Poly, lo, hi float64) {
 				t.Fatalf("RealRoots(%v, %v, %v): %v is not exactly real", p, lo, hi, r)
 			}
 		} else {
-			a, b := exact.Float(real(r.Value)-r.Radius), exact.Float(real(r.Value)+r.Radius)
+			v, reach := exact.Float(real(r.Value)), exact.Float(r.Radius)
+			a, b := v.Sub(reach), v.Add(reach)
 			if x := exact.Float(lo); a.Cmp(x) < 0 {
 				a = x
 			}

@@ -21,6 +21,18 @@ func LeftOf(p Poly, sigma Dyadic) Count {
 	if n < 1 {
 		return Count{}
 	}
+	var f filtered
+	if f.fromPoly(p) {
+		if count, ok := f.leftOf(boundedOf(sigma)); ok {
+			return count
+		}
+	}
+	return leftOf(p, sigma)
+}
+
+// leftOf is the last stage of LeftOf.
+func leftOf(p Poly, sigma Dyadic) Count {
+	n := p.Degree()
 	p, boundary := p.Shift(sigma).StripZero()
 	m := p.Degree()
 	even, odd := p.parity()
@@ -69,6 +81,18 @@ func InSector(p Poly, zeta Dyadic) Count {
 	if n < 1 {
 		return Count{}
 	}
+	var f filtered
+	if f.fromPoly(p) {
+		if count, ok := f.inSector(boundedOf(zeta)); ok {
+			return count
+		}
+	}
+	return inSector(p, zeta)
+}
+
+// inSector is the last stage of InSector.
+func inSector(p Poly, zeta Dyadic) Count {
+	n := p.Degree()
 	p, atOrigin := p.StripZero()
 	m := p.Degree()
 	u, v := p.onRay(zeta)
@@ -162,9 +186,21 @@ func InDisc(p Poly, radius Dyadic) Count {
 	if n < 1 {
 		return Count{}
 	}
+	var f filtered
+	if f.fromPoly(p) {
+		if count, ok := f.inDisc(boundedOf(radius)); ok {
+			return count
+		}
+	}
+	return inDisc(p, radius)
+}
+
+// inDisc is the last stage of InDisc.
+func inDisc(p Poly, radius Dyadic) Count {
+	n := p.Degree()
 	q := p.Stretch(radius).bilinear()
 	lost := n - q.Degree() // roots at -radius
-	count := LeftOf(q, Dyadic{})
+	count := leftOf(q, Dyadic{})
 	count.Boundary += lost
 	return count
 }

@@ -57,6 +57,9 @@ func TestLeftOf(t *testing.T) {
 			w := 1 + eighths(r)
 			return piece{FromFloats(a*a+w*w, -2*a, 1), place(2, sign(a-sigma))}
 		})
+		if got := leftOf(p, Float(sigma)); p.Degree() > 0 && got != want {
+			t.Fatalf("leftOf(%v, %v) = %+v, want %+v", p, sigma, got, want)
+		}
 		if got := LeftOf(p, Float(sigma)); got != want {
 			t.Fatalf("LeftOf(%v, %v) = %+v, want %+v", p, sigma, got, want)
 		}
@@ -81,6 +84,9 @@ func TestInDisc(t *testing.T) {
 			}
 			return piece{FromFloats(m*m, 2*m*float64(r.IntN(15)-7)/8, 1), place(2, sign(m-radius))}
 		})
+		if got := inDisc(p, Float(radius)); p.Degree() > 0 && got != want {
+			t.Fatalf("inDisc(%v, %v) = %+v, want %+v", p, radius, got, want)
+		}
 		if got := InDisc(p, Float(radius)); got != want {
 			t.Fatalf("InDisc(%v, %v) = %+v, want %+v", p, radius, got, want)
 		}
@@ -117,6 +123,9 @@ func TestInSector(t *testing.T) {
 			m := float64(1+r.IntN(16)) / 8
 			return piece{FromFloats(m*m, 0, 1).Add(integers(0, 1).Scale(Float(2 * m).Mul(Float(d)))), place(2, sign(zeta-d))}
 		})
+		if got := inSector(p, Float(zeta)); p.Degree() > 0 && got != want {
+			t.Fatalf("inSector(%v, %v) = %+v, want %+v", p, zeta, got, want)
+		}
 		if got := InSector(p, Float(zeta)); got != want {
 			t.Fatalf("InSector(%v, %v) = %+v, want %+v", p, zeta, got, want)
 		}
@@ -135,6 +144,77 @@ func TestCountsOfFew(t *testing.T) {
 		}
 		if c := InDisc(p, Float(1)); c != (Count{}) {
 			t.Errorf("InDisc of a constant: %+v", c)
+		}
+	}
+}
+
+// TestFiltersAgainstExact sets the stages in float64 against exact arithmetic.
+func TestFiltersAgainstExact(t *testing.T) {
+	r := rand.New(rand.NewPCG(4, 1))
+	settled, total := [3]int{}, 0
+	for range 2000 {
+		p := randomPoly(r, 1+r.IntN(10))
+		switch r.IntN(4) {
+		case 0:
+			p = p.Mul(randomPoly(r, 1+r.IntN(3)))
+		case 1:
+			p = p.Mul(integers(0, 1))
+		case 2:
+			for i := range p.c { // wide exponents
+				p = p.Add(FromDyadics(p.Coefficient(i).Mul(PowerOfTwo(r.IntN(3000) - 1500))).Mul(integers(0, 1).Power(i)))
+			}
+		}
+		if p.Degree() < 1 {
+			continue
+		}
+		total++
+		sigma := Float([...]float64{0, 0, r.NormFloat64(), 1, 1e-300}[r.IntN(5)])
+		zeta := Float([...]float64{0.5, 0.7, r.Float64(), 1e-9, math.Cos(math.Pi / 5), 1 - 1.0/(1<<53)}[r.IntN(6)])
+		radius := Float([...]float64{1, 0.5, r.ExpFloat64() + 1e-3, 1e-200}[r.IntN(4)])
+		for i, question := range []struct {
+			filter func(*filtered) (Count, bool)
+			exact  func() Count
+		}{
+			{func(f *filtered) (Count, bool) { return f.leftOf(boundedOf(sigma)) }, func() Count { return leftOf(p, sigma) }},
+			{func(f *filtered) (Count, bool) { return f.inSector(boundedOf(zeta)) }, func() Count { return inSector(p, zeta) }},
+			{func(f *filtered) (Count, bool) { return f.inDisc(boundedOf(radius)) }, func() Count { return inDisc(p, radius) }},
+		} {
+			var f filtered
+			if !f.fromPoly(p) {
+				t.Fatal("a polynomial of low degree is refused")
+			}
+			if got, ok := question.filter(&f); ok {
+				settled[i]++
+				if want := question.exact(); got != want {
+					t.Fatalf("question %d of %v, %v, %v, %v: %+v, exactly %+v", i, p, sigma, zeta, radius, got, want)
+				}
+			}
+		}
+	}
+	t.Logf("settled in float64: %v of %d", settled, total)
+	for _, n := range settled {
+		if n < total/3 {
+			t.Errorf("a stage in float64 settles less than a third of the cases: %v of %d", settled, total)
+		}
+	}
+}
+
+func TestLeading(t *testing.T) {
+	r := rand.New(rand.NewPCG(5, 1))
+	for range 1000 {
+		x := new(big.Int).Rsh(new(big.Int).SetUint64(r.Uint64()), uint(r.IntN(64)))
+		x.Lsh(x, uint(r.IntN(200))).Add(x, big.NewInt(int64(r.IntN(3)-1)))
+		if r.IntN(2) == 0 {
+			x.Neg(x)
+		}
+		m, e := leading(x)
+		got := Float(m.v).Mul(PowerOfTwo(e))
+		miss := got.Sub(Int(x, 0))
+		if miss.Sign() < 0 {
+			miss = miss.Neg()
+		}
+		if miss.Cmp(Float(m.e).Mul(PowerOfTwo(e))) > 0 {
+			t.Fatalf("%v: %v·2^%d misses by more than %v", x, m.v, e, m.e)
 		}
 	}
 }

@@ -1,28 +1,49 @@
-package poly
+package exact
 
 import "math"
 
-// countByRouth counts by the signs of the first column of Routh's table of p(s + sigma), and is
-// ok only if all of them are certain: then no root is on the line.
+// FilterLeftOf answers as [LeftOf] does if float64 can: coefficients by power, rounded if each may
+// be wrong by half a place.
+func FilterLeftOf(coefficients []float64, rounded bool, sigma float64) (Count, bool) {
+	var f filtered
+	if !f.fromFloats(coefficients, rounded) {
+		return Count{}, false
+	}
+	return f.leftOf(bounded{sigma, 0})
+}
+
+// FilterInSector answers as [InSector] does if float64 can; see [FilterLeftOf].
+func FilterInSector(coefficients []float64, rounded bool, zeta float64) (Count, bool) {
+	var f filtered
+	if !f.fromFloats(coefficients, rounded) {
+		return Count{}, false
+	}
+	return f.inSector(bounded{zeta, 0})
+}
+
+// FilterInDisc answers as [InDisc] does if float64 can; see [FilterLeftOf].
+func FilterInDisc(coefficients []float64, rounded bool, radius float64) (Count, bool) {
+	var f filtered
+	if !f.fromFloats(coefficients, rounded) {
+		return Count{}, false
+	}
+	return f.inDisc(bounded{radius, 0})
+}
+
+// leftOf counts by the signs of the first column of Routh's table of p(s + sigma), and is ok only
+// if all of them are certain: then no root is on the line, but those at 0 on the axis.
 //
 // Source: E. J. Routh, A Treatise on the Stability of a Given State of Motion, Macmillan 1877;
 // in today's form Gantmacher, The Theory of Matrices, vol. 2, Chelsea 1959, ch. XV, § 3.
-func (p Poly) countByRouth(sigma float64) (Count, bool) {
-	n := p.Degree()
-	var storage [fastDegree + 1]bounded
-	if n > fastDegree {
-		return Count{}, false
+func (f *filtered) leftOf(sigma bounded) (Count, bool) {
+	zeros := 0
+	if sigma == (bounded{}) {
+		zeros = f.stripZeros()
 	}
-	c := storage[:n+1]
-	k, ok := p.boundedCoefficients(c)
-	if !ok {
-		return Count{}, false
-	}
-	if sigma != 0 {
-		shift := bounded{math.Ldexp(sigma, -k), 0}
-		if math.Abs(shift.v) < minNormal {
-			shift.e = tiny
-		}
+	c := f.c
+	n := len(c) - 1
+	if sigma != (bounded{}) {
+		shift := sigma.times2(-f.k)
 		for i := 0; i < n; i++ {
 			for j := n - 1; j >= i; j-- {
 				c[j] = c[j].add(c[j+1].mul(shift))
@@ -32,11 +53,6 @@ func (p Poly) countByRouth(sigma float64) (Count, bool) {
 	// The rows of the table stand interleaved in c, from the highest power down: row i has the
 	// entries i, i-2, …, and the next row the entries i-1, i-3, …; each step turns row i into
 	// row i-2.
-	zeros := 0
-	if sigma == 0 {
-		zeros = exactZeros(c)
-		c, n = c[zeros:], n-zeros
-	}
 	right := 0
 	last := c[n].sign()
 	for i := n; i > 0; i-- {
@@ -58,32 +74,24 @@ func (p Poly) countByRouth(sigma float64) (Count, bool) {
 	return Count{Inside: n - right, Boundary: zeros, Outside: right}, true
 }
 
-// countBySchurCohn counts by the Schur–Cohn reduction, and is ok only if all its signs are
-// certain: then no root is on the circle.
+// inDisc counts by the Schur–Cohn reduction, and is ok only if all its signs are certain: then no
+// root is on the circle.
 //
 // With p* the reversal of p, |p| = |p*| on the unit circle, so that q = p(0)·p - p*(0)·p* has as
 // many zeros inside as the one of p and p* that has the greater factor (Rouché), and p* has
 // as many as p has outside. The degree of q is lower.
 // Source: A. Cohn, Über die Anzahl der Wurzeln einer algebraischen Gleichung in einem Kreise,
 // Math. Z. 14 (1922) 110–148; M. Marden, Geometry of Polynomials, 2nd ed., AMS 1966, § 42.
-func (p Poly) countBySchurCohn(radius float64) (Count, bool) {
-	n := p.Degree()
-	var storage [fastDegree + 1]bounded
-	if n > fastDegree {
-		return Count{}, false
-	}
-	c := storage[:n+1]
-	k, ok := p.boundedCoefficients(c)
-	if !ok {
-		return Count{}, false
-	}
-	r := math.Ldexp(radius, -k)
-	if r < minNormal || math.IsInf(r, 0) {
+func (f *filtered) inDisc(radius bounded) (Count, bool) {
+	c := f.c
+	n := len(c) - 1
+	r := radius.times2(-f.k)
+	if r.v < minNormal || math.IsInf(r.v, 0) {
 		return Count{}, false
 	}
 	power := bounded{1, 0}
 	for i := 1; i <= n; i++ {
-		power = power.mul(bounded{r, 0})
+		power = power.mul(r)
 		c[i] = c[i].mul(power)
 	}
 	// inside(p) = offset + direction·inside(c[:i+1])
@@ -111,38 +119,25 @@ func (p Poly) countBySchurCohn(radius float64) (Count, bool) {
 	return Count{Inside: offset, Outside: n - offset}, true
 }
 
-// exactZeros returns how many coefficients from the lowest on are known to be zero.
-func exactZeros(c []bounded) int {
-	n := 0
-	for c[n] == (bounded{}) {
-		n++
+// inSector counts by the argument principle, as [InSector] does (the letters are explained
+// there), with the chain of remainders of V and U in place of the Cauchy index. It is ok only if
+// all signs are certain: then no root but 0 is on the boundary.
+func (f *filtered) inSector(zeta bounded) (Count, bool) {
+	if zeta.e != 0 {
+		return Count{}, false // its arc cosine below would need a bound
 	}
-	return n
-}
-
-// countAlongRay counts the roots in a sector by the argument principle, as [exact.InSector] does
-// (the letters are explained there), with the chain of remainders of V and U in place of the
-// Cauchy index. It is ok only if all signs are certain: then no root but 0 is on the boundary.
-func (p Poly) countAlongRay(zeta float64) (Count, bool) {
-	n := p.Degree()
-	var storage [3][fastDegree + 1]bounded
-	if n > fastDegree {
-		return Count{}, false
-	}
-	c := storage[0][:n+1]
-	if _, ok := p.boundedCoefficients(c); !ok {
-		return Count{}, false
-	}
-	zeros := exactZeros(c)
-	c = c[zeros:]
-	m := n - zeros
+	zeros := f.stripZeros()
+	c := f.c
+	m := len(c) - 1
 	if m == 0 {
 		return Count{Boundary: zeros}, true
 	}
+	var room [2][filterDegree + 1]bounded
 
 	// a = U, b = -V/r
-	a, b := storage[1][:m+1], storage[2][:m]
-	x, twice := bounded{-zeta, 0}, bounded{-2 * zeta, 0}
+	a, b := room[0][:m+1], room[1][:m]
+	x := bounded{-zeta.v, zeta.e}
+	twice := x.scaled(2)
 	t, tNext := bounded{1, 0}, x
 	w, wNext := bounded{1, 0}, twice
 	for i := range a {
@@ -191,7 +186,7 @@ func (p Poly) countAlongRay(zeta float64) (Count, bool) {
 		}
 		lastZero, lastInfinity = s, h
 	}
-	turns := float64(m) * math.Acos(zeta) / math.Pi
+	turns := float64(m) * math.Acos(zeta.v) / math.Pi
 	if math.Abs(turns-math.Round(turns)) < 1e-9 {
 		return Count{}, false
 	}
