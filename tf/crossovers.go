@@ -71,7 +71,8 @@ func (a *axisForm) phaseMargin(r axisRoot) (float64, bool) {
 		return 0, false
 	}
 	m := math.Atan2(-v*im.v, -re.v)
-	slope := (math.Abs(re.slope) + v*math.Abs(im.slope) + math.Abs(im.v)/(2*v)) / size
+	// d arg/dx; the factor pays for the change of slope within the error of the root.
+	slope := 2 * math.Abs((re.v/size)*((v*im.slope+im.v/(2*v))/size)-(v*im.v/size)*(re.slope/size))
 	e := (re.e+v*im.e)/size + slope*r.x*r.err + 4*unitRoundoff*math.Abs(m)
 	if math.Pi-math.Abs(m) <= e {
 		if a.deadTime == 0 {

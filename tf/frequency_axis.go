@@ -91,8 +91,18 @@ func withoutPowers(p poly.Poly, k int) poly.Poly {
 // dropAxisFactor takes out a factor common to N and D with roots on the axis, which the
 // searches on functions with dead time could not pass.
 func (a *axisForm) dropAxisFactor() {
-	if _, ok := a.gainCrossoversFast(); ok {
-		return // |N| = |D| ≠ 0 at every crossover, and a common root would be one
+	if a.ok {
+		// A common root would be a root of |N|² - |D|².
+		memory := a.memory
+		roots, ok := a.looseRoots(a.gainCurve(&memory))
+		for _, x := range roots {
+			p := a.at(x)
+			d := p.dd()
+			ok = ok && d.e < 0x1p-20*d.v
+		}
+		if ok {
+			return
+		}
 	}
 	e := a.exactly()
 	if !e.commonOnAxis() {

@@ -79,3 +79,35 @@ func BenchmarkMargins(b *testing.B) {
 		})
 	}
 }
+
+// Margins with dead time, and of loops in z.
+func BenchmarkMarginsOtherLoops(b *testing.B) {
+	run := func(name string, g Function) {
+		b.Run(name, func(b *testing.B) {
+			for b.Loop() {
+				if _, err := (Loop{Plant: g}).Margins(); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
+	}
+	r := rand.New(rand.NewPCG(2, 8))
+	num, den := randomLoop(r, 8)
+	g, err := New(poly.New(num...), poly.New(den...))
+	if err != nil {
+		b.Fatal(err)
+	}
+	late, err := g.WithDeadTime(0.1)
+	if err != nil {
+		b.Fatal(err)
+	}
+	run("order=8/dead time", late)
+	run("order=2/dead time", MustParse("18 exp(-0.02 s) / (s (s + 3))"))
+	z, err := MustParse("0.2 z (z + 0.5)^2 / ((z - 0.8)(z-0.9)(z-0.95)(z-0.5)(z^2-1.8z+0.85)(z-1)(z-0.1)), period 0.01").WithPeriod(0.01)
+	if err != nil {
+		b.Fatal(err)
+	}
+	run("order=8/z", z)
+	run("order=3/pole on the axis", MustParse("2 (s + 1) / (s (s^2 + 4))"))
+	run("order=3/touching", MustParse("8 / (s + 1)^3"))
+}
