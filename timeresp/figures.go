@@ -51,8 +51,9 @@ type curve interface {
 type signal interface {
 	curve
 	at(t, lo float64) float64 // value at t + lo seconds after the start
-	rate() float64            // w
-	ultimate() float64        // limit for t → ∞; NaN if there is none
+	errorAt(t float64) float64
+	rate() float64     // w
+	ultimate() float64 // limit for t → ∞; NaN if there is none
 }
 
 // A node is the signal at one instant, by scaled time.

@@ -67,6 +67,9 @@ func checkValues(t *testing.T, what string, r *Response, times, values []refdata
 		at := times[i].Float(t)
 		largest = math.Max(largest, math.Abs(values[i].Float(t)))
 		miss := refdata.Miss(t, r.At(at), values[i])
+		if bound := r.ErrorBound(at); !(miss <= bound) || bound > 1e-11*largest {
+			t.Errorf("%s: ErrorBound(%v) = %.3g, with an error of %.3g and a largest value of %.3g so far", what, at, bound, miss, largest)
+		}
 		if largest > 0 {
 			miss /= largest
 		}

@@ -61,6 +61,10 @@ func rational(call string, numerator, denominator poly.Poly, roots []poly.Root, 
 	if numerator.Degree() > denominator.Degree() {
 		return nil, &poly.ArgumentError{Call: call, Argument: "g", Reason: "improper: the numerator has a higher degree than the denominator"}
 	}
+	numerator, denominator, roots, err := cancel(numerator, denominator, roots)
+	if err != nil {
+		return nil, err
+	}
 	fastest := 0.0
 	for _, t := range in.terms {
 		fastest = max(fastest, math.Abs(t.omega))

@@ -1,10 +1,10 @@
 package timeresp
 
 import (
-	"fmt"
 	"math"
 	"math/big"
 
+	"github.com/polewright/polewright/internal/exact"
 	"github.com/polewright/polewright/poly"
 )
 
@@ -98,9 +98,8 @@ func newTransform(call string, numerator, denominator poly.Poly, roots []poly.Ro
 		if imag(r.Value) < 0 {
 			continue
 		}
-		if r.Distinct > 1 {
-			return nil, 0, fmt.Errorf("%s: poles closer than float64 can part at %v", call, r.Value)
-		}
+		// Poles closer than float64 can part (Distinct > 1) count as one multiple pole at their
+		// mean: an error of the order (distance·τ)².
 		p := pole{multiplicity: r.Multiplicity}
 		p.at.re.hi = math.Ldexp(real(r.Value), -f.scale)
 		p.at.im.hi = math.Ldexp(imag(r.Value), -f.scale)
@@ -235,4 +234,51 @@ func (f *transform) refine(j int) {
 			return
 		}
 	}
+}
+
+// cancel takes out of a function what its numerator and denominator have in common: hidden
+// modes have no share in the response, whether they die away or not. Only what is proven in
+// exact arithmetic to agree is taken out.
+func cancel(numerator, denominator poly.Poly, roots []poly.Root) (poly.Poly, poly.Poly, []poly.Root, error) {
+	suspect := false
+	for i := range roots {
+		s := roots[i].Value
+		if imag(s) < 0 {
+			continue
+		}
+		var y complex128
+		size, r := 0.0, abs(s)
+		for k := numerator.Degree(); k >= 0; k-- {
+			c := numerator.Coefficient(k)
+			y = y*s + complex(c, 0)
+			size = size*r + math.Abs(c)
+		}
+		if !(abs(y) > 1e-10*size) {
+			suspect = true
+			break
+		}
+	}
+	if !suspect || numerator.Degree() < 0 {
+		return numerator, denominator, roots, nil
+	}
+	common, err := numerator.CommonFactor(denominator, 0)
+	if err != nil || common.Degree() < 1 {
+		return numerator, denominator, roots, err
+	}
+	// Pseudo-division stays with integers: m·p = common·quotient.
+	n, m := without(numerator, common)
+	d, l := without(denominator, common)
+	n, d = scaleBy(n, l), scaleBy(d, m)
+	roots, err = d.Roots()
+	return n, d, roots, err
+}
+
+// without returns quotient and multiplier with multiplier·p = factor·quotient.
+func without(p, factor poly.Poly) (quotient poly.Poly, multiplier *big.Int) {
+	q, _, multiplier := exact.New(p.Integers()).PseudoDivide(exact.New(factor.Integers()))
+	return poly.FromIntegers(q.Integers()), multiplier
+}
+
+func scaleBy(p poly.Poly, factor *big.Int) poly.Poly {
+	return p.Mul(poly.FromIntegers([]*big.Int{factor}, 0))
 }
