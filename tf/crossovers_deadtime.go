@@ -22,6 +22,7 @@ type delayedPhase struct {
 	completeTo float64
 	smallest   float64 // the smallest margin above 1 of all, listed or not; +Inf if none
 	largest    float64 // the largest below 1, likewise; 0 if none
+	last       float64 // v beyond which magnitude and phase are monotone
 	tail       float64 // v of the first crossing beyond which |g| is monotone
 }
 
@@ -52,6 +53,7 @@ func (a *axisForm) delayedPhaseCrossovers(upTo float64) (delayedPhase, error) {
 	if len(b.gain) > 0 {
 		last = max(last, math.Sqrt(b.gain[len(b.gain)-1]))
 	}
+	out.last = last
 	// From last on, magnitude and phase are monotone; two turns more hold a crossing at least.
 	// The rational phase can take back less than π·degree... of a turn of the dead time, which
 	// the loop below allows for by going on until a crossing is found.

@@ -397,3 +397,56 @@ func TestMarginsAgainstSweep(t *testing.T) {
 		})
 	}
 }
+
+// Stable gains of loops with dead time: the verdict of Margins at random gains agrees, and for
+// an integrator with dead time the limit is π/(2·dead time) (K. J. Åström and T. Hägglund, PID
+// Controllers, 2nd ed., 1995, chapter 2, from memory; by hand, the phase -π/2 - ωT is -π at ω = π/(2T)).
+func TestStableGains(t *testing.T) {
+	list, err := (tf.Loop{Plant: tf.MustParse("exp(-0.25 s)/s")}).StableGains()
+	if err != nil || len(list) != 1 || list[0].Lo != 0 || math.Abs(list[0].Hi-2*math.Pi) > 1e-12 {
+		t.Errorf("integrator with dead time: %v, %v", list, err)
+	}
+	for _, text := range []string{
+		"1/(s (s+1)(s+2))", "1/(s-1)", "(s+1)^2/s^3", "1/s^2", "1/(z-0.5), period 1", "exp(-0.2 s)/(s-1)",
+		"exp(-1.1 s)/(s-1)", "0.5 (s+2)/(s+1) exp(-s)", "exp(-s)(s+1)/s^2", "exp(-s)/(s^2+0.05s+1)",
+	} {
+		l := tf.Loop{Plant: tf.MustParse(text)}
+		list, err := l.StableGains()
+		if err != nil {
+			if _, ok := err.(*tf.DegenerateError); !ok {
+				t.Errorf("%s: %v", text, err)
+			}
+			continue
+		}
+		t.Log(text, list)
+	}
+	r := rand.New(rand.NewPCG(8, 1))
+	for i := range loops(t, 12) {
+		l := draw(t, r, i%4 == 3, i%4 != 3)
+		loop := tf.Loop{Plant: l.f}
+		list, err := loop.StableGains()
+		if err != nil {
+			switch err.(type) {
+			case *tf.UnsupportedError, *tf.DegenerateError:
+			default:
+				t.Errorf("%v: %v", l, err)
+			}
+			continue
+		}
+		for range 12 {
+			k := math.Pow(10, 6*r.Float64()-3)
+			m, err := loop.WithGain(k).Margins()
+			if err != nil {
+				continue
+			}
+			inside, near := false, false
+			for _, g := range list {
+				inside = inside || k > g.Lo && k < g.Hi
+				near = near || math.Abs(k-g.Lo) < 1e-8*k || math.Abs(k-g.Hi) < 1e-8*k
+			}
+			if !near && inside != (m.Stable == poly.Holds) {
+				t.Errorf("%v: stable at %v by its margins %v, stable gains %v", l, k, m.Stable, list)
+			}
+		}
+	}
+}
