@@ -2,6 +2,7 @@ package timeresp
 
 import (
 	"encoding/json"
+	"fmt"
 	"math"
 	"testing"
 
@@ -231,6 +232,15 @@ func TestStandardSecondOrder(t *testing.T) {
 				t.Fatal(err)
 			}
 			check("settling_5_percent", settling)
+			for _, band := range []string{"2", "5"} {
+				count, err := r.HalfCycles(map[string]float64{"2": 0.02, "5": 0.05}[band])
+				if err != nil {
+					t.Fatal(err)
+				}
+				if want := string(c.Figures["settling_"+band+"_percent_half_cycles"]); fmt.Sprint(count) != want {
+					t.Errorf("HalfCycles(%s %%) = %d, want %s", band, count, want)
+				}
+			}
 		})
 	}
 }
