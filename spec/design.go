@@ -237,7 +237,7 @@ func (h *hunt) recommend(ctx context.Context, g Gains) (gain float64, unbounded 
 	}
 	switch h.set.preference {
 	case lowestEffort:
-		cost = func(k float64) (float64, error) { return h.effortAt(k) }
+		cost = func(k float64) (float64, error) { return h.effortAt(ctx, k) }
 	case nearestWanted:
 		cost = func(k float64) (float64, error) { return math.Abs(h.signed(k) - h.set.wanted), nil }
 	}
@@ -302,7 +302,7 @@ func (h *hunt) recommend(ctx context.Context, g Gains) (gain float64, unbounded 
 }
 
 // effortAt returns the largest effort for the unit step over all loops.
-func (h *hunt) effortAt(k float64) (float64, error) {
+func (h *hunt) effortAt(ctx context.Context, k float64) (float64, error) {
 	most := 0.0
 	for _, m := range h.models {
 		l, err := m.loopAt(k, h.set)
@@ -313,7 +313,7 @@ func (h *hunt) effortAt(k float64) (float64, error) {
 		if err != nil {
 			return 0, err
 		}
-		v, err := largestEffort(e, 1, inf)
+		v, err := largestEffort(ctx, e, 1, inf)
 		if err != nil {
 			return 0, err
 		}
@@ -443,10 +443,6 @@ func (h *hunt) rule(ctx context.Context, g Gains) (Rule, error) {
 	}
 	windows := []GainWindow{{Hi: End{Gain: inf}}}
 	for j, m := range h.models {
-		if m.around != 0 {
-			r.Sentence = "The second-order map leaves out the dead time."
-			return r, nil
-		}
 		if ok, err := m.prefilterIn(r.Map.AllPoles); err != nil {
 			return r, err
 		} else if !ok {

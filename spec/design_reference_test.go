@@ -1,7 +1,6 @@
 package spec
 
 import (
-	"errors"
 	"fmt"
 	"math"
 	"testing"
@@ -141,13 +140,6 @@ func TestWindowsReference(t *testing.T) {
 				names = append(names, name)
 			}
 			ctx := t.Context()
-			if c.delayed() {
-				var unsupported *tf.UnsupportedError
-				if _, err := sheet.Windows(ctx, []tf.Loop{loop}); !errors.As(err, &unsupported) {
-					t.Fatalf("dead time: %v, want a *tf.UnsupportedError", err)
-				}
-				t.Skip("dead time in the loop is not supported yet")
-			}
 			g, err := Sheet{}.Windows(ctx, []tf.Loop{loop})
 			if err == nil {
 				err = compareWindows(g.Windows, c.StableSet, t)

@@ -1,6 +1,7 @@
 package spec
 
 import (
+	"context"
 	"errors"
 	"math"
 
@@ -22,14 +23,17 @@ type Evidence struct {
 
 	response    *timeresp.Response
 	responseErr error
+	overshoot   *[2]float64 // fraction and time
+	rise        *float64
+	settling    map[float64]float64 // by band
 	figures     map[float64]timeresp.Figures
 
 	margins    tf.Margins
 	marginsErr error
 	hasMargins bool
 
-	signals [3]*signal // output, effort, load, by trajectory
-	traced  [3]bool
+	signals [2]*signal // output and load, by trajectory
+	traced  [2]bool
 }
 
 // NewEvidence returns the evidence of a loop, for requirements that are judged outside of a
@@ -132,16 +136,7 @@ func mergeRoots(a, b []poly.Root) []poly.Root {
 // Response returns the unit step response from reference to output.
 func (e *Evidence) Response() (*timeresp.Response, error) {
 	if e.response == nil && e.responseErr == nil {
-		if e.m.rational() {
-			g, err := e.loop.Closed()
-			if err != nil {
-				e.responseErr = err
-				return nil, err
-			}
-			e.response, e.responseErr = timeresp.Step(g)
-		} else {
-			e.response, e.responseErr = timeresp.StepOf(e.loop)
-		}
+		e.response, e.responseErr = timeresp.StepOf(e.loop)
 	}
 	return e.response, e.responseErr
 }
@@ -169,12 +164,20 @@ func (e *Evidence) Figures(band float64) (timeresp.Figures, error) {
 	return f, nil
 }
 
-// anyFigures returns figures for whatever band is at hand, for those that do not depend on it.
-func (e *Evidence) anyFigures() (timeresp.Figures, error) {
-	for _, f := range e.figures {
-		return f, nil
+// hasFinal returns the response if it has a final value other than zero, else why not.
+func (e *Evidence) hasFinal() (r *timeresp.Response, why string, err error) {
+	if r, err = e.Response(); err != nil {
+		return nil, "", err
 	}
-	return e.Figures(0.02)
+	switch f := r.Final(); {
+	case math.IsNaN(f) && e.m.around != 0 && e.stable == poly.Holds:
+		return nil, "", &tf.UnsupportedError{Call: "spec", What: "a response with dead time this close to the limit of stability"}
+	case math.IsNaN(f):
+		return nil, "the response has no final value", nil
+	case f == 0:
+		return nil, "the final value of the response is zero", nil
+	}
+	return r, "", nil
 }
 
 // Margins returns the margins of the loop.
@@ -188,7 +191,6 @@ func (e *Evidence) Margins() (tf.Margins, error) {
 
 const (
 	toOutput = iota
-	toEffort
 	loadToOutput
 )
 
@@ -197,11 +199,11 @@ const (
 // means that the path has an impulse.
 func (e *Evidence) trajectory(which int, until, small float64) (*signal, error) {
 	if !e.m.rational() {
-		return nil, &tf.UnsupportedError{Call: "spec", What: "effort, load and integral criteria of loops with dead time"}
+		return nil, &tf.UnsupportedError{Call: "spec", What: "recovery from a load, integral criteria and comparison with second order for loops with dead time"}
 	}
 	if !e.traced[which] {
 		e.traced[which] = true
-		numerator := [3]linear{e.m.output, e.m.effort, e.m.load}[which].at(1)
+		numerator := [2]linear{e.m.output, e.m.load}[which].at(1)
 		poles, lead := make([]complex128, 0, 16), e.m.character.at(1)
 		pre := e.m.prefilter
 		if which == loadToOutput {
@@ -239,20 +241,18 @@ func (e *Evidence) trajectory(which int, until, small float64) (*signal, error) 
 
 // withinLimits returns an error where the actuator's limits would make the response differ
 // from the linear one that the figures describe.
-func (e *Evidence) withinLimits() error {
+func (e *Evidence) withinLimits(ctx context.Context) error {
 	l := e.loop.Limits
 	if l == (tf.Limits{}) {
 		return nil
 	}
 	if l.Rate == 0 {
-		u, err := e.trajectory(toEffort, 0, 1e-6)
+		u, err := largestEffort(ctx, e, 1, l.Amplitude)
 		if err != nil {
 			return err
 		}
-		if u != nil {
-			if _, _, above := u.largestAbs(0, 0, inf); above <= l.Amplitude {
-				return nil
-			}
+		if u.reached <= l.Amplitude {
+			return nil
 		}
 	}
 	return &tf.UnsupportedError{Call: "spec", What: "response requirements where the actuator's limits are reached"}
@@ -272,15 +272,4 @@ func (m *model) prefilterStable() (bool, error) {
 		}
 	}
 	return true, nil
-}
-
-// final reports whether figures that refer to the final value exist, and why not.
-func final(f timeresp.Figures) (bool, string) {
-	switch {
-	case math.IsNaN(f.Final):
-		return false, "the response has no final value"
-	case f.Final == 0:
-		return false, "the final value of the response is zero"
-	}
-	return true, ""
 }

@@ -12,46 +12,140 @@ import (
 
 // What each requirement of this package reads off the evidence. The loop is stable here.
 
-func ofStep(e *Evidence, band float64, read func(f timeresp.Figures) measured) (measured, error) {
-	var f timeresp.Figures
-	var err error
-	if band > 0 {
-		f, err = e.Figures(band)
-	} else {
-		f, err = e.anyFigures()
+func measureOvershoot(_ context.Context, e *Evidence, _ *limited) (measured, error) {
+	r, why, err := e.hasFinal()
+	if r == nil {
+		return absent(why), err
 	}
-	if err != nil {
-		return measured{}, err
-	}
-	if ok, why := final(f); !ok {
-		return absent(why), nil
-	}
-	return read(f), nil
+	fraction, time, err := e.overshootOf(r)
+	return at(fraction, time, "s"), err
 }
 
-func measureOvershoot(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.Overshoot, f.PeakTime, "s") })
+// overshootOf returns the overshoot and its time, once.
+func (e *Evidence) overshootOf(r *timeresp.Response) (fraction, time float64, err error) {
+	if e.overshoot == nil {
+		fraction, time, err := r.Overshoot()
+		if err != nil {
+			return 0, 0, err
+		}
+		e.overshoot = &[2]float64{fraction, time}
+	}
+	return e.overshoot[0], e.overshoot[1], nil
 }
 
 func measureUndershoot(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.Undershoot, f.UndershootTime, "s") })
+	r, why, err := e.hasFinal()
+	if r == nil {
+		return absent(why), err
+	}
+	f, err := e.Figures(0.02)
+	return at(f.Undershoot, f.UndershootTime, "s"), err
 }
 
 func measureRise(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	return ofStep(e, 0, func(f timeresp.Figures) measured { return at(f.RiseTime, f.Reach90, "s") })
+	r, why, err := e.hasFinal()
+	var near *tf.UnsupportedError
+	if errors.As(err, &near) && e.response != nil {
+		return e.riseByHand(e.response)
+	}
+	if r == nil {
+		return absent(why), err
+	}
+	if e.rise == nil {
+		t, err := r.RiseTime()
+		if err != nil {
+			return measured{}, err
+		}
+		e.rise = &t
+	}
+	return at(*e.rise, none, ""), nil
+}
+
+// riseByHand finds the rise time of a stable loop with dead time whose decay could not be
+// bounded: the first crossings need no bound on what comes later. Steps are a sixty-fourth of
+// the shorter of the dead time and the time constants, so that an excursion of the response
+// between two samples is far below the rounding of the levels.
+func (e *Evidence) riseByHand(r *timeresp.Response) (measured, error) {
+	d, miss := e.m.errorSeries(0)
+	final := 1 - miss[0].at(1)/d.at(1)
+	if final == 0 || math.IsNaN(final) {
+		return absent("the final value of the response is zero"), nil
+	}
+	rate := 1 / e.m.around
+	for _, p := range [2]poly.Poly{e.m.openDen, e.m.open.at(1)} {
+		if p.Degree() < 1 {
+			continue
+		}
+		roots, err := p.Roots()
+		if err != nil {
+			return measured{}, err
+		}
+		for _, s := range roots {
+			rate = math.Max(rate, math.Hypot(real(s.Value), imag(s.Value)))
+		}
+	}
+	step := 1 / rate / 64
+	crossing := func(from, level float64) float64 {
+		if r.At(from)/final >= level {
+			return from
+		}
+		for i := 1; i < 1<<20; i++ {
+			t := from + float64(i)*step
+			if r.At(t)/final < level {
+				continue
+			}
+			lo, hi := t-step, t
+			for range 80 {
+				m := lo + (hi-lo)/2
+				if m <= lo || m >= hi {
+					break
+				}
+				if r.At(m)/final >= level {
+					hi = m
+				} else {
+					lo = m
+				}
+			}
+			return hi
+		}
+		return math.NaN()
+	}
+	t10 := crossing(0, 0.1)
+	t90 := crossing(t10, 0.9)
+	if math.IsNaN(t90) {
+		return absent("90 % of the final value was not reached in the time searched"), nil
+	}
+	return at(t90-t10, t90, "s"), nil
 }
 
 func measurePeakTime(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	return ofStep(e, 0, func(f timeresp.Figures) measured {
-		if math.IsNaN(f.PeakTime) {
-			return absent("the response has no peak above its final value")
-		}
-		return at(f.PeakTime, f.PeakTime, "s")
-	})
+	r, why, err := e.hasFinal()
+	if r == nil {
+		return absent(why), err
+	}
+	_, time, err := e.overshootOf(r)
+	if err == nil && math.IsNaN(time) {
+		return absent("the response has no peak above its final value"), nil
+	}
+	return at(time, time, "s"), err
 }
 
-func measureSettling(_ context.Context, e *Evidence, r *limited) (measured, error) {
-	return ofStep(e, r.second, func(f timeresp.Figures) measured { return at(f.SettlingTime, f.SettlingTime, "s") })
+func measureSettling(_ context.Context, e *Evidence, l *limited) (measured, error) {
+	r, why, err := e.hasFinal()
+	if r == nil {
+		return absent(why), err
+	}
+	t, ok := e.settling[l.second]
+	if !ok {
+		if t, err = r.SettlingTime(l.second); err != nil {
+			return measured{}, err
+		}
+		if e.settling == nil {
+			e.settling = map[float64]float64{}
+		}
+		e.settling[l.second] = t
+	}
+	return at(t, t, "s"), nil
 }
 
 type measure = func(ctx context.Context, e *Evidence, r *limited) (measured, error)
@@ -67,38 +161,47 @@ func steady(n int) measure {
 	}
 }
 
-func measureEffort(_ context.Context, e *Evidence, r *limited) (measured, error) {
-	return largestEffort(e, 1, r.limit)
+func measureEffort(ctx context.Context, e *Evidence, r *limited) (measured, error) {
+	return largestEffort(ctx, e, 1, r.limit)
 }
 
-func largestEffort(e *Evidence, size, limit float64) (measured, error) {
-	u, err := e.trajectory(toEffort, 0, 1e-9)
-	if err != nil {
-		return measured{}, err
-	}
-	if u == nil {
+// largestEffort returns the largest effort for a reference step of the given size.
+func largestEffort(ctx context.Context, e *Evidence, size, limit float64) (measured, error) {
+	impulse := func() (measured, error) {
 		m := at(inf, 0, "s")
 		m.reason = "the effort has an impulse at the step"
 		return m, nil
 	}
-	v, w, _ := u.largestAbs(0, 0, inf)
-	if math.IsInf(w, 1) {
-		m := at(size*v, none, "")
+	m := e.m
+	if max(m.effort.fixed.Degree(), m.effort.scaled.Degree()) > m.openDen.Degree()+m.prefilter.Degree() {
+		return impulse()
+	}
+	u, err := timeresp.Of(ctx, e.loop, tf.Reference, tf.Effort, timeresp.StepInput(1))
+	if err != nil {
+		return measured{}, err
+	}
+	if times, _ := u.Impulses(); len(times) > 0 {
+		return impulse()
+	}
+	v, w, err := u.Largest()
+	if err != nil {
+		return measured{}, err
+	}
+	v = size * math.Abs(v)
+	if math.IsNaN(w) {
+		m := at(v, none, "")
 		m.reason = "approached in the steady state"
-		if size*v > limit {
-			m.reason = "reached in the steady state"
-		}
 		return m, nil
 	}
-	return at(size*v, w+e.m.toEffort, "s"), nil
+	return at(v, w, "s"), nil
 }
 
-func measureEffortForStep(_ context.Context, e *Evidence, r *limited) (measured, error) {
+func measureEffortForStep(ctx context.Context, e *Evidence, r *limited) (measured, error) {
 	l := e.loop.Limits
 	if l.Rate != 0 {
 		return measured{}, &tf.UnsupportedError{Call: "spec: effort for a step", What: "a limited rate of the actuator"}
 	}
-	m, err := largestEffort(e, r.second, r.limit)
+	m, err := largestEffort(ctx, e, r.second, r.limit)
 	if err != nil {
 		return m, err
 	}
@@ -230,19 +333,16 @@ func measurePoles(_ context.Context, e *Evidence, r *limited) (measured, error) 
 	return m, nil
 }
 
-func measureLoadPeak(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-	s, err := e.trajectory(loadToOutput, 0, 1e-9)
+func measureLoadPeak(ctx context.Context, e *Evidence, _ *limited) (measured, error) {
+	r, err := timeresp.Of(ctx, e.loop, tf.LoadDisturbance, tf.Output, timeresp.StepInput(1))
 	if err != nil {
 		return measured{}, err
 	}
-	if s == nil {
+	if times, _ := r.Impulses(); len(times) > 0 {
 		return at(inf, 0, "s"), nil
 	}
-	v, w, _ := s.largestAbs(0, 0, inf)
-	if math.IsInf(w, 1) {
-		w = none
-	}
-	return at(v, w, "s"), nil
+	v, w, err := r.Largest()
+	return at(math.Abs(v), w, "s"), err
 }
 
 func measureLoadRecovery(_ context.Context, e *Evidence, r *limited) (measured, error) {

@@ -30,7 +30,7 @@ type model struct {
 	openDen   poly.Poly // dC·dG·dH
 	noise     linear    // of measurement noise to effort, over character, sign aside
 	prefilter poly.Poly // dF
-	stiff     bool      // the prefilter is stable and its poles are not repeated
+	negative  bool      // the gain was turned round: k stands for -k of the user
 	forward   float64   // s, dead time from reference to output
 	around    float64   // s, dead time around the loop
 	toEffort  float64   // s, dead time from reference to effort
@@ -130,6 +130,7 @@ func newModel(call string, l tf.Loop, set *settings) (*model, error) {
 	m.prefilter = dF
 	m.unity = isWire(l.Prefilter) && isWire(l.Sensor)
 	if set.negative {
+		m.negative = true
 		for _, p := range []*linear{&m.character, &m.output, &m.effort, &m.load, &m.open, &m.noise} {
 			p.scaled = p.scaled.Scale(-1)
 		}

@@ -147,7 +147,7 @@ func (r *limited) Judge(ctx context.Context, e *Evidence) (Finding, error) {
 		return f, nil
 	}
 	if k.stepped {
-		if err := e.withinLimits(); err != nil {
+		if err := e.withinLimits(ctx); err != nil {
 			return Finding{}, err
 		}
 	}

@@ -69,9 +69,11 @@ func (e *Evidence) resembles() (Resemblance, error) {
 	if err != nil {
 		return r, err
 	}
-	if ok, why := final(f); !ok || s == nil || len(s.wr) == 0 {
+	if q, why, err := e.hasFinal(); err != nil {
+		return r, err
+	} else if q == nil || s == nil || len(s.wr) == 0 {
 		r.Sentence = "Damping ratio and natural frequency say nothing of this loop: " + why + "."
-		if len(s.wr) == 0 {
+		if q != nil {
 			r.Sentence = "The closed loop has no dynamics."
 		}
 		r.Verdict = poly.Fails

@@ -14,6 +14,8 @@ type look struct {
 	met    bool
 	margin float64 // continuous where it can be; ≥ 0 where met; -Inf where it says nothing
 	data   any
+
+	unknown bool // not met for want of an answer
 }
 
 // A survey describes a search between two gains.

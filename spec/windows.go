@@ -2,6 +2,7 @@ package spec
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -449,10 +450,10 @@ func (h *hunt) searchWindow(ctx context.Context, g *Gains, s *seeker, w GainWind
 	for _, r := range runs {
 		v := w
 		if r.lo != nil {
-			v.Lo = End{Gain: r.lo.met.k, Closed: true, Proven: true, By: s.causes(*r.lo)}
+			v.Lo = End{Gain: r.lo.met.k, Closed: true, Proven: !r.lo.not.unknown, By: s.causes(*r.lo)}
 		}
 		if r.hi != nil {
-			v.Hi = End{Gain: r.hi.met.k, Closed: true, Proven: true, By: s.causes(*r.hi)}
+			v.Hi = End{Gain: r.hi.met.k, Closed: true, Proven: !r.hi.not.unknown, By: s.causes(*r.hi)}
 		}
 		out = append(out, v)
 	}
@@ -605,6 +606,13 @@ func (h *hunt) judging(ctx context.Context, which []int) *seeker {
 			}
 			for _, i := range which {
 				f, err := h.sheet[i].Judge(ctx, e)
+				var near *tf.UnsupportedError
+				if errors.As(err, &near) && m.around != 0 {
+					// Next to the limit of stability a response with dead time may be out of
+					// reach; the windows then end there, without proof.
+					f, err = Finding{Slack: math.Inf(-1)}, nil
+					l.unknown = true
+				}
 				if err != nil {
 					return nil, err
 				}
@@ -640,14 +648,23 @@ func (h *hunt) judging(ctx context.Context, which []int) *seeker {
 	}
 	s.causes = func(e edge) []Cause {
 		met, not := e.met.data.(slacks), e.not.data.(slacks)
+		// A hair further on, a continuous figure has hardly moved and one that jumps has jumped.
+		hair := 1e-9 * e.met.k
+		if e.not.k < e.met.k {
+			hair = -hair
+		}
+		beyond := not
+		if l, err := s.at(e.met.k + hair); err == nil {
+			beyond = l.data.(slacks)
+		}
 		var out []Cause
 		for j := range not {
-			for i, x := range not[j] {
-				if x >= -rounding {
+			for i := range not[j] {
+				if not[j][i] >= -rounding && beyond[j][i] >= -rounding {
 					continue
 				}
 				kind := Crossing
-				if !(met[j][i] < 1e-6) || !(x > -1e-6) {
+				if math.Abs(met[j][i]) > 1e-5 || math.Abs(beyond[j][i]) > 1e-5 {
 					kind = Jump
 				}
 				r := which[i]

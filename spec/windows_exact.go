@@ -6,7 +6,6 @@ import (
 
 	"github.com/polewright/polewright/locus"
 	"github.com/polewright/polewright/poly"
-	"github.com/polewright/polewright/tf"
 )
 
 // Windows that need no search: stability, regions for the poles, steady-state errors, gain
@@ -20,7 +19,7 @@ func (m *model) family() (locus.Family, error) {
 // stableWindows returns the gains k > 0 at which the closed loop is internally stable.
 func (m *model) stableWindows(index int) ([]GainWindow, error) {
 	if m.around != 0 {
-		return nil, &tf.UnsupportedError{Call: "spec.Sheet.Windows", What: "dead time in the loop"}
+		return m.delayedStableWindows(index)
 	}
 	ok, err := m.prefilterIn(locus.LeftOf(0))
 	if err != nil || !ok {
