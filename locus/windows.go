@@ -27,7 +27,33 @@ func (f Family) Windows(r Region) ([]Window, error) {
 	if err != nil {
 		return nil, err
 	}
-	return f.reduced().windows(call, parts)
+	// In float64 first, each constraint by itself; what is not proven there is left to exact
+	// arithmetic.
+	answer := []Window{everything}
+	var left []constraint
+	for _, on := range parts {
+		some, ok := f.windowsFloat(on)
+		if !ok {
+			left = append(left, on)
+			continue
+		}
+		if len(answer) == 1 && answer[0] == everything {
+			answer = some
+		} else {
+			answer = intersect(answer, some)
+		}
+		if len(answer) == 0 {
+			return nil, nil
+		}
+	}
+	if len(left) == 0 {
+		return answer, nil
+	}
+	some, err := f.reduced().windows(call, left)
+	if err != nil {
+		return nil, err
+	}
+	return intersect(answer, some), nil
 }
 
 func (r reduced) windows(call string, parts []constraint) ([]Window, error) {

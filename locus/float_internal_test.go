@@ -1,0 +1,72 @@
+package locus
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/poly"
+)
+
+// typicalFamily returns a family as they occur: stable or nearly so, with fewer zeros than poles.
+func typicalFamily(rng *rand.Rand, n, m int) Family {
+	factor := func(degree int) poly.Poly {
+		p := poly.New(1)
+		for p.Degree() < degree {
+			w := math.Exp(rng.Float64()*4 - 2)
+			if rng.IntN(2) == 0 && p.Degree()+2 <= degree {
+				p = roundedPoly(p.Mul(poly.New(1, 2*(0.05+rng.Float64())*w, w*w)))
+			} else {
+				p = roundedPoly(p.Mul(poly.New(1, w)))
+			}
+		}
+		return p
+	}
+	f, err := Parameter(factor(n), factor(m))
+	if err != nil {
+		panic(err)
+	}
+	return f
+}
+
+func roundedPoly(p poly.Poly) poly.Poly { return poly.New(p.Coefficients()...) }
+
+// The two ways must agree wherever the one in float64 claims an answer.
+func TestFloatAgainstExact(t *testing.T) {
+	rng := rand.New(rand.NewPCG(11, 12))
+	parts := []constraint{halfPlane{exact.Float(0)}, halfPlane{exact.Float(-0.125)}, sector{exact.Float(0.5)}, sector{exact.Float(math.Sqrt2 / 2)}, sector{exact.Float(0.3)}}
+	tried, answered := map[[2]int]int{}, map[[2]int]int{}
+	for range 150 {
+		n := []int{4, 8, 12}[rng.IntN(3)]
+		f := typicalFamily(rng, n, rng.IntN(n))
+		for i, on := range parts {
+			tried[[2]int{n, i}]++
+			got, ok := f.windowsFloat(on)
+			if !ok {
+				continue
+			}
+			answered[[2]int{n, i}]++
+			want, err := f.reduced().windows("", []constraint{on})
+			if err != nil {
+				t.Fatal(err)
+			}
+			same := len(got) == len(want)
+			for j := range got {
+				same = same && nearEnd(got[j].Lo, want[j].Lo) && nearEnd(got[j].Hi, want[j].Hi)
+			}
+			if !same {
+				t.Errorf("%v + k·%v, %v: %v, exactly %v", f.fixed, f.scaled, on, got, want)
+			}
+		}
+	}
+	for _, n := range []int{4, 8, 12} {
+		for i := range parts {
+			t.Logf("degree %d, constraint %d: %d of %d", n, i, answered[[2]int{n, i}], tried[[2]int{n, i}])
+		}
+	}
+}
+
+func nearEnd(got, want float64) bool {
+	return got == want || math.Abs(got-want) <= endError*math.Abs(want)
+}
