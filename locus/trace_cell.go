@@ -111,35 +111,66 @@ func newCell(f, b []complex128, errF, errB []float64, m int) *cell {
 }
 
 // vertexCell returns the cell about a break point of the given order near x, which is within
-// errX of it; nil if it cannot be proved in float64. For a real break point of order 2 errX is
-// found here, if it is given as negative: it is a simple root of a′b - ab′, and the gain at a
-// real point is real.
+// errX of it; nil if it cannot be proved. For a real break point of order 2 errX is found here,
+// if it is given as negative: it is a simple root of a′b - ab′, and the gain at a real point is
+// real.
 func (p *plane) vertexCell(x complex128, order int, errX float64) *cell {
+	if c := p.vertexCellBy(x, order, errX, false); c != nil {
+		return c
+	}
+	return p.vertexCellBy(x, order, errX, true)
+}
+
+// vertexCellBy is vertexCell in float64 or in twice its precision.
+func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool) *cell {
 	n := p.n
-	κ := p.preciseGain(real(x), imag(x))
 	f := make([]complex128, n+1)
 	b := make([]complex128, n+1)
 	room := make([]float64, 4*(n+1))
 	errF, errB, wideF, wideB := room[:n+1], room[n+1:2*n+2], room[2*n+2:3*n+3], room[3*n+3:]
-	size := math.Abs(κ.hi)
-	for i := range f {
-		f[i] = complex(p.a[i]+float64(κ.hi*p.b[i]), 0)
-		b[i] = complex(p.b[i], 0)
-		errF[i] = math.Abs(p.a[i]) + size*math.Abs(p.b[i])
-		errB[i] = math.Abs(p.b[i])
+	var κ twofold
+	expand := func() {
+		κ = p.preciseGain(real(x), imag(x))
+		if precise {
+			p.preciseTaylor(x, κ, f, b)
+			return
+		}
+		for i := range f {
+			f[i] = complex(p.a[i]+float64(κ.hi*p.b[i]), 0)
+			b[i] = complex(p.b[i], 0)
+		}
+		taylor(f, x)
+		taylor(b, x)
 	}
-	taylor(f, x)
-	taylor(b, x)
+	expand()
+	for i := 0; precise && errX < 0 && i < 4; i++ {
+		// Newton's method for the double root, now that its digits can be seen.
+		step := -real(f[1]) / (2 * real(f[2]))
+		next := real(x) + step
+		if !(math.Abs(step) < math.Inf(1)) || next == real(x) {
+			break
+		}
+		x = complex(next, 0)
+		expand()
+	}
 	// The rounding of the shift is that of Horner's rule with majorants, whose own shift is by
 	// |x|; each coefficient takes up to 2n products and sums, and three roundings before.
+	u := (6.6*float64(n) + 10) * 1.05 * unitRoundoff
+	κlow := math.Abs(κ.lo)
+	if precise {
+		u, κlow = 20*float64(n+1)*twofoldRoundoff, 0
+	}
+	for i := range f {
+		errF[i] = math.Abs(p.a[i]) + math.Abs(κ.hi*p.b[i])
+		errB[i] = math.Abs(p.b[i])
+	}
 	r := cmplx.Abs(x) * (1 + 4*unitRoundoff)
 	taylorReal(errF, r)
 	taylorReal(errB, r)
-	u := (6.6*float64(n) + 10) * 1.05 * unitRoundoff
 	terms := errF[0]
 	for i := range f {
-		errF[i] = u*errF[i] + minNormal
-		errB[i] = u*errB[i] + minNormal
+		errF[i] = u*errF[i] + 2*unitRoundoff*cmplx.Abs(f[i]) + minNormal
+		errB[i] = u*errB[i] + 2*unitRoundoff*cmplx.Abs(b[i]) + minNormal
 	}
 	if errX < 0 {
 		// a′b - ab′ = f₁b₀ + 2f₂b₀·h + …, as f₀ = 0: its root is at about -f₁/(2f₂).
@@ -162,7 +193,7 @@ func (p *plane) vertexCell(x complex128, order int, errX float64) *cell {
 	}
 	for i := range f {
 		errB[i] = (wideB[i] - cmplx.Abs(b[i])) * (1 + 1e-9)
-		errF[i] = (wideF[i]-cmplx.Abs(f[i]))*(1+1e-9) + (slack+math.Abs(κ.lo))*wideB[i]
+		errF[i] = (wideF[i]-cmplx.Abs(f[i]))*(1+1e-9) + (slack+κlow)*wideB[i]
 	}
 	c := newCell(f, b, errF, errB, order)
 	if c == nil || errX > 1e-3*c.radius || slack > 1e-2*c.width {

@@ -126,3 +126,22 @@ func (p *plane) precisely(x, y, κ float64, v *value) {
 	v.re, v.im, v.dRe, v.dIm = f.re.hi, f.im.hi, d.re.hi, d.im.hi
 	v.errF = 20*float64(p.n+1)*twofoldRoundoff*v.modulusMax + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
 }
+
+// preciseTaylor computes the coefficients of a + κ·b and of b about x, rounded at the end.
+func (p *plane) preciseTaylor(x complex128, κ twofold, f, b []complex128) {
+	n := p.n
+	cf, cb := make([]complexTwofold, n+1), make([]complexTwofold, n+1)
+	for i := range cf {
+		cb[i].re = coefficient(p.b, p.tailB, i)
+		cf[i].re = coefficient(p.a, p.tailA, i).plus(cb[i].re.times(κ))
+	}
+	for i := range n {
+		for j := n - 1; j >= i; j-- {
+			cf[j] = cf[j].plus(cf[j+1].timesFloat(real(x), imag(x)))
+			cb[j] = cb[j].plus(cb[j+1].timesFloat(real(x), imag(x)))
+		}
+	}
+	for i := range cf {
+		f[i], b[i] = cf[i].value(), cb[i].value()
+	}
+}

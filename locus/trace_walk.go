@@ -361,6 +361,7 @@ func (t *tracker) look() {
 	if t.κ+t.reach >= t.end {
 		return
 	}
+	t.pencil.set(t.κ)
 	for i := range t.rows {
 		r := &t.rows[i]
 		if r.step > 3*t.reach {
@@ -400,19 +401,21 @@ func (t *tracker) lookAt(x0, size float64) {
 			return
 		}
 	}
+	// With F at the present gain in place of a nothing changes but that less cancels.
+	f, b := t.pencil.f, p.b
 	x := x0
 	for range 12 {
-		var a, a1, a2, b, b1, b2 float64
+		var y, y1, y2, z, z1, z2 float64
 		for i := p.n; i >= 0; i-- {
-			a2 = float64(a2*x) + a1
-			a1 = float64(a1*x) + a
-			a = float64(a*x) + p.a[i]
-			b2 = float64(b2*x) + b1
-			b1 = float64(b1*x) + b
-			b = float64(b*x) + p.b[i]
+			y2 = float64(y2*x) + y1
+			y1 = float64(y1*x) + y
+			y = float64(y*x) + f[i]
+			z2 = float64(z2*x) + z1
+			z1 = float64(z1*x) + z
+			z = float64(z*x) + b[i]
 		}
-		w := float64(a1*b) - float64(a*b1)
-		d := 2 * (float64(a2*b) - float64(a*b2))
+		w := float64(y1*z) - float64(y*z1)
+		d := 2 * (float64(y2*z) - float64(y*z2))
 		step := w / d
 		if !(math.Abs(step) <= 4*size) {
 			return
@@ -422,8 +425,10 @@ func (t *tracker) lookAt(x0, size float64) {
 			return
 		}
 		if math.Abs(step) <= 4*unitRoundoff*math.Abs(x) || math.Abs(step) <= 1e-9*size {
-			κ := -a / b
-			if !(κ >= t.κ*(1-1e-12*math.Copysign(1, t.κ))) || κ > t.κ+8*t.reach || κ > t.end {
+			ahead := -y / z
+			noise := 1e-13 * math.Abs(t.κ)
+			κ := t.κ + ahead
+			if !(ahead >= -noise) || ahead > 8*t.reach+noise || κ > t.end {
 				return
 			}
 			for _, v := range t.vertices {
