@@ -48,8 +48,12 @@ func (s Sheet) check(ctx context.Context, l tf.Loop) (Report, error) {
 		case f.Verdict == poly.Undecided && r.Verdict == poly.Holds:
 			r.Verdict = poly.Undecided
 		}
-		if f.Slack < least || r.Binding < 0 && !math.IsNaN(f.Slack) {
-			least, r.Binding = f.Slack, i
+		slack := f.Slack
+		if f.settled() {
+			slack = inf
+		}
+		if slack < least || r.Binding < 0 && !math.IsNaN(slack) {
+			least, r.Binding = slack, i
 		}
 	}
 	return r, nil

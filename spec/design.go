@@ -54,7 +54,7 @@ type Design struct {
 	Window    int       // index of the window that holds it; -1 if none
 	Loops     []tf.Loop // with the recommended gain in them
 	Reports   []Report  // of each loop
-	Slack     float64   // the smallest slack of all requirements on all loops
+	Slack     float64   // the smallest slack of all requirements on all loops, a limit of 0 met exactly left aside; +Inf if there is no other
 	By        Cause     // the requirement and loop with that slack
 
 	Rule       Rule          // what the second-order map would have chosen
@@ -217,7 +217,7 @@ func (h *hunt) judge(ctx context.Context, k float64) (judged, error) {
 			if f.Verdict != poly.Holds {
 				j.refused = append(j.refused, c)
 			}
-			if f.Slack < j.slack {
+			if f.Slack < j.slack && !f.settled() {
 				j.slack, j.by = f.Slack, c
 			}
 		}

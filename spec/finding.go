@@ -43,6 +43,11 @@ func (k limitKind) String() string {
 	return "at most"
 }
 
+// settled reports whether a limit of 0 is met exactly. Such a requirement is decided by what
+// the loop is made of, not by how large the gain is, so its slack of 0 is no nearness to a
+// limit: where slacks are compared it stands aside.
+func (f Finding) settled() bool { return f.Limit == 0 && f.Slack == 0 && f.Verdict == poly.Holds }
+
 // slack returns the distance to the limit as Finding.Slack defines it.
 func (k limitKind) slack(reached, limit float64) float64 {
 	scale := math.Abs(limit)

@@ -16,7 +16,7 @@ type Report struct {
 	Verdict  poly.Verdict // Holds if the loop is stable and every requirement is met
 	Stable   poly.Verdict // internally
 	Findings []Finding    // one for each requirement, in the order of the sheet
-	Binding  int          // index of the requirement with the smallest slack; -1 for the empty sheet
+	Binding  int          // index of the requirement with the smallest slack, a limit of 0 met exactly left aside; -1 for the empty sheet
 	Poles    []poly.Root  // of the closed loop, hidden ones included; nil with dead time
 }
 

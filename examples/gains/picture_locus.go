@@ -3,24 +3,26 @@ package main
 import (
 	"image/color"
 	"math"
+	"slices"
 
 	"gonum.org/v1/plot/plotter"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
 	"github.com/polewright/polewright/locus"
+	"github.com/polewright/polewright/spec"
 )
 
 // A locusPicture is what the picture of the root locus shows.
 type locusPicture struct {
 	title       string
 	locus       *locus.Locus
-	inside      func(k float64) bool // whether a gain meets the sheet
-	boundaries  []namedBoundary      // of regions of the plane
-	recommended []complex128         // closed-loop poles at the recommended gain
-	gainText    string               // the recommended gain, as text
-	sign        string               // "k > 0" or "k < 0"
-	unit        string               // of the axes
+	windows     []spec.GainWindow // gains that meet the sheet
+	boundaries  []namedBoundary   // of regions of the plane
+	recommended []complex128      // closed-loop poles at the recommended gain
+	gainText    string            // the recommended gain, as text
+	sign        string            // "k > 0" or "k < 0"
+	unit        string            // of the axes
 }
 
 // A namedBoundary is the boundary of a region, in pieces.
@@ -102,7 +104,7 @@ func drawBranches(f *figure, p locusPicture, view locus.Frame) error {
 			style = insideStyle
 		}
 		for _, b := range p.locus.Branches {
-			for _, run := range runs(b, p.inside, good) {
+			for _, run := range runs(b, p.windows, good) {
 				for _, piece := range cutTo(run, view) {
 					if err := f.line(names[good], piece, style); err != nil {
 						return err
@@ -120,29 +122,68 @@ func drawBranches(f *figure, p locusPicture, view locus.Frame) error {
 	return nil
 }
 
-// runs returns the parts of a branch whose gains do (good) or do not meet the sheet.
-func runs(b locus.Branch, inside func(float64) bool, good bool) []plotter.XYs {
+// runs returns the parts of a branch whose gains do (good) or do not meet the sheet, cut
+// exactly at the ends of the windows.
+func runs(b locus.Branch, windows []spec.GainWindow, good bool) []plotter.XYs {
 	var out []plotter.XYs
 	var now plotter.XYs
-	for i := 0; i+1 < b.Len(); i++ {
-		a, z := b.GainAt(i), b.GainAt(i+1)
-		if (inside(a) && inside(z)) != good {
+	add := func(from, to vertex) {
+		middle := from.gain + (to.gain-from.gain)/2
+		inside := slices.ContainsFunc(windows, func(w spec.GainWindow) bool { return w.Lo.Gain <= middle && middle <= w.Hi.Gain })
+		switch {
+		case inside != good:
 			if len(now) > 0 {
 				out, now = append(out, now), nil
 			}
-			continue
+			return
+		case len(now) == 0:
+			now = plotter.XYs{from.XY}
 		}
-		if len(now) == 0 {
-			x, y := b.XY(i)
-			now = append(now, plotter.XY{X: x, Y: y})
+		now = append(now, to.XY)
+	}
+	for i := 0; i+1 < b.Len(); i++ {
+		from, to := vertexOf(b, i), vertexOf(b, i+1)
+		for _, k := range windowEnds(windows, from.gain, to.gain) {
+			if s, ok := b.At(k); ok {
+				cut := vertex{plotter.XY{X: real(s), Y: imag(s)}, k}
+				add(from, cut)
+				from = cut
+			}
 		}
-		x, y := b.XY(i + 1)
-		now = append(now, plotter.XY{X: x, Y: y})
+		add(from, to)
 	}
 	if len(now) > 0 {
 		out = append(out, now)
 	}
 	return out
+}
+
+// A vertex is a point of a branch with its gain.
+type vertex struct {
+	plotter.XY
+	gain float64
+}
+
+func vertexOf(b locus.Branch, i int) vertex {
+	x, y := b.XY(i)
+	return vertex{plotter.XY{X: x, Y: y}, b.GainAt(i)}
+}
+
+// windowEnds returns the ends of windows strictly between two gains, in the order of travel.
+func windowEnds(windows []spec.GainWindow, from, to float64) []float64 {
+	var ends []float64
+	for _, w := range windows {
+		for _, k := range [2]float64{w.Lo.Gain, w.Hi.Gain} {
+			if min(from, to) < k && k < max(from, to) {
+				ends = append(ends, k)
+			}
+		}
+	}
+	slices.Sort(ends)
+	if to < from {
+		slices.Reverse(ends)
+	}
+	return ends
 }
 
 func points(source plotter.XYer) plotter.XYs {

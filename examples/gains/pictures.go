@@ -66,7 +66,7 @@ func drawLocusOf(ctx context.Context, folder, name, title string, j *job, d spec
 	if err != nil {
 		return err
 	}
-	p := locusPicture{sign: "k > 0", title: "Root locus: " + title, locus: traced, inside: d.Gains.Contains, gainText: number(gain), unit: "rad/s"}
+	p := locusPicture{sign: "k > 0", title: "Root locus: " + title, locus: traced, windows: d.Gains.Windows, gainText: number(gain), unit: "rad/s"}
 	if gain < 0 {
 		p.sign = "k < 0"
 	}
