@@ -154,7 +154,7 @@ func toAxis(p poly.Poly, delay, degree int) poly.Poly {
 func (a *axisForm) prepare() {
 	shift := unitExponent(a.numerator, a.denominator)
 	a.unit = math.Ldexp(1, shift)
-	if a.degree > maxFastDegree/2 {
+	if a.degree > maxFastDegree {
 		return
 	}
 	size := a.degree + 1

@@ -231,6 +231,27 @@ func (l Loop) GainCrossovers() ([]Crossover, error) {
 	return a.gainCrossovers()
 }
 
+// PhaseCrossovers returns the frequencies > 0, ascending, at which L is real and negative, with
+// the gain margin there, as [Margins] has them: up to completeTo, which is +Inf without dead time.
+// The only option is [CrossoversUpTo].
+func (l Loop) PhaseCrossovers(opt ...Option) (list []Crossover, completeTo float64, err error) {
+	const call = "tf.Loop.PhaseCrossovers"
+	a, err := l.openForm(call)
+	if err != nil {
+		return nil, 0, err
+	}
+	upTo, err := settingsOf(opt).crossoversUpTo(call)
+	if err != nil {
+		return nil, 0, err
+	}
+	if a.deadTime == 0 {
+		list, err = a.phaseCrossovers()
+		return list, math.Inf(1), err
+	}
+	d, err := a.delayedPhaseCrossovers(upTo)
+	return d.crossovers, d.completeTo, err
+}
+
 // SensitivityPeak returns the supremum of |1/(1+L)| over frequency.
 func (l Loop) SensitivityPeak() (Peak, error) {
 	a, err := l.openForm("tf.Loop.SensitivityPeak")

@@ -247,3 +247,25 @@ func TestDegenerateLoops(t *testing.T) {
 		}
 	}
 }
+
+// The search encloses the peaks that the roots of the derivative give.
+func TestPeakBySearch(t *testing.T) {
+	for _, c := range marginCases(t) {
+		a := c.form(t)
+		if a.deadTime != 0 {
+			continue
+		}
+		s, ok := a.peakBySearch(sensitivityCurve)
+		if !ok {
+			t.Errorf("%s: no peak", c.ID)
+		}
+		check(t, c.ID+": sensitivity peak", s.Magnitude, c.Figures.Sensitivity)
+		check(t, c.ID+": its frequency", s.Frequency, c.Figures.SensitivityAt)
+		s, ok = a.peakBySearch(complementaryCurve)
+		if !ok {
+			t.Errorf("%s: no peak", c.ID)
+		}
+		check(t, c.ID+": complementary peak", s.Magnitude, c.Figures.Complementary)
+		check(t, c.ID+": its frequency", s.Frequency, c.Figures.ComplementaryAt)
+	}
+}

@@ -32,9 +32,13 @@ func (c curve) magnitudes(p axisPoint) (numerator, denominator halfValue) {
 }
 
 // peak returns the supremum of |D/F|, |N/F| or |N/D| over the axis, exact suprema from the
-// roots of the derivative and the two ends.
+// roots of the derivative and the two ends; for high orders enclosed by a search instead, as with
+// dead time.
 func (a *axisForm) peak(c curve) (Peak, error) {
 	if p, ok := a.peakFast(c); ok {
+		return p, nil
+	}
+	if p, ok := a.peakBySearch(c); ok {
 		return p, nil
 	}
 	return a.exactly().peak(c)

@@ -258,3 +258,60 @@ func (a *axisForm) delayedPeak(c curve, phase delayedPhase) (Peak, error) {
 	}
 	return Peak{1 / math.Sqrt(least), at * a.unit}, nil
 }
+
+// peakBySearch encloses the supremum of |D/F| or |N/F| of a rational g on [0, 1] in v and, with
+// reversed polynomials, on [0, 1] in 1/v. It is not ok beside a pole on the axis.
+func (a *axisForm) peakBySearch(c curve) (Peak, bool) {
+	if !a.ok || c == resonanceCurve {
+		return Peak{}, false
+	}
+	top, bottom := a.n, a.d
+	if c == complementaryCurve {
+		top, bottom = bottom, top
+	}
+	ends := c.ends(a)
+	if math.IsNaN(ends[0]) || math.IsNaN(ends[1]) {
+		return Peak{}, false
+	}
+	best := Peak{ends[0], 0}
+	best.better(Peak{ends[1], a.lastFrequency()})
+	direct := newDelayedSum(top, bottom, a.degree, 0)
+	for _, inverted := range [...]bool{false, true} {
+		f := direct
+		if inverted {
+			f = direct.inverted(a.degree)
+		}
+		least, at, ok := f.leastSquare(1, 1/(best.Magnitude*best.Magnitude), -1)
+		if !ok || !(least > 1e-12) {
+			return Peak{}, false
+		}
+		if at < 0 {
+			continue
+		}
+		if p := f.polish(at); p > 0 {
+			if v, _, _ := f.enclose(cell{p, 0}); v <= least*(1+1e-12) {
+				least, at = v, p
+			}
+		}
+		if inverted {
+			at = 1 / at
+		}
+		best = Peak{1 / math.Sqrt(least), a.frequencyAt(at * a.unit)}
+	}
+	return best, true
+}
+
+// inverted returns the sum as a function of 1/v. |A/B| and its phase do not change when both
+// polynomials of this degree are multiplied by v^-degree.
+func (f *delayedSum) inverted(degree int) *delayedSum {
+	reverse := func(p []float64) []float64 {
+		q := make([]float64, degree+1)
+		for i, c := range p {
+			if i <= degree {
+				q[degree-i] = c
+			}
+		}
+		return q
+	}
+	return &delayedSum{reverse(f.aRe), reverse(f.aIm), reverse(f.bRe), reverse(f.bIm), 0, make([]float64, 4*(degree+1))}
+}
