@@ -34,7 +34,7 @@ func between(ctx context.Context, call string, l tf.Loop, from, to tf.Point, in 
 	}
 	g, err := path.Function()
 	if err == nil {
-		return respond(call, g, in)
+		return respond(ctx, call, g, in)
 	}
 	if irrational := (*tf.IrrationalError)(nil); errors.As(err, &irrational) {
 		return delayed(ctx, call, path, in)

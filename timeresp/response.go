@@ -1,6 +1,7 @@
 package timeresp
 
 import (
+	"context"
 	"math"
 
 	"github.com/polewright/polewright/poly"
@@ -28,26 +29,35 @@ var (
 )
 
 // Step returns the response of g to a unit step at t = 0, g at rest before.
+//
+// Of a function of z it is the response to the samples of the step, by the recursion in
+// extended precision, held from each sample to the next; likewise for the other inputs.
+//
+// The error is that of g if it is invalid, a [*poly.ArgumentError] for an improper g, a
+// [*poly.RangeError] where numbers leave the range of float64, and a [*tf.UnsupportedError]
+// where the promised accuracy cannot be kept.
 func Step(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Step", g, unitStep)
+	return respond(context.Background(), "timeresp.Step", g, unitStep)
 }
 
-// Impulse returns the response of g to a unit Dirac impulse at t = 0.
+// Impulse returns the response of g to a unit Dirac impulse at t = 0. The direct part of a
+// biproper g is an impulse itself, see [Response.Impulses]; At has the smooth part. Of a
+// function of z it is the response to a single sample of 1.
 func Impulse(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Impulse", g, unitImpulse)
+	return respond(context.Background(), "timeresp.Impulse", g, unitImpulse)
 }
 
 // Ramp returns the response of g to the input t, from t = 0 on.
 func Ramp(g tf.Function, opt ...Option) (*Response, error) {
-	return respond("timeresp.Ramp", g, unitRamp)
+	return respond(context.Background(), "timeresp.Ramp", g, unitRamp)
 }
 
-func respond(call string, g tf.Function, in Input) (*Response, error) {
+func respond(ctx context.Context, call string, g tf.Function, in Input) (*Response, error) {
 	if err := g.Err(); err != nil {
 		return nil, err
 	}
 	if g.Period() > 0 {
-		return nil, &tf.UnsupportedError{Call: call, What: "a function of z"}
+		return sampledResponse(ctx, call, g, in, call == "timeresp.Impulse")
 	}
 	roots, err := g.Poles()
 	if err != nil {

@@ -25,7 +25,7 @@ func (r *Response) limit() float64 {
 	if len(r.arcs) == 1 {
 		return r.arcs[0].signal.ultimate()
 	}
-	if _, ok := r.arcs[0].signal.(*kernel); !ok {
+	if _, ok := r.arcs[0].signal.(*kernel); !ok { // loops with dead time
 		sum := 0.0
 		for i := range r.arcs {
 			sum += r.arcs[i].signal.ultimate()
