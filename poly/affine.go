@@ -22,8 +22,7 @@ func (p Poly) Affine(a, b float64) Poly {
 			return invalid(&ArgumentError{Call: call, Argument: x.name, Reason: fmt.Sprintf("%v is not a finite number", x.value)})
 		}
 	}
-	c, e := p.integers().Affine(exact.Float(a), exact.Float(b)).Integers()
-	q := fromScaled(scaled{c, e})
+	q := fromInteger(p.integers().Affine(exact.Float(a), exact.Float(b)))
 	if a != 0 {
 		q.given = movedRoots(p.given, a, b)
 	}
@@ -73,6 +72,5 @@ func (p Poly) Reverse() Poly {
 	if p.err != nil {
 		return invalid(p.err)
 	}
-	c, e := p.integers().Reverse().Integers()
-	return fromScaled(scaled{c, e})
+	return fromInteger(p.integers().Reverse())
 }

@@ -3,19 +3,108 @@ package poly
 import (
 	"fmt"
 	"math"
-	"math/big"
 )
 
-// Each operation first works in float64 and watches for the first rounding. Only if there
-// was one does it start again on integers.
+// Each operation works on sums of three float64 that take every rounding error in. Only where
+// that is not enough does it start again on integers.
+
+// A triple is the exact sum of three numbers, as long as whole holds.
+type triple struct {
+	a, b, c float64
+	broken  bool
+}
+
+// add adds x.
+func (t *triple) add(x float64) {
+	var lost float64
+	t.a, lost = twoSum(t.a, x)
+	if lost == 0 {
+		return
+	}
+	t.b, lost = twoSum(t.b, lost)
+	if lost == 0 {
+		return
+	}
+	t.c, lost = twoSum(t.c, lost)
+	t.broken = t.broken || lost != 0 // also for NaN, after an overflow
+}
+
+// addProduct adds x·y.
+func (t *triple) addProduct(x, y float64) {
+	if x == 0 || y == 0 {
+		return
+	}
+	product, lost := twoProduct(x, y)
+	t.add(product)
+	if lost != 0 {
+		t.add(lost) // NaN breaks it
+	}
+}
+
+// settle makes a the float64 nearest to the sum and b the one nearest to the rest.
+func (t *triple) settle() {
+	if t.b == 0 && t.c == 0 {
+		return
+	}
+	t.b, t.c = twoSum(t.b, t.c)
+	t.a, t.b = twoSum(t.a, t.b)
+	t.b, t.c = twoSum(t.b, t.c)
+	// Beside a tie the smallest part decides.
+	if t.a+t.b*(1+0x1p-40) != t.a {
+		t.broken = true
+	}
+}
+
+// fromTriples makes a polynomial of exact sums by power; it is not ok if one is broken.
+func fromTriples(sums []triple) (Poly, bool) {
+	n := 0
+	layers := 0
+	for i := range sums {
+		t := &sums[i]
+		t.settle()
+		switch {
+		case t.broken || t.a-t.a != 0:
+			return Poly{}, false
+		case t.a != 0:
+			n = i + 1
+		}
+		if t.c != 0 {
+			layers = 2
+		} else if t.b != 0 {
+			layers = max(layers, 1)
+		}
+	}
+	if n == 0 {
+		return Poly{}, true
+	}
+	all := make([]float64, n*(1+layers))
+	p := Poly{c: all[:n:n]}
+	if layers > 0 {
+		p.rest = all[n:]
+	}
+	for i := range sums[:n] {
+		t := &sums[i]
+		p.c[i] = t.a
+		if layers > 0 {
+			p.rest[i] = t.b
+		}
+		if layers > 1 {
+			p.rest[n+i] = t.c
+		}
+	}
+	return p, true
+}
+
+// smallSums is room for the sums of most operations on the stack.
+const smallSums = 25
 
 // Add returns p + q, exactly.
-func (p Poly) Add(q Poly) Poly { return p.combine(q, false) }
+func (p Poly) Add(q Poly) Poly { return p.combine(q, 1) }
 
 // Sub returns p - q, exactly.
-func (p Poly) Sub(q Poly) Poly { return p.combine(q, true) }
+func (p Poly) Sub(q Poly) Poly { return p.combine(q, -1) }
 
-func (p Poly) combine(q Poly, subtract bool) Poly {
+func (p Poly) combine(q Poly, sign float64) Poly {
 	if p.err != nil {
 		return invalid(p.err)
 	}
@@ -23,55 +112,34 @@ func (p Poly) combine(q Poly, subtract bool) Poly {
 		return invalid(q.err)
 	}
 	if p.exact == nil && q.exact == nil {
-		c := make([]float64, max(len(p.c), len(q.c)))
-		exact := true
-		for i := range c {
-			a, b := p.Coefficient(i), q.Coefficient(i)
-			if subtract {
-				b = -b
-			}
-			var lost float64
-			c[i], lost = twoSum(a, b)
-			exact = exact && lost == 0 // also false for NaN, after an overflow
+		var room [smallSums]triple
+		sums := room[:]
+		if n := max(len(p.c), len(q.c)); n <= len(room) {
+			sums = sums[:n]
+		} else {
+			sums = make([]triple, n)
 		}
-		if exact {
-			return fromExact(c)
+		for i, x := range p.c {
+			sums[i].a = x
 		}
-	}
-	x, y := p.scaled(), q.scaled()
-	e := min(x.exponent, y.exponent)
-	if len(x.integers) == 0 {
-		e = y.exponent
-	} else if len(y.integers) == 0 {
-		e = x.exponent
-	}
-	sum := make([]*big.Int, max(len(x.integers), len(y.integers)))
-	for i := range sum {
-		sum[i] = new(big.Int)
-		if i < len(x.integers) {
-			sum[i].Lsh(x.integers[i], uint(x.exponent-e))
+		for i, x := range p.rest {
+			sums[i%len(p.c)].add(x)
 		}
-		if i < len(y.integers) {
-			t := new(big.Int).Lsh(y.integers[i], uint(y.exponent-e))
-			if subtract {
-				sum[i].Sub(sum[i], t)
-			} else {
-				sum[i].Add(sum[i], t)
-			}
+		for i, x := range q.c {
+			sums[i].add(sign * x)
+		}
+		for i, x := range q.rest {
+			sums[i%len(q.c)].add(sign * x)
+		}
+		if r, ok := fromTriples(sums); ok {
+			return r
 		}
 	}
-	return fromScaled(scaled{sum, e})
-}
-
-// fromExact makes a polynomial of c by power, which it keeps.
-func fromExact(c []float64) Poly {
-	for len(c) > 0 && c[len(c)-1] == 0 {
-		c = c[:len(c)-1]
+	x, y := p.integers(), q.integers()
+	if sign < 0 {
+		return fromInteger(x.Sub(y))
 	}
-	if len(c) == 0 {
-		return Poly{}
-	}
-	return Poly{c: c}
+	return fromInteger(x.Add(y))
 }
 
 // Mul returns p·q, exactly. If the roots of both were given, they are those of the product.
@@ -95,28 +163,34 @@ func (p Poly) Mul(q Poly) Poly {
 }
 
 func (p Poly) product(q Poly) Poly {
-	if p.exact == nil && q.exact == nil {
-		c := make([]float64, len(p.c)+len(q.c)-1)
-		exact := true
-		for i, a := range p.c {
-			for j, b := range q.c {
-				if a == 0 || b == 0 {
-					continue
-				}
-				y, lostY := twoProduct(a, b)
-				z, lostZ := twoSum(c[i+j], y)
-				exact = exact && lostY == 0 && lostZ == 0
-				c[i+j] = z
-			}
-			if !exact {
-				break
+	if p.exact == nil && q.exact == nil && (p.rest == nil || q.rest == nil) {
+		var room [smallSums]triple
+		sums := room[:]
+		if n := len(p.c) + len(q.c) - 1; n <= len(room) {
+			sums = sums[:n]
+		} else {
+			sums = make([]triple, n)
+		}
+		for i, x := range p.c {
+			for j, y := range q.c {
+				sums[i+j].addProduct(x, y)
 			}
 		}
-		if exact {
-			return fromExact(c)
+		for i, x := range p.rest {
+			for j, y := range q.c {
+				sums[i%len(p.c)+j].addProduct(x, y)
+			}
+		}
+		for j, y := range q.rest {
+			for i, x := range p.c {
+				sums[i+j%len(q.c)].addProduct(x, y)
+			}
+		}
+		if r, ok := fromTriples(sums); ok {
+			return r
 		}
 	}
-	return fromScaled(p.scaled().mul(q.scaled()))
+	return fromInteger(p.integers().Mul(q.integers()))
 }
 
 // Scale returns c·p, exactly. Given roots stay.
@@ -127,7 +201,7 @@ func (p Poly) Scale(c float64) Poly {
 	if math.IsNaN(c) || math.IsInf(c, 0) {
 		return invalid(&ArgumentError{Call: "poly.Poly.Scale", Argument: "c", Reason: fmt.Sprintf("%v is not a finite number", c)})
 	}
-	if c == 0 {
+	if c == 0 || len(p.c) == 0 {
 		return Poly{}
 	}
 	r := p.product(Poly{c: []float64{c}})
@@ -144,25 +218,21 @@ func (p Poly) Derivative() Poly {
 		return Poly{}
 	}
 	if p.exact == nil {
-		c := make([]float64, len(p.c)-1)
-		exact := true
-		for i := range c {
-			if p.c[i+1] != 0 {
-				var lost float64
-				c[i], lost = twoProduct(float64(i+1), p.c[i+1])
-				exact = exact && lost == 0
+		n := len(p.c)
+		sums := make([]triple, n-1)
+		for i, x := range p.c[1:] {
+			sums[i].addProduct(float64(i+1), x)
+		}
+		for i, x := range p.rest {
+			if i %= n; i > 0 {
+				sums[i-1].addProduct(float64(i), x)
 			}
 		}
-		if exact {
-			return fromExact(c)
+		if r, ok := fromTriples(sums); ok {
+			return r
 		}
 	}
-	x := p.scaled()
-	d := make([]*big.Int, len(x.integers)-1)
-	for i := range d {
-		d[i] = new(big.Int).Mul(x.integers[i+1], big.NewInt(int64(i+1)))
-	}
-	return fromScaled(scaled{d, x.exponent})
+	return fromInteger(p.integers().Derivative())
 }
 
 // twoSum returns a + b rounded and what the rounding lost, exactly (Knuth, The Art of

@@ -57,7 +57,7 @@ func divideByInteger(p exact.Poly, n *big.Int) (Poly, bool) {
 			return roundedQuotient(c, odd, e), false
 		}
 	}
-	return fromScaled(scaled{whole, e}), true
+	return fromInteger(exact.New(whole, e)), true
 }
 
 // roundedQuotient returns Σ c[i]/n·2^e·sⁱ with coefficients rounded to nearest. A coefficient

@@ -4,6 +4,8 @@ import (
 	"math"
 	"math/big"
 	"math/cmplx"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // unitRoundoff is half the distance from 1 to the next float64.
@@ -45,7 +47,7 @@ func (p Poly) At(x float64) float64 {
 	if math.Abs(y) >= 0x1p52*(unitRoundoff*m) {
 		return y
 	}
-	re, _, e := p.scaled().at(x, 0)
+	re, _, e := exactAt(p.integers(), x, 0)
 	y, _ = nearest(re, e)
 	return y
 }
@@ -53,7 +55,7 @@ func (p Poly) At(x float64) float64 {
 // sign returns the sign of an exact coefficient.
 func (p Poly) sign(power int) int {
 	if p.exact != nil {
-		return p.exact.integers[power].Sign()
+		return p.exact.Coefficient(power).Sign()
 	}
 	switch c := p.c[power]; {
 	case c > 0:
@@ -86,16 +88,17 @@ func (p Poly) AtComplex(s complex128) complex128 {
 	if math.Abs(re)+math.Abs(im) >= 0x1p54*(unitRoundoff*m) {
 		return complex(re, im)
 	}
-	x, y, e := p.scaled().at(a, b)
+	x, y, e := exactAt(p.integers(), a, b)
 	re, _ = nearest(x, e)
 	im, _ = nearest(y, e)
 	return complex(re, im)
 }
 
-// at returns p(a + jb) = (re + j·im)·2^e exactly, for finite a and b.
-func (x scaled) at(a, b float64) (re, im *big.Int, e int) {
+// exactAt returns p(a + jb) = (re + j·im)·2^e exactly, for finite a and b.
+func exactAt(p exact.Poly, a, b float64) (re, im *big.Int, e int) {
+	integers, exponent := p.Integers()
 	re, im = new(big.Int), new(big.Int)
-	n := len(x.integers)
+	n := len(integers)
 	if n == 0 {
 		return re, im, 0
 	}
@@ -107,7 +110,7 @@ func (x scaled) at(a, b float64) (re, im *big.Int, e int) {
 		}
 	}
 	if q == math.MaxInt {
-		return re.Set(x.integers[0]), im, x.exponent
+		return re.Set(integers[0]), im, exponent
 	}
 	u, v := whole(a, q), whole(b, q)
 	if q > 0 {
@@ -123,9 +126,9 @@ func (x scaled) at(a, b float64) (re, im *big.Int, e int) {
 		t2.Mul(re, v)
 		im.Mul(im, u)
 		im.Add(im, &t2)
-		re.Add(&t1, c.Lsh(x.integers[i], uint(-q*(n-1-i))))
+		re.Add(&t1, c.Lsh(integers[i], uint(-q*(n-1-i))))
 	}
-	return re, im, x.exponent + q*(n-1)
+	return re, im, exponent + q*(n-1)
 }
 
 // whole returns x/2^q, a whole number.

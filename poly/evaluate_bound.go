@@ -16,7 +16,7 @@ func (p Poly) Evaluate(x float64) (value, bound float64) {
 	case p.err != nil || math.IsNaN(x-x) || math.IsInf(value, 0):
 		return value, math.Inf(1)
 	case math.Abs(value) < evaluateByAt:
-		re, _, e := p.scaled().at(x, 0)
+		re, _, e := exactAt(p.integers(), x, 0)
 		return roundedWithBound(re, e)
 	}
 	return value, boundOfAt(math.Abs(value))
@@ -31,7 +31,7 @@ func (p Poly) EvaluateComplex(s complex128) (value complex128, bound float64) {
 	case math.IsNaN(modulus) || math.IsInf(modulus, 0):
 		return value, math.Inf(1)
 	case modulus < evaluateByAt:
-		re, im, e := p.scaled().at(real(s), imag(s))
+		re, im, e := exactAt(p.integers(), real(s), imag(s))
 		x, boundX := roundedWithBound(re, e)
 		y, boundY := roundedWithBound(im, e)
 		return complex(x, y), hypotUp(boundX, boundY)

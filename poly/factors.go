@@ -60,7 +60,7 @@ func normalised(p exact.Poly) Poly {
 		p = p.Neg()
 	}
 	c, _ := p.Primitive().Integers()
-	return fromScaled(scaled{c, 1 - c[len(c)-1].BitLen()})
+	return fromInteger(exact.New(c, 1-c[len(c)-1].BitLen()))
 }
 
 // CommonFactor returns the greatest common factor of p and q, as far as their roots agree to

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // FromRoots returns lead·∏(s - root), exactly, and remembers the roots: [Poly.Roots] returns
@@ -43,7 +45,7 @@ func FromRoots(lead float64, roots ...complex128) (Poly, error) {
 			return invalid(err), err
 		}
 	}
-	p := fromScaled(productOfRoots(lead, given))
+	p := fromInteger(productOfRoots(lead, given))
 	if len(given) > 0 {
 		p.given = given
 	}
@@ -52,26 +54,26 @@ func FromRoots(lead float64, roots ...complex128) (Poly, error) {
 
 // productOfRoots multiplies lead·∏(s - root) out in integers, by halves, so that the long
 // factors meet only at the end.
-func productOfRoots(lead float64, roots []complex128) scaled {
-	var factors []scaled
+func productOfRoots(lead float64, roots []complex128) exact.Poly {
+	var factors []exact.Poly
 	for _, s := range roots {
 		if imag(s) == 0 {
-			factors = append(factors, New(1, -real(s)).scaled())
+			factors = append(factors, New(1, -real(s)).integers())
 		} else if imag(s) > 0 {
 			re, im := New(real(s)), New(imag(s))
 			linear := re.Scale(-2)
 			square := re.Mul(re).Add(im.Mul(im))
 			quadratic := New(1, 0, 0).Add(linear.Mul(New(1, 0))).Add(square)
-			factors = append(factors, quadratic.scaled())
+			factors = append(factors, quadratic.integers())
 		}
 	}
 	m, e := integer(lead)
-	factors = append(factors, scaled{[]*big.Int{big.NewInt(m)}, e})
+	factors = append(factors, exact.New([]*big.Int{big.NewInt(m)}, e))
 	for len(factors) > 1 {
 		half := factors[:0]
 		for i := 0; i < len(factors); i += 2 {
 			if i+1 < len(factors) {
-				half = append(half, factors[i].mul(factors[i+1]))
+				half = append(half, factors[i].Mul(factors[i+1]))
 			} else {
 				half = append(half, factors[i])
 			}
@@ -79,27 +81,6 @@ func productOfRoots(lead float64, roots []complex128) scaled {
 		factors = half
 	}
 	return factors[0]
-}
-
-// mul returns x·y.
-func (x scaled) mul(y scaled) scaled {
-	if len(x.integers) == 0 || len(y.integers) == 0 {
-		return scaled{}
-	}
-	product := make([]*big.Int, len(x.integers)+len(y.integers)-1)
-	for i := range product {
-		product[i] = new(big.Int)
-	}
-	t := new(big.Int)
-	for i, a := range x.integers {
-		if a.Sign() == 0 {
-			continue
-		}
-		for j, b := range y.integers {
-			product[i+j].Add(product[i+j], t.Mul(a, b))
-		}
-	}
-	return scaled{product, x.exponent + y.exponent}
 }
 
 // GivenRoots returns the roots that the polynomial was made from, each as often as it was

@@ -5,6 +5,8 @@ import (
 	"encoding/json"
 	"fmt"
 	"strconv"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // MarshalJSON writes the coefficients, highest power first, as an array: [1,6,11,6]. A
@@ -203,7 +205,7 @@ func rememberRoots(p Poly, data []byte) (Poly, error) {
 		return Poly{}, &FormatError{Place: "roots", Reason: err.Error()}
 	}
 	n := len(p.c) - 1
-	lead := constant(p.scaled(), n)
+	lead := constant(p.integers(), n)
 	product := monic.Mul(lead)
 	if !product.Equal(p) {
 		return Poly{}, &FormatError{Place: "roots", Reason: "they are not the roots of the coefficients"}
@@ -213,6 +215,7 @@ func rememberRoots(p Poly, data []byte) (Poly, error) {
 }
 
 // constant returns a coefficient as a polynomial of degree 0.
-func constant(x scaled, power int) Poly {
-	return fromScaled(scaled{x.integers[power : power+1 : power+1], x.exponent})
+func constant(x exact.Poly, power int) Poly {
+	integers, exponent := x.Integers()
+	return fromInteger(exact.New(integers[power:power+1], exponent))
 }

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // Poly is a polynomial with real coefficients, highest power first: New(1, 6, 11, 6) is
@@ -16,15 +18,10 @@ import (
 // invalid too.
 type Poly struct {
 	c     []float64    // by power, c[i] of sⁱ, rounded to nearest; the last stands for a coefficient that is not zero
-	exact *scaled      // nil where c is exact
+	rest  []float64    // what c lacks: one number for each coefficient, or two that add up to it; or
+	exact *exact.Poly  // the polynomial itself, where that is not enough; both nil where c is exact
 	given []complex128 // the roots, if they were given; nil if not
 	err   error        // what is wrong with an invalid polynomial
-}
-
-// scaled is the polynomial 2^exponent · Σ integers[i]·sⁱ. Nothing changes it.
-type scaled struct {
-	integers []*big.Int
-	exponent int
 }
 
 // New returns the polynomial with the given coefficients, highest power first. Leading
@@ -70,12 +67,12 @@ func (p Poly) Coefficient(power int) float64 {
 // coefficients by power (lowest first), the last not zero. The caller owns the result. The
 // zero polynomial and an invalid one give no coefficients.
 func (p Poly) Integers() (coefficients []*big.Int, exponent int) {
-	x := p.scaled()
-	coefficients = make([]*big.Int, len(x.integers))
-	for i, n := range x.integers {
+	shared, exponent := p.integers().Integers()
+	coefficients = make([]*big.Int, len(shared))
+	for i, n := range shared {
 		coefficients[i] = new(big.Int).Set(n)
 	}
-	return coefficients, x.exponent
+	return coefficients, exponent
 }
 
 // FromIntegers returns the polynomial 2^exponent · Σ coefficients[i]·sⁱ, exactly; the
@@ -85,42 +82,44 @@ func FromIntegers(coefficients []*big.Int, exponent int) Poly {
 	for i, n := range coefficients {
 		own[i] = new(big.Int).Set(n)
 	}
-	return fromScaled(scaled{own, exponent})
+	return fromInteger(exact.New(own, exponent))
 }
 
-// scaled returns the exact polynomial. The integers may be shared: nobody changes them.
-func (p Poly) scaled() scaled {
-	if p.err != nil {
-		return scaled{}
-	}
-	if p.exact != nil {
+// integers returns the exact polynomial; the zero polynomial for an invalid one.
+func (p Poly) integers() exact.Poly {
+	switch {
+	case p.err != nil:
+		return exact.Poly{}
+	case p.exact != nil:
 		return *p.exact
 	}
 	// The smallest exponent of a last bit becomes the common one.
 	common := math.MaxInt
-	for _, c := range p.c {
-		if c != 0 {
-			common = min(common, lastBit(c))
-		}
-	}
-	x := scaled{make([]*big.Int, len(p.c)), common}
-	if len(p.c) == 0 {
-		x.exponent = 0
-	}
-	for i, c := range p.c {
-		m, e := integer(c)
-		n := big.NewInt(m)
-		if c != 0 {
-			if e >= common {
-				n.Lsh(n, uint(e-common))
-			} else {
-				n.Rsh(n, uint(common-e)) // trailing zeros of m
+	for _, part := range [...][]float64{p.c, p.rest} {
+		for _, x := range part {
+			if x != 0 {
+				common = min(common, lastBit(x))
 			}
 		}
-		x.integers[i] = n
 	}
-	return x
+	integers := make([]*big.Int, len(p.c))
+	for i, x := range p.c {
+		integers[i] = whole(x, common)
+	}
+	for i, x := range p.rest {
+		if x != 0 {
+			n := integers[i%len(p.c)]
+			n.Add(n, whole(x, common))
+		}
+	}
+	if len(integers) == 0 {
+		common = 0
+	}
+	return exact.New(integers, common)
 }
+
+// inexact tells whether c is not the whole truth.
+func (p Poly) inexact() bool { return p.rest != nil || p.exact != nil }
 
 // integer splits a finite x into m·2^e with integer m.
 func integer(x float64) (m int64, e int) {
@@ -148,22 +147,20 @@ func lastBit(x float64) int {
 	return e
 }
 
-// fromScaled makes a polynomial of x, which it keeps.
-func fromScaled(x scaled) Poly {
-	for len(x.integers) > 0 && x.integers[len(x.integers)-1].Sign() == 0 {
-		x.integers = x.integers[:len(x.integers)-1]
-	}
-	if len(x.integers) == 0 {
+// fromInteger makes a polynomial of x.
+func fromInteger(x exact.Poly) Poly {
+	integers, exponent := x.Integers()
+	if len(integers) == 0 {
 		return Poly{}
 	}
-	p := Poly{c: make([]float64, len(x.integers))}
-	exact := true
-	for i, n := range x.integers {
+	p := Poly{c: make([]float64, len(integers))}
+	whole := true
+	for i, n := range integers {
 		var ok bool
-		p.c[i], ok = nearest(n, x.exponent)
-		exact = exact && ok
+		p.c[i], ok = nearest(n, exponent)
+		whole = whole && ok
 	}
-	if !exact {
+	if !whole {
 		p.exact = &x
 	}
 	return p
@@ -171,15 +168,20 @@ func fromScaled(x scaled) Poly {
 
 // low returns what c lacks to the exact coefficients, rounded to nearest. It is not ok where
 // that loses digits to underflow: the stages that scale their terms up would miss them.
-func (x scaled) low(c []float64) (lo []float64, ok bool) {
-	lo = make([]float64, len(c))
-	for i, n := range x.integers {
-		if math.IsInf(c[i], 0) {
+func (p Poly) low() (lo []float64, ok bool) {
+	if p.exact == nil {
+		// Products below 2⁻⁹⁰⁰ do not get here: nothing underflows.
+		return p.rest[:min(len(p.c), len(p.rest))], true
+	}
+	integers, exponent := p.exact.Integers()
+	lo = make([]float64, len(p.c))
+	for i, n := range integers {
+		if math.IsInf(p.c[i], 0) {
 			continue // of no use, and found out later
 		}
 		f := new(big.Float).SetInt(n)
-		f.SetMantExp(f, x.exponent)
-		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(c[i])
+		f.SetMantExp(f, exponent)
+		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(p.c[i])
 		rest.Sub(f, rest)
 		lo[i], _ = rest.Float64()
 		if rest.Sign() != 0 && math.Abs(lo[i]) < minNormal {
@@ -208,16 +210,13 @@ func nearest(n *big.Int, e int) (float64, bool) {
 // Equal reports whether both are the same polynomial, by their exact coefficients. An invalid
 // polynomial equals none. Whether roots were given makes no difference.
 func (p Poly) Equal(q Poly) bool {
-	if p.err != nil || q.err != nil || len(p.c) != len(q.c) || (p.exact == nil) != (q.exact == nil) {
+	if p.err != nil || q.err != nil || len(p.c) != len(q.c) || p.inexact() != q.inexact() {
 		return false
 	}
-	if p.exact == nil {
-		for i, c := range p.c {
-			if c != q.c[i] {
-				return false
-			}
+	for i, c := range p.c {
+		if c != q.c[i] {
+			return false
 		}
-		return true
 	}
-	return p.Sub(q).Degree() < 0
+	return !p.inexact() || p.Sub(q).Degree() < 0
 }

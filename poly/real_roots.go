@@ -128,12 +128,6 @@ func (p Poly) holdsReal(r Root, lo, hi float64, ends exact.Ends) bool {
 	return len(p.integers().Isolate(a, b, part)) > 0
 }
 
-// integers returns the polynomial for package exact.
-func (p Poly) integers() exact.Poly {
-	x := p.scaled()
-	return exact.New(x.integers, x.exponent)
-}
-
 // realRootsExact is the stage that does without [Poly.Roots].
 func (p Poly) realRootsExact(call string, lo, hi float64, ends exact.Ends) ([]Root, error) {
 	q := p.integers()

@@ -13,12 +13,12 @@ import (
 
 // exactly is the stage that answers whatever the polynomial, which has so many roots at 0.
 func (s *Solver) exactly(p Poly, zeros int, call string) ([]Root, error) {
-	x := p.scaled()
+	x, _ := p.integers().StripZero()
 	var all []located
 	if zeros > 0 {
 		all = append(all, located{multiplicity: zeros, distinct: 1})
 	}
-	for _, f := range exact.New(x.integers[zeros:], 0).SquareFree() {
+	for _, f := range x.SquareFree() {
 		found, err := s.simple(f.Poly, call)
 		if err != nil {
 			return nil, err

@@ -75,9 +75,9 @@ func (p Poly) RouthTable() (RouthTable, error) {
 	if n > maxTableDegree {
 		return RouthTable{}, &ArgumentError{Call: call, Argument: "p", Reason: fmt.Sprintf("degree %d; at most %d", n, maxTableDegree)}
 	}
-	x := p.scaled()
-	unit := new(big.Rat).SetInt(new(big.Int).Lsh(big.NewInt(1), uint(max(x.exponent, -x.exponent))))
-	if x.exponent < 0 {
+	integers, exponent := p.integers().Integers()
+	unit := new(big.Rat).SetInt(new(big.Int).Lsh(big.NewInt(1), uint(max(exponent, -exponent))))
+	if exponent < 0 {
 		unit.Inv(unit)
 	}
 	var table RouthTable
@@ -88,7 +88,7 @@ func (p Poly) RouthTable() (RouthTable, error) {
 		next := make([]*big.Rat, power/2+1)
 		if power >= n-1 {
 			for i := range next {
-				next[i] = new(big.Rat).SetInt(x.integers[power-2*i])
+				next[i] = new(big.Rat).SetInt(integers[power-2*i])
 				next[i].Mul(next[i], unit)
 			}
 		} else {

@@ -40,8 +40,8 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 	}
 	var lo []float64
 	usable := true
-	if p.exact != nil {
-		if lo, usable = p.exact.low(p.c); usable {
+	if p.inexact() {
+		if lo, usable = p.low(); usable {
 			lo = lo[zeros:]
 		}
 	}

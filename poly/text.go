@@ -8,6 +8,8 @@ import (
 	"strings"
 	"unicode"
 	"unicode/utf8"
+
+	"github.com/polewright/polewright/internal/exact"
 )
 
 // maxExponent bounds the binary exponents that [Parse] accepts, so that a short text cannot
@@ -35,8 +37,9 @@ func (p Poly) Text(variable string, format byte, precision int) string {
 		x := p.c[power]
 		if x == 0 || math.IsInf(x, 0) {
 			// Not zero, but beyond the range of float64.
-			f := new(big.Float).SetPrec(53).SetInt(p.exact.integers[power])
-			return f.SetMantExp(f, p.exact.exponent).Text(format, precision)
+			integers, exponent := p.integers().Integers()
+			f := new(big.Float).SetPrec(53).SetInt(integers[power])
+			return f.SetMantExp(f, exponent).Text(format, precision)
 		}
 		return strconv.FormatFloat(x, format, precision, 64)
 	})
@@ -148,10 +151,10 @@ func (p Poly) MarshalText() ([]byte, error) {
 
 // exactText writes a coefficient without loss: decimal if it is a float64, else hexadecimal.
 func (p Poly) exactText(power int) string {
-	if p.exact != nil {
-		n := p.exact.integers[power]
-		if x, ok := nearest(n, p.exact.exponent); !ok || x == 0 && n.Sign() != 0 {
-			e := p.exact.exponent
+	if p.inexact() {
+		integers, e := p.integers().Integers()
+		n := integers[power]
+		if x, ok := nearest(n, e); !ok || x == 0 && n.Sign() != 0 {
 			if zeros := n.TrailingZeroBits(); zeros > 0 {
 				n = new(big.Int).Rsh(n, zeros)
 				e += int(zeros)
@@ -264,24 +267,24 @@ const joinedBits = 1 << 28
 // that would take too much memory.
 func joinConstants(coefficients []Poly) (Poly, bool) {
 	common, found := 0, false
-	parts := make([]scaled, len(coefficients))
+	parts := make([]exact.Poly, len(coefficients))
 	for i, c := range coefficients {
-		parts[i] = c.scaled()
-		if len(parts[i].integers) > 0 && (!found || parts[i].exponent < common) {
-			common, found = parts[i].exponent, true
+		parts[i] = c.integers()
+		if _, e := parts[i].Integers(); !parts[i].IsZero() && (!found || e < common) {
+			common, found = e, true
 		}
 	}
 	joined, bits := make([]*big.Int, len(parts)), 0
 	for i, part := range parts {
 		joined[i] = new(big.Int)
-		if len(part.integers) > 0 {
-			if bits += part.exponent - common; bits > joinedBits {
+		if integers, e := part.Integers(); len(integers) > 0 {
+			if bits += e - common; bits > joinedBits {
 				return Poly{}, false
 			}
-			joined[i].Lsh(part.integers[0], uint(part.exponent-common))
+			joined[i].Lsh(integers[0], uint(e-common))
 		}
 	}
-	return fromScaled(scaled{joined, common}), true
+	return fromInteger(exact.New(joined, common)), true
 }
 
 // term reads a number, a power of the variable, or both.
@@ -447,5 +450,5 @@ func parseExact(text string) (c Poly, reason string) {
 	}
 	e := f.MantExp(nil) - int(f.MinPrec())
 	n, _ := new(big.Float).SetMantExp(f, -e).Int(nil)
-	return fromScaled(scaled{[]*big.Int{n}, e}), ""
+	return fromInteger(exact.New([]*big.Int{n}, e)), ""
 }
