@@ -35,7 +35,7 @@ func (p Poly) CountLeftOf(sigma float64) (Count, error) {
 	case math.IsInf(sigma, -1):
 		return Count{Outside: n}, nil
 	}
-	if c, ok := exact.FilterLeftOf(p.c, p.exact != nil, sigma); ok {
+	if c, ok := exact.FilterLeftOf(p.c, p.inexact(), sigma); ok {
 		return Count(c), nil
 	}
 	return Count(exact.LeftOf(p.integers(), exact.Float(sigma))), nil
@@ -65,7 +65,7 @@ func (p Poly) CountInSector(zeta float64) (Count, error) {
 		_, on := p.integers().CountReal(exact.Float(math.Inf(-1)), exact.Float(0), exact.OpenClosed)
 		return Count{Boundary: on, Outside: p.Degree() - on}, nil
 	}
-	if c, ok := exact.FilterInSector(p.c, p.exact != nil, zeta); ok {
+	if c, ok := exact.FilterInSector(p.c, p.inexact(), zeta); ok {
 		return Count(c), nil
 	}
 	return Count(exact.InSector(p.integers(), exact.Float(zeta))), nil
@@ -95,7 +95,7 @@ func (p Poly) CountInDisc(radius float64) (Count, error) {
 		_, zeros := p.integers().StripZero()
 		return Count{Boundary: zeros, Outside: n - zeros}, nil
 	}
-	if c, ok := exact.FilterInDisc(p.c, p.exact != nil, radius); ok {
+	if c, ok := exact.FilterInDisc(p.c, p.inexact(), radius); ok {
 		return Count(c), nil
 	}
 	return Count(exact.InDisc(p.integers(), exact.Float(radius))), nil

@@ -143,7 +143,7 @@ func TestCountsStages(t *testing.T) {
 			continue
 		}
 		total++
-		if got, ok := exact.FilterLeftOf(p.c, p.exact != nil, 0); ok {
+		if got, ok := exact.FilterLeftOf(p.c, p.inexact(), 0); ok {
 			settled++
 			table, err := p.RouthTable()
 			if err != nil || Count(got) != table.Count {
