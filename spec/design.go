@@ -102,7 +102,9 @@ type RuleGain struct {
 
 // Design looks for the windows of gains as [Sheet.Windows] does, recommends a gain and
 // reports on it, or says why there is none. By default it recommends the gain with the
-// greatest smallest slack over all requirements and loops.
+// greatest smallest slack over all requirements and loops; where that gain stands on a jump
+// of a figure, such as a settling time at an extremum that touches the band, the one with the
+// greatest smallest slack within 2 % on both sides.
 func (s Sheet) Design(ctx context.Context, loops []tf.Loop, opt ...Option) (Design, error) {
 	set := newSettings(opt)
 	h, err := s.hunt("spec.Sheet.Design", loops, set)
@@ -294,11 +296,59 @@ func (h *hunt) recommend(ctx context.Context, g Gains) (gain float64, unbounded 
 		if err != nil {
 			return nan, false, "", err
 		}
+		if k, c, err = h.awayFromJumps(ctx, g, w, k, c, cost); err != nil {
+			return nan, false, "", err
+		}
 		if math.IsNaN(gain) || c < best {
 			best, gain, unbounded = c, k, open
 		}
 	}
 	return gain, unbounded, "", nil
+}
+
+// awayFromJumps moves a gain that stands on a jump of a figure, where the least change would
+// lose the slack that it was chosen for: it is replaced by the gain with the least worst cost
+// within 2 % on both sides (a quarter of the window, if that is less).
+func (h *hunt) awayFromJumps(ctx context.Context, g Gains, w GainWindow, k, c float64, cost func(float64) (float64, error)) (float64, float64, error) {
+	if w.Lo.Gain == w.Hi.Gain || math.IsInf(c, 0) {
+		return k, c, nil
+	}
+	hair := 1e-7 * k
+	onJump := false
+	for _, x := range [2]float64{k - hair, k + hair} {
+		d, err := cost(x)
+		if err != nil {
+			return 0, 0, err
+		}
+		onJump = onJump || d > c+0.02*math.Abs(c)+1e-4
+	}
+	if !onJump {
+		return k, c, nil
+	}
+	room := func(k float64) float64 {
+		r := 0.02 * k
+		if !math.IsInf(w.Hi.Gain, 1) {
+			r = math.Min(r, (w.Hi.Gain-w.Lo.Gain)/4)
+		}
+		return r
+	}
+	worst := func(k float64) (float64, error) {
+		m := math.Inf(-1)
+		for _, x := range [5]float64{-1, -0.5, 0, 0.5, 1} {
+			d, err := cost(k + x*room(k))
+			if err != nil {
+				return 0, err
+			}
+			m = math.Max(m, d)
+		}
+		return m, nil
+	}
+	k, _, _, err := h.best(ctx, g, w, worst)
+	if err != nil {
+		return 0, 0, err
+	}
+	c, err = cost(k)
+	return k, c, err
 }
 
 // effortAt returns the largest effort for the unit step over all loops.

@@ -136,7 +136,16 @@ func mergeRoots(a, b []poly.Root) []poly.Root {
 // Response returns the unit step response from reference to output.
 func (e *Evidence) Response() (*timeresp.Response, error) {
 	if e.response == nil && e.responseErr == nil {
-		e.response, e.responseErr = timeresp.StepOf(e.loop)
+		if !e.m.rational() {
+			e.response, e.responseErr = timeresp.StepOf(e.loop)
+			return e.response, e.responseErr
+		}
+		g, err := tf.New(e.m.output().at(1), product(e.m.character.at(1), e.m.prefilter))
+		if err != nil {
+			e.responseErr = err
+			return nil, err
+		}
+		e.response, e.responseErr = timeresp.Step(g)
 	}
 	return e.response, e.responseErr
 }
@@ -203,7 +212,7 @@ func (e *Evidence) trajectory(which int, until, small float64) (*signal, error) 
 	}
 	if !e.traced[which] {
 		e.traced[which] = true
-		numerator := [2]linear{e.m.output, e.m.load}[which].at(1)
+		numerator := [2]linear{e.m.output(), e.m.load()}[which].at(1)
 		poles, lead := make([]complex128, 0, 16), e.m.character.at(1)
 		pre := e.m.prefilter
 		if which == loadToOutput {

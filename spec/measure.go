@@ -173,7 +173,7 @@ func largestEffort(ctx context.Context, e *Evidence, size, limit float64) (measu
 		return m, nil
 	}
 	m := e.m
-	if max(m.effort.fixed.Degree(), m.effort.scaled.Degree()) > m.openDen.Degree()+m.prefilter.Degree() {
+	if max(m.effort().fixed.Degree(), m.effort().scaled.Degree()) > m.openDen.Degree()+m.prefilter.Degree() {
 		return impulse()
 	}
 	u, err := timeresp.Of(ctx, e.loop, tf.Reference, tf.Effort, timeresp.StepInput(1))
@@ -376,7 +376,7 @@ func measureBandwidth(_ context.Context, e *Evidence, _ *limited) (measured, err
 		return measured{}, &tf.UnsupportedError{Call: "spec: bandwidth", What: "loops with dead time"}
 	}
 	// |T|² = |T(0)|²/2, a polynomial in x = ω².
-	num, den := e.m.output.at(1), e.m.character.at(1).Mul(e.m.prefilter)
+	num, den := e.m.output().at(1), e.m.character.at(1).Mul(e.m.prefilter)
 	s := newSpectrum(num, den)
 	n0, d0 := s.n2.Coefficient(0), s.d2.Coefficient(0)
 	if n0 == 0 {
@@ -404,7 +404,7 @@ func measureNoise(_ context.Context, e *Evidence, _ *limited) (measured, error) 
 	if !e.m.rational() {
 		return measured{}, &tf.UnsupportedError{Call: "spec: noise amplification", What: "loops with dead time"}
 	}
-	v, w, err := supremumOfMagnitude(e.m.noise.at(1), e.m.character.at(1))
+	v, w, err := supremumOfMagnitude(e.m.noise().at(1), e.m.character.at(1))
 	if err != nil {
 		return measured{}, err
 	}

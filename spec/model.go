@@ -12,9 +12,33 @@ import (
 // fixed + k·scaled.
 type linear struct{ fixed, scaled poly.Poly }
 
-func (l linear) mul(p poly.Poly) linear { return linear{l.fixed.Mul(p), l.scaled.Mul(p)} }
+func (l linear) mul(p poly.Poly) linear { return linear{product(l.fixed, p), product(l.scaled, p)} }
 
-func (l linear) at(k float64) poly.Poly { return l.fixed.Add(l.scaled.Scale(k)) }
+// product is p·q, without work where one of them is 0 or 1, as in most loops.
+func product(p, q poly.Poly) poly.Poly {
+	switch {
+	case p.Degree() < 0 && p.Err() == nil || isOne(q):
+		return p
+	case q.Degree() < 0 && q.Err() == nil || isOne(p):
+		return q
+	}
+	return p.Mul(q)
+}
+
+func isOne(p poly.Poly) bool { return p.Degree() == 0 && p.Coefficient(0) == 1 }
+
+func (l linear) at(k float64) poly.Poly {
+	switch {
+	case l.scaled.Degree() < 0:
+		return l.fixed
+	case k != 1:
+		l.scaled = l.scaled.Scale(k)
+	}
+	if l.fixed.Degree() < 0 {
+		return l.scaled
+	}
+	return l.fixed.Add(l.scaled)
+}
 
 // A model is a loop with everything that the requirements look at, as polynomials in s
 // that are linear in the gain. Letters: C, G, H, F controller, plant, sensor and prefilter;
@@ -23,12 +47,8 @@ type model struct {
 	loop      tf.Loop
 	vary      variation
 	character linear    // dC·dG·dH + k·nC·nG·nH: the internal characteristic, nothing cancelled
-	output    linear    // of reference to output, over prefilter·character
-	effort    linear    // of reference to effort, over prefilter·character
-	load      linear    // of load to output, over character
 	open      linear    // nC·nG·nH, numerator of the open loop
 	openDen   poly.Poly // dC·dG·dH
-	noise     linear    // of measurement noise to effort, over character, sign aside
 	prefilter poly.Poly // dF
 	negative  bool      // the gain was turned round: k stands for -k of the user
 	forward   float64   // s, dead time from reference to output
@@ -36,6 +56,44 @@ type model struct {
 	toEffort  float64   // s, dead time from reference to effort
 	unity     bool      // output is L/(1+L): no prefilter, no sensor
 	period    float64
+
+	controller, sensor         linear // numerators nC and nH
+	nG, nF, dC, dG, dH         poly.Poly
+	outputOf, effortOf, loadOf *linear
+}
+
+// output is the numerator of reference to output, over prefilter·character.
+func (m *model) output() linear {
+	if m.outputOf == nil {
+		l := m.controller.mul(m.nF).mul(m.nG).mul(m.dH)
+		m.outputOf = &l
+	}
+	return *m.outputOf
+}
+
+// effort is the numerator of reference to effort, over prefilter·character.
+func (m *model) effort() linear {
+	if m.effortOf == nil {
+		l := m.controller.mul(m.nF).mul(m.dG).mul(m.dH)
+		m.effortOf = &l
+	}
+	return *m.effortOf
+}
+
+// load is the numerator of load to output, over character.
+func (m *model) load() linear {
+	if m.loadOf == nil {
+		m.loadOf = &linear{fixed: product(product(m.nG, m.dC), m.dH)}
+	}
+	return *m.loadOf
+}
+
+// noise is the numerator of measurement noise to effort, over character, sign aside.
+func (m *model) noise() linear {
+	if m.sensor.scaled.Degree() >= 0 {
+		return m.sensor.mul(m.controller.fixed).mul(m.dG)
+	}
+	return m.controller.mul(m.sensor.fixed).mul(m.dG)
 }
 
 // variation says what the gain k multiplies.
@@ -61,20 +119,14 @@ func newModel(call string, l tf.Loop, set *settings) (*model, error) {
 		if err := b.g.Err(); err != nil {
 			return nil, err
 		}
-		n, d := b.g.Numerator(), b.g.Denominator()
-		if err := n.Err(); err != nil {
-			return nil, err
-		}
-		if err := d.Err(); err != nil {
-			return nil, err
-		}
 	}
-	if _, err := l.Open(); err != nil { // the loop's own checks: a missing plant, mixed periods
+	m := &model{loop: l, vary: set.vary, period: l.SamplingPeriod()}
+	if math.IsNaN(m.period) { // the loop's own checks: a missing plant, mixed periods
+		_, err := l.Open()
+		if err == nil {
+			err = &poly.ArgumentError{Call: call, Argument: "loop", Reason: "is not valid"}
+		}
 		return nil, err
-	}
-	m := &model{loop: l, vary: set.vary}
-	for _, g := range []tf.Function{l.Controller, l.Plant, l.Sensor, l.Prefilter} {
-		m.period = math.Max(m.period, g.Period())
 	}
 	nC, dC := l.Controller.Numerator(), l.Controller.Denominator()
 	nG, dG := l.Plant.Numerator(), l.Plant.Denominator()
@@ -96,8 +148,8 @@ func newModel(call string, l tf.Loop, set *settings) (*model, error) {
 		if a.DeadTime() != b.DeadTime() || a.Period() != b.Period() {
 			return nil, &poly.ArgumentError{Call: call, Argument: "option VaryController", Reason: "the two parts must have the same dead time and period"}
 		}
-		dC = a.Denominator().Mul(b.Denominator())
-		c = linear{a.Numerator().Mul(b.Denominator()), b.Numerator().Mul(a.Denominator())}
+		dC = product(a.Denominator(), b.Denominator())
+		c = linear{product(a.Numerator(), b.Denominator()), product(b.Numerator(), a.Denominator())}
 		if a.Denominator().Equal(b.Denominator()) {
 			dC = a.Denominator()
 			c = linear{a.Numerator(), b.Numerator()}
@@ -111,31 +163,27 @@ func newModel(call string, l tf.Loop, set *settings) (*model, error) {
 	m.forward = m.toEffort + l.Plant.DeadTime()
 	m.around = dead + l.Plant.DeadTime() + l.Sensor.DeadTime()
 
-	m.openDen = dC.Mul(dG).Mul(dH)
-	around := nG
+	m.openDen = product(product(dC, dG), dH)
 	if set.vary == sensorGain {
 		m.open = h.mul(nC).mul(nG)
 	} else {
-		m.open = c.mul(around).mul(nH)
+		m.open = c.mul(nG).mul(nH)
 	}
-	m.character = linear{m.openDen.Add(m.open.fixed), m.open.scaled}
-	m.output = c.mul(nF).mul(nG).mul(dH)
-	m.effort = c.mul(nF).mul(dG).mul(dH)
-	m.load = linear{nG.Mul(dC).Mul(dH), zero}
-	if set.vary == sensorGain {
-		m.noise = h.mul(nC).mul(dG)
-	} else {
-		m.noise = c.mul(nH).mul(dG)
+	m.character = linear{m.openDen, m.open.scaled}
+	if m.open.fixed.Degree() >= 0 {
+		m.character.fixed = m.openDen.Add(m.open.fixed)
 	}
+	m.controller, m.sensor = c, h
+	m.nG, m.nF, m.dC, m.dG, m.dH = nG, nF, dC, dG, dH
 	m.prefilter = dF
 	m.unity = isWire(l.Prefilter) && isWire(l.Sensor)
 	if set.negative {
 		m.negative = true
-		for _, p := range []*linear{&m.character, &m.output, &m.effort, &m.load, &m.open, &m.noise} {
+		for _, p := range []*linear{&m.character, &m.open, &m.controller, &m.sensor} {
 			p.scaled = p.scaled.Scale(-1)
 		}
 	}
-	for _, p := range []linear{m.character, m.output, m.effort, m.load, m.noise} {
+	for _, p := range []linear{m.character, m.open} {
 		if err := p.fixed.Err(); err != nil {
 			return nil, err
 		}

@@ -135,7 +135,7 @@ func (e *Evidence) resembles() (Resemblance, error) {
 		}
 		r.ThirdPole = math.Min(r.ThirdPole, s.modes.re[i]/slow)
 	}
-	zeros, err := e.m.output.at(1).Roots()
+	zeros, err := e.m.output().at(1).Roots()
 	if err == nil {
 		for _, z := range zeros {
 			for _, p := range r.Dominant {

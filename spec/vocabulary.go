@@ -210,10 +210,14 @@ func placeOf(place string, err error) string {
 // jsonPlace returns line and column of a syntax error.
 func jsonPlace(data []byte, err error) string {
 	var syntax *json.SyntaxError
-	if !errors.As(err, &syntax) || syntax.Offset > int64(len(data)) {
+	offset := int64(len(data))
+	switch {
+	case errors.As(err, &syntax):
+		offset = min(syntax.Offset, offset)
+	case !errors.Is(err, io.ErrUnexpectedEOF):
 		return ""
 	}
-	before := data[:syntax.Offset]
+	before := data[:offset]
 	line := 1 + bytes.Count(before, []byte("\n"))
 	return fmt.Sprintf("line %d, column %d", line, len(before)-bytes.LastIndexByte(before, '\n')-1)
 }

@@ -123,16 +123,16 @@ func (h *hunt) addKnots(m *model, stable []GainWindow) error {
 		return nil
 	}
 	if m.around == 0 {
-		family, err := m.family()
-		if err != nil {
-			return err
-		}
-		points, err := family.BreakPoints()
-		if err != nil {
-			return err
-		}
-		for _, p := range points {
-			add(p.Gain)
+		// Break points scale the search and nothing else: where A·B′ = A′·B and the gain -A/B is
+		// real to rounding.
+		a, b := m.character.fixed, m.character.scaled
+		roots, err := a.Derivative().Mul(b).Sub(a.Mul(b.Derivative())).Roots()
+		if err == nil { // the polynomial vanishes where A and B are proportional
+			for _, r := range roots {
+				if k := -a.AtComplex(r.Value) / b.AtComplex(r.Value); math.Abs(imag(k)) < 1e-9*math.Abs(real(k)) {
+					add(real(k))
+				}
+			}
 		}
 	}
 	for _, p := range [2]poly.Poly{m.character.fixed, m.character.scaled} {
@@ -302,7 +302,7 @@ func (h *hunt) exact(m *model, j, i int) ([]GainWindow, manner, error) {
 		case complementaryPeak:
 			holes, err = s.complementaryHoles(r.limit, cause)
 		case noiseAmplification:
-			holes, err = s.noiseHoles(m.noise.scaled, r.limit, cause)
+			holes, err = s.noiseHoles(m.noise().scaled, r.limit, cause)
 		}
 		return complement(holes), byFormula, err
 	}
@@ -533,8 +533,8 @@ func (h *hunt) probing(which []int) *seeker {
 // engine returns what samples a loop for the given requirements.
 func (h *hunt) engine(m *model, which []int) *engine {
 	e := &engine{
-		m: m, character: newFloats(m.character), output: newFloats(m.output), effort: newFloats(m.effort),
-		load: newFloats(m.load), around: newFloats(linear{poly.Poly{}, m.character.scaled}),
+		m: m, character: newFloats(m.character), output: newFloats(m.output()), effort: newFloats(m.effort()),
+		load: newFloats(m.load()), around: newFloats(linear{poly.Poly{}, m.character.scaled}),
 		preLead: 1, unity: m.unity && m.vary == controllerGain,
 		small: 0.25, loadSmall: inf, effortSmall: inf, limit: 2000,
 	}

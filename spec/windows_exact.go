@@ -203,7 +203,7 @@ func (m *model) errorSeries(n int) (d affine, e []affine) {
 	e = make([]affine, n+1)
 	if m.rational() {
 		full := m.character.mul(f)
-		miss := linear{full.fixed.Sub(m.output.fixed), full.scaled.Sub(m.output.scaled)}
+		miss := linear{full.fixed.Sub(m.output().fixed), full.scaled.Sub(m.output().scaled)}
 		d = affine{fixed: full.fixed.Coefficient(0), scaled: full.scaled.Coefficient(0)}
 		for i := range e {
 			e[i] = affine{fixed: miss.fixed.Coefficient(i), scaled: miss.scaled.Coefficient(i)}
@@ -227,8 +227,8 @@ func (m *model) errorSeries(n int) (d affine, e []affine) {
 	open = open.mul(f)
 	d0, d1 := den.fixed, den.scaled
 	of, os := delayed(open.fixed, m.around), delayed(open.scaled, m.around)
-	nf, ns := delayed(m.output.fixed, m.forward), delayed(m.output.scaled, m.forward)
-	exact := linear{den.fixed.Add(open.fixed).Sub(m.output.fixed), open.scaled.Sub(m.output.scaled)}
+	nf, ns := delayed(m.output().fixed, m.forward), delayed(m.output().scaled, m.forward)
+	exact := linear{den.fixed.Add(open.fixed).Sub(m.output().fixed), open.scaled.Sub(m.output().scaled)}
 	for i := range e {
 		e[i] = affine{fixed: d0.Coefficient(i) + of[i] - nf[i], scaled: d1.Coefficient(i) + os[i] - ns[i]}
 		if i == 0 {
