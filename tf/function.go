@@ -1,7 +1,6 @@
 package tf
 
 import (
-	"fmt"
 	"math"
 	"math/big"
 
@@ -228,11 +227,16 @@ func (g Function) Rational() (Function, error) {
 	return g.filled(), nil
 }
 
-// powerOfVariable returns sⁿ with its roots.
+// powerOfVariable returns sⁿ, with its roots as long as they are not too many to be kept.
 func powerOfVariable(n int) poly.Poly {
 	p, err := poly.FromRoots(1, make([]complex128, n)...)
-	if err != nil { // n is within bounds: see maxPeriods
-		panic(fmt.Sprintf("tf: %v", err))
+	if err != nil {
+		c := make([]*big.Int, n+1)
+		for i := range c {
+			c[i] = new(big.Int)
+		}
+		c[n].SetInt64(1)
+		return poly.FromIntegers(c, 0)
 	}
 	return p
 }

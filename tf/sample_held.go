@@ -92,54 +92,7 @@ func scalePeriod(period float64, scale int) int {
 // first-order hold), and how often z divides it.
 func (g Function) sampledNumerator(call string, period float64, fraction *big.Rat, how Method) (poly.Poly, int, error) {
 	compute := func(precision uint) ([]*big.Float, int) {
-		q := 1
-		if how != ZeroOrderHold {
-			q = 2
-		}
-		ring, scale := g.ring(precision, q)
-		t := scaledPeriod(period, scale, precision)
-		w := ring.ExpMinusOne(t)
-		// The characteristic polynomial of W, with δ^q for the poles of the hold.
-		characteristic := make([]*big.Float, 0, ring.Degree()+1)
-		for range q {
-			characteristic = append(characteristic, bigNumber(precision))
-		}
-		if g.denominator.Degree() > 0 {
-			own, _ := g.ring(precision, 0)
-			characteristic = append(characteristic, own.Characteristic(own.Reduce(w))...)
-		} else {
-			characteristic = append(characteristic, bigNumber(precision).SetInt64(1))
-		}
-		// N, divided by what made D monic and, for q = 2, by the scaled period.
-		n := scaledCoefficients(g.numerator, scale, precision)
-		d := scaledCoefficients(g.denominator, scale, precision)
-		divisor := bigNumber(precision).Set(d[len(d)-1])
-		if q == 2 {
-			divisor.Mul(divisor, t)
-		}
-		for _, x := range n {
-			x.Quo(x, divisor)
-		}
-		if how == FirstOrderHold { // times 1 + T·s
-			n = append(n, bigNumber(precision))
-			for i := len(n) - 1; i > 0; i-- {
-				n[i].Add(n[i], bigNumber(precision).Mul(n[i-1], t))
-			}
-		}
-		u := ring.Reduce(n)
-		if fraction.Sign() != 0 {
-			m := ring.ExpMinusOne(bigNumber(precision).Mul(t, bigRat(precision, fraction)))
-			u = ring.Add(u, ring.Mul(u, m))
-		}
-		result := make([]*big.Float, ring.Degree())
-		y := u
-		for j := ring.Degree() - 1; ; j-- {
-			result[j] = ring.Lead(y)
-			if j == 0 {
-				return result, scalePeriod(period, scale)
-			}
-			y = ring.Add(ring.Mul(y, w), ring.Scale(u, characteristic[j]))
-		}
+		return g.heldNumerator(period, fraction, how, precision)
 	}
 	p, err := agree(call, compute, offsetBits+48*g.denominator.Degree())
 	if err != nil {
@@ -151,6 +104,59 @@ func (g Function) sampledNumerator(call string, period float64, fraction *big.Ra
 		common++
 	}
 	return p, common, nil
+}
+
+// heldNumerator returns the coefficients of the numerator in δ, by power, and the exponent
+// of the period, see agree.
+func (g Function) heldNumerator(period float64, fraction *big.Rat, how Method, precision uint) ([]*big.Float, int) {
+	q := 1
+	if how != ZeroOrderHold {
+		q = 2
+	}
+	ring, scale := g.ring(precision, q)
+	t := scaledPeriod(period, scale, precision)
+	w := ring.ExpMinusOne(t)
+	// The characteristic polynomial of W, with δ^q for the poles of the hold.
+	characteristic := make([]*big.Float, 0, ring.Degree()+1)
+	for range q {
+		characteristic = append(characteristic, bigNumber(precision))
+	}
+	if g.denominator.Degree() > 0 {
+		own, _ := g.ring(precision, 0)
+		characteristic = append(characteristic, own.Characteristic(own.Reduce(w))...)
+	} else {
+		characteristic = append(characteristic, bigNumber(precision).SetInt64(1))
+	}
+	// N, divided by what made D monic and, for q = 2, by the scaled period.
+	n := scaledCoefficients(g.numerator, scale, precision)
+	d := scaledCoefficients(g.denominator, scale, precision)
+	divisor := bigNumber(precision).Set(d[len(d)-1])
+	if q == 2 {
+		divisor.Mul(divisor, t)
+	}
+	for _, x := range n {
+		x.Quo(x, divisor)
+	}
+	if how == FirstOrderHold { // times 1 + T·s
+		n = append(n, bigNumber(precision))
+		for i := len(n) - 1; i > 0; i-- {
+			n[i].Add(n[i], bigNumber(precision).Mul(n[i-1], t))
+		}
+	}
+	u := ring.Reduce(n)
+	if fraction.Sign() != 0 {
+		m := ring.ExpMinusOne(bigNumber(precision).Mul(t, bigRat(precision, fraction)))
+		u = ring.Add(u, ring.Mul(u, m))
+	}
+	result := make([]*big.Float, ring.Degree())
+	y := u
+	for j := ring.Degree() - 1; ; j-- {
+		result[j] = ring.Lead(y)
+		if j == 0 {
+			return result, scalePeriod(period, scale)
+		}
+		y = ring.Add(ring.Mul(y, w), ring.Scale(u, characteristic[j]))
+	}
 }
 
 // agree computes coefficients of a polynomial in δ = z-1, by power, with more and more bits
@@ -225,6 +231,16 @@ func (r preciseRoot) exponential(call string, period float64) (offsetRoot, error
 	if grown < 0 { // 1 + δ cancels: up to where it is 0 anyway
 		precision += uint(math.Min(-grown, 800) * 1.5)
 	}
+	w := r.expMinusOne(period, precision)
+	root := offsetRoot{re: w.re, multiplicity: r.multiplicity}
+	if !r.isReal() {
+		root.im = w.im
+	}
+	return root.rounded(), nil
+}
+
+// expMinusOne returns exp(r·period) - 1, in the ring modulo s - r or, of a pair, (s-r)(s-r̄).
+func (r preciseRoot) expMinusOne(period float64, precision uint) bigComplex {
 	x := bigNumber(precision).Set(r.re)
 	if r.isReal() {
 		e := 0
@@ -232,8 +248,7 @@ func (r preciseRoot) exponential(call string, period float64) (offsetRoot, error
 			e = leadExponent(x)
 		}
 		ring := quotient.New(precision, []*big.Float{x.Neg(x).SetMantExp(x, -e)})
-		w := ring.ExpMinusOne(scaledPeriod(period, e, precision))
-		return offsetRoot{re: w[0], multiplicity: r.multiplicity}.rounded(), nil
+		return bigComplex{ring.ExpMinusOne(scaledPeriod(period, e, precision))[0], bigNumber(precision)}
 	}
 	y := bigNumber(precision).Set(r.im)
 	e := bigComplex{x, y}.exponent() + 1
@@ -242,8 +257,8 @@ func (r preciseRoot) exponential(call string, period float64) (offsetRoot, error
 	size := bigNumber(precision).Add(bigNumber(precision).Mul(x, x), bigNumber(precision).Mul(y, y))
 	ring := quotient.New(precision, []*big.Float{size, bigNumber(precision).Mul(x, bigNumber(precision).SetInt64(-2))})
 	w := ring.ExpMinusOne(scaledPeriod(period, e, precision))
-	re2 := bigNumber(precision).Mul(w[1], x)
-	return offsetRoot{re: re2.Add(re2, w[0]), im: bigNumber(precision).Mul(w[1], y), multiplicity: r.multiplicity}.rounded(), nil
+	re := bigNumber(precision).Mul(w[1], x)
+	return bigComplex{re.Add(re, w[0]), bigNumber(precision).Mul(w[1], y)}
 }
 
 // rounded keeps as many bits as are of use: of δ near z = 1, of z elsewhere.
