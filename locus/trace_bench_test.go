@@ -138,3 +138,27 @@ func BenchmarkTrace(b *testing.B) {
 		})
 	}
 }
+
+// BenchmarkTraceGrowth shows how the time for one point grows with the degree: at most as n².
+func BenchmarkTraceGrowth(b *testing.B) {
+	for _, n := range []int{3, 5, 8, 12, 16, 20, 25, 30} {
+		b.Run(fmt.Sprintf("degree=%d", n), func(b *testing.B) {
+			plants := randomPlants(n)
+			points, next := 0, 0
+			for b.Loop() {
+				plant := plants[next%len(plants)]
+				next++
+				l, err := Family{fixed: poly.New(plant.fixed...), scaled: poly.New(plant.scaled...)}.Trace(1e-3, 1e3)
+				if err != nil {
+					b.Fatal(err)
+				}
+				for _, branch := range l.Branches {
+					points += branch.Len()
+				}
+			}
+			perPoint := float64(b.Elapsed().Nanoseconds()) / float64(points)
+			b.ReportMetric(perPoint, "ns/point")
+			b.ReportMetric(perPoint/float64(n*n), "ns/(point·n²)")
+		})
+	}
+}

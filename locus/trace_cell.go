@@ -35,7 +35,7 @@ type cell struct {
 // newCell finds the largest cell it can prove. The true coefficients are within errF and errB
 // of f and b, and the first m of f are known to vanish. It is nil if there is no such cell.
 func newCell(f, b []complex128, errF, errB []float64, m int) *cell {
-	modulus := func(c []complex128, e []float64, i int) float64 { return cmplx.Abs(c[i])*(1+4*unitRoundoff) + e[i] }
+	size := func(c []complex128, e []float64, i int) float64 { return cmplx.Abs(c[i])*(1+4*unitRoundoff) + e[i] }
 	lowF := cmplx.Abs(f[m])*(1-4*unitRoundoff) - errF[m]
 	lowB := cmplx.Abs(b[0])*(1-4*unitRoundoff) - errB[0]
 	if !(lowF > 0 && lowB > 0) {
@@ -45,10 +45,10 @@ func newCell(f, b []complex128, errF, errB []float64, m int) *cell {
 	// parts returns bounds on the relative size of what follows f[m] and b[0] for |h| ≤ r.
 	parts := func(r float64) (q, p float64) {
 		for i := len(f) - 1; i > m; i-- {
-			q = (q + modulus(f, errF, i)/lowF) * r
+			q = (q + size(f, errF, i)/lowF) * r
 		}
 		for i := len(b) - 1; i > 0; i-- {
-			p = (p + modulus(b, errB, i)/lowB) * r
+			p = (p + size(b, errB, i)/lowB) * r
 		}
 		return q, p
 	}
@@ -59,12 +59,12 @@ func newCell(f, b []complex128, errF, errB []float64, m int) *cell {
 	// A first guess: each term alone within its share.
 	r := math.Inf(1)
 	for i := m + 1; i < len(f); i++ {
-		if v := modulus(f, errF, i); v > 0 {
+		if v := size(f, errF, i); v > 0 {
 			r = min(r, math.Pow(lowF/v, 1/float64(i-m)))
 		}
 	}
 	for i := 1; i < len(b); i++ {
-		if v := modulus(b, errB, i); v > 0 {
+		if v := size(b, errB, i); v > 0 {
 			r = min(r, math.Pow(lowB/v, 1/float64(i)))
 		}
 	}
@@ -128,7 +128,7 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 	b := make([]complex128, n+1)
 	room := make([]float64, 4*(n+1))
 	errF, errB, wideF, wideB := room[:n+1], room[n+1:2*n+2], room[2*n+2:3*n+3], room[3*n+3:]
-	var κ twofold
+	var κ double
 	expand := func() {
 		κ = p.preciseGain(real(x), imag(x))
 		if precise {
@@ -136,7 +136,7 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 			return
 		}
 		for i := range f {
-			f[i] = complex(p.a[i]+float64(κ.hi*p.b[i]), 0)
+			f[i] = complex(p.a[i]+float64(κ.h*p.b[i]), 0)
 			b[i] = complex(p.b[i], 0)
 		}
 		taylor(f, x)
@@ -156,12 +156,12 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 	// The rounding of the shift is that of Horner's rule with majorants, whose own shift is by
 	// |x|; each coefficient takes up to 2n products and sums, and three roundings before.
 	u := (6.6*float64(n) + 10) * 1.05 * unitRoundoff
-	κlow := math.Abs(κ.lo)
+	κlow := math.Abs(κ.l)
 	if precise {
-		u, κlow = 20*float64(n+1)*twofoldRoundoff, 0
+		u, κlow = 20*float64(n+1)*doubleRoundoff, 0
 	}
 	for i := range f {
-		errF[i] = math.Abs(p.a[i]) + math.Abs(κ.hi*p.b[i])
+		errF[i] = math.Abs(p.a[i]) + math.Abs(κ.h*p.b[i])
 		errB[i] = math.Abs(p.b[i])
 	}
 	r := cmplx.Abs(x) * (1 + 4*unitRoundoff)
@@ -189,7 +189,7 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 	// The gain at x is that of the vertex but for f[m]·errXᵐ/b[0].
 	slack := 0.0
 	if low := cmplx.Abs(b[0]) - errB[0]; low > 0 {
-		slack = (2*wideF[order]*math.Pow(errX, float64(order)) + 20*float64(n)*twofoldRoundoff*terms) / low
+		slack = (2*wideF[order]*math.Pow(errX, float64(order)) + 20*float64(n)*doubleRoundoff*terms) / low
 	}
 	for i := range f {
 		errB[i] = (wideB[i] - cmplx.Abs(b[i])) * (1 + 1e-9)
@@ -199,7 +199,7 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 	if c == nil || errX > 1e-3*c.radius || slack > 1e-2*c.width {
 		return nil
 	}
-	c.centre, c.gain, c.gainLow, c.slack = x, κ.hi, κ.lo, slack
+	c.centre, c.gain, c.gainLow, c.slack = x, κ.h, κ.l, slack
 	c.shift()
 	c.width *= 0.97 // the true gain is elsewhere by slack
 	return c

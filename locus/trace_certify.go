@@ -127,7 +127,7 @@ func (t *tracker) certify(rows []row, obstacles []obstacle) (reach float64) {
 			return 0
 		}
 		a.speed = a.v.modulusB * a.inverse
-		a.residue = (math.Sqrt(float64(a.v.re*a.v.re)+float64(a.v.im*a.v.im))*(1+4*unitRoundoff) + a.v.errF) * a.inverse
+		a.residue = (modulus(a.v.re, a.v.im)*(1+4*unitRoundoff) + a.v.errF) * a.inverse
 		worst = max(worst, a.residue/a.near)
 	}
 	t.worst = worst

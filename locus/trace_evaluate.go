@@ -86,7 +86,7 @@ func (q *pencil) at(re, im float64, v *value) {
 	}
 	v.re, v.im, v.dRe, v.dIm, v.bRe, v.bIm = yr, yi, dr, di, zr, zi
 	v.errF = q.growth*m + minNormal
-	v.modulusB = math.Sqrt(float64(zr*zr)+float64(zi*zi))*(1+4*unitRoundoff) + q.growth*w + minNormal
+	v.modulusB = modulus(zr, zi)*(1+4*unitRoundoff) + q.growth*w + minNormal
 	v.modulusMax = m
 }
 
@@ -96,10 +96,27 @@ func (v *value) newton() (re, im float64, ok bool) {
 		re = -v.re / v.dRe
 		return re, 0, !math.IsNaN(re) && !math.IsInf(re, 0)
 	}
-	q := -1 / (float64(v.dRe*v.dRe) + float64(v.dIm*v.dIm))
-	re = (float64(v.re*v.dRe) + float64(v.im*v.dIm)) * q
-	im = (float64(v.im*v.dRe) - float64(v.re*v.dIm)) * q
+	re, im = quotientOfParts(-v.re, -v.im, v.dRe, v.dIm)
 	return re, im, !math.IsNaN(re+im) && !math.IsInf(re, 0) && !math.IsInf(im, 0)
+}
+
+// quotientOfParts returns (a + jb)/(c + jd).
+func quotientOfParts(a, b, c, d float64) (re, im float64) {
+	norm := float64(c*c) + float64(d*d)
+	if norm > 0x1p-900 && norm < 0x1p900 {
+		q := 1 / norm
+		return (float64(a*c) + float64(b*d)) * q, (float64(b*c) - float64(a*d)) * q
+	}
+	q := complex(a, b) / complex(c, d) // scales
+	return real(q), imag(q)
+}
+
+// modulus returns |a + jb|, to four roundings.
+func modulus(a, b float64) float64 {
+	if norm := float64(a*a) + float64(b*b); norm > 0x1p-900 && norm < 0x1p900 {
+		return math.Sqrt(norm)
+	}
+	return math.Hypot(a, b)
 }
 
 // velocity returns dx/dκ = -b/F′.
@@ -107,6 +124,5 @@ func (v *value) velocity() (re, im float64) {
 	if v.bIm == 0 && v.dIm == 0 {
 		return -v.bRe / v.dRe, 0
 	}
-	q := -1 / (float64(v.dRe*v.dRe) + float64(v.dIm*v.dIm))
-	return (float64(v.bRe*v.dRe) + float64(v.bIm*v.dIm)) * q, (float64(v.bIm*v.dRe) - float64(v.bRe*v.dIm)) * q
+	return quotientOfParts(-v.bRe, -v.bIm, v.dRe, v.dIm)
 }

@@ -46,9 +46,9 @@ func newPlane(fixed, scaled poly.Poly) *plane {
 	p.dropAt = math.NaN()
 	switch {
 	case p.leadA == p.leadB:
-		at := coefficient(p.a, p.tailA, n).over(coefficient(p.b, p.tailB, n)).neg()
-		p.dropAt, p.dropLow = at.hi, at.lo
-		p.dropError = 8 * twofoldRoundoff * math.Abs(p.dropAt)
+		at := coefficient(p.a, p.tailA, n).over(coefficient(p.b, p.tailB, n)).minus()
+		p.dropAt, p.dropLow = at.h, at.l
+		p.dropError = 8 * doubleRoundoff * math.Abs(p.dropAt)
 		p.dropOrder = leadingDrop(fixed, scaled)
 	case p.leadA < p.leadB:
 		p.dropAt = 0

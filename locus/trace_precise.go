@@ -2,102 +2,62 @@ package locus
 
 import "math"
 
-// A twofold is the unevaluated sum hi + lo of two float64, |lo| ≤ u·|hi|: about 32 digits.
-// One operation has a relative error below 2⁻¹⁰⁰.
-//
-// Source: T. J. Dekker, A floating-point technique for extending the available precision,
-// Numer. Math. 18 (1971) 224–242.
-type twofold struct{ hi, lo float64 }
+// doubleRoundoff bounds the error of one operation on [double], in relation to the sum of the
+// moduli of what it adds, or to the product or quotient.
+const doubleRoundoff = 0x1p-100
 
-// twofoldRoundoff bounds the relative error of one operation, generously.
-const twofoldRoundoff = 0x1p-100
-
-func quickSum(a, b float64) twofold {
-	s := a + b
-	return twofold{s, b - (s - a)}
+func (x double) timesFloat(y float64) double {
+	p := productOf(x.h, y)
+	e := math.FMA(x.l, y, p.l)
+	h := p.h + e
+	return double{h, e - (h - p.h)}
 }
 
-func exactSum(a, b float64) twofold {
-	s := a + b
-	t := s - a
-	return twofold{s, (a - (s - t)) + (b - t)}
+func (x double) over(y double) double {
+	q := x.h / y.h
+	r := x.plus(y.timesFloat(-q))
+	q2 := r.h / y.h
+	r = r.plus(y.timesFloat(-q2))
+	return double{q2, r.h / y.h}.plusFloat(q)
 }
 
-func exactProduct(a, b float64) twofold {
-	p := a * b
-	return twofold{p, math.FMA(a, b, -p)}
-}
+// A complexDouble is a complex number of two such parts.
+type complexDouble struct{ re, im double }
 
-func (x twofold) plus(y twofold) twofold {
-	s, t := exactSum(x.hi, y.hi), exactSum(x.lo, y.lo)
-	s = quickSum(s.hi, s.lo+t.hi)
-	return quickSum(s.hi, s.lo+t.lo)
-}
-
-func (x twofold) neg() twofold { return twofold{-x.hi, -x.lo} }
-
-func (x twofold) times(y twofold) twofold {
-	p := exactProduct(x.hi, y.hi)
-	return quickSum(p.hi, p.lo+(float64(x.hi*y.lo)+float64(x.lo*y.hi)))
-}
-
-func (x twofold) timesFloat(y float64) twofold {
-	p := exactProduct(x.hi, y)
-	return quickSum(p.hi, p.lo+float64(x.lo*y))
-}
-
-func (x twofold) over(y twofold) twofold {
-	q := x.hi / y.hi
-	r := x.plus(y.timesFloat(q).neg())
-	q2 := r.hi / y.hi
-	r = r.plus(y.timesFloat(q2).neg())
-	return quickSum(q, q2).plus(twofold{r.hi / y.hi, 0})
-}
-
-// A complexTwofold is a complex number of two twofold parts.
-type complexTwofold struct{ re, im twofold }
-
-func (z complexTwofold) plus(w complexTwofold) complexTwofold {
-	return complexTwofold{z.re.plus(w.re), z.im.plus(w.im)}
-}
-
-func (z complexTwofold) times(w complexTwofold) complexTwofold {
-	return complexTwofold{
-		z.re.times(w.re).plus(z.im.times(w.im).neg()),
-		z.re.times(w.im).plus(z.im.times(w.re)),
-	}
+func (z complexDouble) plus(w complexDouble) complexDouble {
+	return complexDouble{z.re.plus(w.re), z.im.plus(w.im)}
 }
 
 // timesReal multiplies by a real number.
-func (z complexTwofold) timesReal(k twofold) complexTwofold {
-	return complexTwofold{z.re.times(k), z.im.times(k)}
+func (z complexDouble) timesReal(k double) complexDouble {
+	return complexDouble{z.re.times(k), z.im.times(k)}
 }
 
 // timesFloat multiplies by x + jy.
-func (z complexTwofold) timesFloat(x, y float64) complexTwofold {
+func (z complexDouble) timesFloat(x, y float64) complexDouble {
 	if y == 0 {
-		return complexTwofold{z.re.timesFloat(x), z.im.timesFloat(x)}
+		return complexDouble{z.re.timesFloat(x), z.im.timesFloat(x)}
 	}
-	return complexTwofold{
+	return complexDouble{
 		z.re.timesFloat(x).plus(z.im.timesFloat(-y)),
 		z.re.timesFloat(y).plus(z.im.timesFloat(x)),
 	}
 }
 
-func (z complexTwofold) value() complex128 { return complex(z.re.hi, z.im.hi) }
+func (z complexDouble) value() complex128 { return complex(z.re.h, z.im.h) }
 
 // coefficient returns c[i] with what its rounding cut off.
-func coefficient(c, tail []float64, i int) twofold {
+func coefficient(c, tail []float64, i int) double {
 	if tail == nil {
-		return twofold{c[i], 0}
+		return double{c[i], 0}
 	}
-	return quickSum(c[i], tail[i])
+	return double{c[i], tail[i]}
 }
 
 // precise evaluates the polynomial with coefficients c + tail at x + jy. Its error is less
-// than 10·n·twofoldRoundoff·Σ|cᵢ||x|ⁱ.
-func precise(c, tail []float64, x, y float64) complexTwofold {
-	var z complexTwofold
+// than 10·n·doubleRoundoff·Σ|cᵢ||x|ⁱ.
+func precise(c, tail []float64, x, y float64) complexDouble {
+	var z complexDouble
 	for i := len(c) - 1; i >= 0; i-- {
 		z = z.timesFloat(x, y)
 		z.re = z.re.plus(coefficient(c, tail, i))
@@ -106,31 +66,31 @@ func precise(c, tail []float64, x, y float64) complexTwofold {
 }
 
 // preciseGain returns Re(-a/b) at x + jy, the gain of a point of the locus.
-func (p *plane) preciseGain(x, y float64) twofold {
+func (p *plane) preciseGain(x, y float64) double {
 	a, b := precise(p.a, p.tailA, x, y), precise(p.b, p.tailB, x, y)
 	if y == 0 {
-		return a.re.over(b.re).neg()
+		return a.re.over(b.re).minus()
 	}
 	norm := b.re.times(b.re).plus(b.im.times(b.im))
-	return a.re.times(b.re).plus(a.im.times(b.im)).over(norm).neg()
+	return a.re.times(b.re).plus(a.im.times(b.im)).over(norm).minus()
 }
 
 // precisely replaces F and dF/dx of a value at x + jy by what twice the precision gives.
 func (p *plane) precisely(x, y, κ float64, v *value) {
-	var f, d complexTwofold
+	var f, d complexDouble
 	for i := p.n; i >= 0; i-- {
 		d = d.timesFloat(x, y).plus(f)
 		f = f.timesFloat(x, y)
 		f.re = f.re.plus(coefficient(p.b, p.tailB, i).timesFloat(κ).plus(coefficient(p.a, p.tailA, i)))
 	}
-	v.re, v.im, v.dRe, v.dIm = f.re.hi, f.im.hi, d.re.hi, d.im.hi
-	v.errF = 20*float64(p.n+1)*twofoldRoundoff*v.modulusMax + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
+	v.re, v.im, v.dRe, v.dIm = f.re.h, f.im.h, d.re.h, d.im.h
+	v.errF = 20*float64(p.n+1)*doubleRoundoff*v.modulusMax + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
 }
 
 // preciseTaylor computes the coefficients of a + κ·b and of b about x, rounded at the end.
-func (p *plane) preciseTaylor(x complex128, κ twofold, f, b []complex128) {
+func (p *plane) preciseTaylor(x complex128, κ double, f, b []complex128) {
 	n := p.n
-	cf, cb := make([]complexTwofold, n+1), make([]complexTwofold, n+1)
+	cf, cb := make([]complexDouble, n+1), make([]complexDouble, n+1)
 	for i := range cf {
 		cb[i].re = coefficient(p.b, p.tailB, i)
 		cf[i].re = coefficient(p.a, p.tailA, i).plus(cb[i].re.times(κ))
@@ -144,4 +104,32 @@ func (p *plane) preciseTaylor(x complex128, κ twofold, f, b []complex128) {
 	for i := range cf {
 		f[i], b[i] = cf[i].value(), cb[i].value()
 	}
+}
+
+// preciseCritical improves a real x near a simple root of a′b - ab′, moving it by less than size.
+func (p *plane) preciseCritical(x, size float64) float64 {
+	start := x
+	for range 3 {
+		κ := p.preciseGain(x, 0)
+		var y1, y, z double // derivative and value of a + κ·b, value of b
+		var y2, z1 float64  // half the second derivative, derivative of b
+		for i := p.n; i >= 0; i-- {
+			y2 = float64(y2*x) + y1.h
+			y1 = y1.timesFloat(x).plus(y)
+			b := coefficient(p.b, p.tailB, i)
+			y = y.timesFloat(x).plus(b.times(κ)).plus(coefficient(p.a, p.tailA, i))
+			z1 = float64(z1*x) + z.h
+			z = z.timesFloat(x).plus(b)
+		}
+		// y vanishes, but for rounding.
+		step := -(y1.h - y.h*z1/z.h) / (2 * y2)
+		if !(math.Abs(x+step-start) < size) {
+			break
+		}
+		x += step
+		if math.Abs(step) <= unitRoundoff*math.Abs(x) {
+			break
+		}
+	}
+	return x
 }

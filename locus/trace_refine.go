@@ -145,7 +145,7 @@ func (p *plane) polish(x complex128, κ, limit float64) complex128 {
 	for range 3 {
 		a := precise(p.a, p.tailA, real(x), imag(x))
 		b := precise(p.b, p.tailB, real(x), imag(x))
-		f := a.plus(b.timesReal(twofold{κ, 0})).value()
+		f := a.plus(b.timesReal(double{κ, 0})).value()
 		var d, y complex128
 		for i := p.n; i >= 0; i-- {
 			d = d*x + y

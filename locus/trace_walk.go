@@ -117,7 +117,7 @@ func (t *tracker) spend() error {
 	if t.spent > t.budget {
 		return t.fail("the limit on the number of steps is reached")
 	}
-	if t.spent%16 == 0 && t.ctx != nil {
+	if t.spent%16 == 1 && t.ctx != nil {
 		if err := t.ctx.Err(); err != nil {
 			return err
 		}
@@ -317,7 +317,7 @@ func (t *tracker) correct(r *row, near float64) bool {
 			r.zy = 0
 		}
 		size := math.Abs(dx) + math.Abs(dy)
-		if size <= 1e-6*near || size*(math.Abs(r.v.dRe)+math.Abs(r.v.dIm)) <= r.v.errF {
+		if size <= 1e-6*near || size <= 4*unitRoundoff*(math.Abs(r.x)+r.y) || size*(math.Abs(r.v.dRe)+math.Abs(r.v.dIm)) <= r.v.errF {
 			return r.y == 0 || r.zy > 0
 		}
 		if size > near {
@@ -436,7 +436,7 @@ func (t *tracker) lookAt(x0, size float64) {
 					return
 				}
 			}
-			if c := p.vertexCell(complex(x, 0), 2, -1); c != nil && c.ahead(t.κ) {
+			if c := p.vertexCell(complex(p.preciseCritical(x, size), 0), 2, -1); c != nil && c.ahead(t.κ) {
 				t.addVertex(c)
 			}
 			return
