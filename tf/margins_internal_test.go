@@ -2,6 +2,7 @@ package tf
 
 import (
 	"errors"
+	"fmt"
 	"math"
 	"testing"
 
@@ -267,5 +268,58 @@ func TestPeakBySearch(t *testing.T) {
 		}
 		check(t, c.ID+": complementary peak", s.Magnitude, c.Figures.Complementary)
 		check(t, c.ID+": its frequency", s.Frequency, c.Figures.ComplementaryAt)
+	}
+}
+
+// Light resonances, fast sampling and dead time: loops of the project's own, in 60 digits by mpmath.
+func TestMarginsOfHardLoops(t *testing.T) {
+	type crossover struct{ Frequency, Margin refdata.Decimal }
+	var file struct {
+		Cases []struct {
+			Kind                   string
+			Numerator, Denominator decimals
+			Delay, Period          refdata.Decimal
+			Stable                 bool
+			ListedUpTo             refdata.Decimal `json:"listed_up_to"`
+			Gain, Phase            []crossover
+			Peak                   refdata.Decimal
+			PeakAt                 refdata.Decimal `json:"peak_at"`
+		}
+	}
+	refdata.Read(t, "testdata/more_margins.json", &file)
+	if len(file.Cases) < 20 {
+		t.Fatalf("%d cases", len(file.Cases))
+	}
+	for i, c := range file.Cases {
+		t.Run(fmt.Sprintf("%d/%s", i, c.Kind), func(t *testing.T) {
+			a := newAxisForm(poly.New(refdata.Floats(t, c.Numerator)...), poly.New(refdata.Floats(t, c.Denominator)...), c.Delay.Float(t), c.Period.Float(t))
+			m, err := a.margins(0)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if (m.Stable == poly.Holds) != c.Stable || m.Stable == poly.Undecided {
+				t.Errorf("stable %v, want %v", m.Stable, c.Stable)
+			}
+			compare := func(what string, got []Crossover, want []crossover) {
+				t.Helper()
+				if len(got) != len(want) {
+					t.Errorf("%s %v, want %v", what, got, want)
+					return
+				}
+				for k, w := range want {
+					check(t, what, got[k].Frequency, w.Frequency)
+					check(t, what+": margin", got[k].Margin, w.Margin)
+				}
+			}
+			compare("gain crossover", m.GainCrossovers, c.Gain)
+			compare("phase crossover", m.PhaseCrossovers, c.Phase)
+			if c.Peak != "" && m.SensitivityPeakAt > 0 && !math.IsInf(m.SensitivityPeakAt, 1) {
+				check(t, "sensitivity peak", m.SensitivityPeak, c.Peak)
+				check(t, "its frequency", m.SensitivityPeakAt, c.PeakAt)
+			}
+			if c.ListedUpTo != "" {
+				check(t, "complete to", m.CompleteTo, c.ListedUpTo)
+			}
+		})
 	}
 }
