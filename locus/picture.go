@@ -13,6 +13,34 @@ type Frame struct{ ReLo, ReHi, ImLo, ImHi float64 }
 // Diagonal returns the length of the diagonal.
 func (f Frame) Diagonal() float64 { return math.Hypot(f.ReHi-f.ReLo, f.ImHi-f.ImLo) }
 
+// reach returns the distance of the farthest corner from the origin.
+func (f Frame) reach() float64 {
+	return math.Hypot(max(math.Abs(f.ReLo), math.Abs(f.ReHi)), max(math.Abs(f.ImLo), math.Abs(f.ImHi)))
+}
+
+// clip returns the part of the segment from p to q that is in the frame, as shares of it; it is
+// false if there is none.
+func (f Frame) clip(p, q complex128) (from, to float64, ok bool) {
+	from, to = 0, 1
+	// inside keeps the shares t with start + t·way ≥ 0.
+	inside := func(start, way float64) {
+		switch {
+		case way > 0:
+			from = max(from, -start/way)
+		case way < 0:
+			to = min(to, -start/way)
+		case start < 0:
+			to = -1
+		}
+	}
+	d := q - p
+	inside(real(p)-f.ReLo, real(d))
+	inside(f.ReHi-real(p), -real(d))
+	inside(imag(p)-f.ImLo, imag(d))
+	inside(f.ImHi-imag(p), -imag(d))
+	return from, to, from < to
+}
+
 // Contains tells whether s is in the frame, its border included.
 func (f Frame) Contains(s complex128) bool {
 	return real(s) >= f.ReLo && real(s) <= f.ReHi && imag(s) >= f.ImLo && imag(s) <= f.ImHi
@@ -47,8 +75,8 @@ func (l Line) XY(i int) (re, im float64) { return real(l[i]), imag(l[i]) }
 type Arrow struct {
 	S         complex128
 	Direction float64 // rad in (-π, π], counter-clockwise from the positive real axis
-	Gain      float64
-	Branch    int // index into Locus.Branches
+	Gain      float64 // there, interpolated
+	Branch    int     // index into Locus.Branches
 }
 
 // Frame returns a good drawing window: poles, zeros, the break points and axis crossings (in z:
@@ -117,26 +145,34 @@ func (l *Locus) Arrows(each int) []Arrow {
 }
 
 func (b Branch) arrows(frame Frame, index, each int) []Arrow {
-	shown := func(i int) (complex128, complex128, bool) {
-		p, q := b.points[i-1].s, b.points[i].s
-		return p, q, p != q && frame.Contains(p) && frame.Contains(q)
-	}
 	total := 0.0
 	for i := 1; i < len(b.points); i++ {
-		if p, q, ok := shown(i); ok {
-			total += cmplx.Abs(q - p)
+		p, q := b.points[i-1].s, b.points[i].s
+		if from, to, ok := frame.clip(p, q); ok {
+			total += cmplx.Abs(q-p) * (to - from)
 		}
 	}
 	var arrows []Arrow
 	passed := 0.0
-	for i := 1; i < len(b.points) && len(arrows) < each; i++ {
-		p, q, ok := shown(i)
+	for i := 1; i < len(b.points); i++ {
+		p, q := b.points[i-1].s, b.points[i].s
+		from, to, ok := frame.clip(p, q)
 		if !ok {
 			continue
 		}
-		passed += cmplx.Abs(q - p)
-		if passed >= total*(float64(len(arrows))+0.5)/float64(each) {
-			arrows = append(arrows, Arrow{S: q, Direction: cmplx.Phase(q - p), Gain: b.points[i].gain, Branch: index})
+		length := cmplx.Abs(q - p)
+		passed += length * (to - from)
+		for len(arrows) < each {
+			over := passed - total*(float64(len(arrows))+0.5)/float64(each)
+			if over < 0 {
+				break
+			}
+			t := to - over/length
+			gain := b.points[i-1].gain
+			if up := b.points[i].gain; !math.IsInf(up-gain, 0) {
+				gain += t * (up - gain)
+			}
+			arrows = append(arrows, Arrow{S: p + complex(t, 0)*(q-p), Direction: cmplx.Phase(q - p), Gain: gain, Branch: index})
 		}
 	}
 	return arrows

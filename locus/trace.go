@@ -100,8 +100,9 @@ func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) {
 			return nil, err
 		}
 		t.draw(l)
+	} else {
+		l.makeFrame()
 	}
-	l.makeFrame()
 	return l, nil
 }
 
@@ -197,17 +198,35 @@ func (t *tracker) foresee() error {
 	return nil
 }
 
-// draw places the points of all branches.
+// draw places the points of all branches and finds the frame.
 func (t *tracker) draw(l *Locus) {
-	size := t.size()
-	points := make([][]point, len(t.chains))
-	s := shaper{tracker: t, tolerance: 2e-4 * size, far: 8 * size}
 	for i := range t.chains {
-		c := &t.chains[i]
-		points[i] = s.points(c)
-		if v := c.head.cell; v != nil && !v.atInfinity && !v.reciprocal {
+		if v := t.chains[i].head.cell; v != nil && !v.atInfinity && !v.reciprocal {
 			l.meetings = append(l.meetings, t.plane.fromX(v.centre))
 		}
+	}
+	size := t.size()
+	far := 8 * size
+	// Seldom the frame turns out much smaller or larger than poles and zeros let expect.
+	for range 3 {
+		t.place(l, size, far)
+		l.makeFrame()
+		diagonal := math.Ldexp(l.frame.Diagonal(), -t.plane.stretch)
+		reach := math.Ldexp(l.frame.reach(), -t.plane.stretch)
+		if size <= diagonal && far >= 1.2*reach {
+			break
+		}
+		size, far = min(size, diagonal), max(far, 1.5*reach)
+	}
+}
+
+// place places the points of all branches, for a figure of a given size that reaches so far from
+// the origin, in the plane.
+func (t *tracker) place(l *Locus, size, far float64) {
+	points := make([][]point, len(t.chains))
+	s := shaper{tracker: t, tolerance: 2e-4 * size, longest: 0.06 * size, far: far}
+	for i := range t.chains {
+		points[i] = s.points(&t.chains[i])
 	}
 	l.Branches = make([]Branch, len(t.branches))
 	for i, b := range t.branches {
@@ -216,8 +235,8 @@ func (t *tracker) draw(l *Locus) {
 	sort.SliceStable(l.Branches, func(i, j int) bool { return l.Branches[i].before(&l.Branches[j]) })
 }
 
-// size returns the extent of the figure, which tolerances refer to, in the plane: of poles and
-// zeros, or if there is only one, of the branches.
+// size returns the extent of poles and zeros in the plane, or if there is only one place of
+// them, its distance from the origin.
 func (t *tracker) size() float64 {
 	b := newBox()
 	for _, roots := range [][]poly.Root{t.poles, t.zeros} {
@@ -225,22 +244,10 @@ func (t *tracker) size() float64 {
 			b.put(t.plane.toX(r.Value))
 		}
 	}
-	if d := b.Diagonal(); d > 0 && !math.IsInf(d, 0) {
-		return d
-	}
-	for i := range t.chains {
-		c := &t.chains[i]
-		for _, end := range []tip{c.head, c.tail} {
-			if end.cell != nil && !end.cell.atInfinity {
-				b.put(end.cell.centre)
-			}
+	for _, d := range []float64{b.Diagonal(), b.reach()} {
+		if d > 0 && !math.IsInf(d, 0) {
+			return d
 		}
-		for j := range c.knots {
-			b.put(complex(c.knots[j].zx, c.knots[j].zy))
-		}
-	}
-	if d := b.Diagonal(); d > 0 && !math.IsInf(d, 0) {
-		return d
 	}
 	return 1
 }

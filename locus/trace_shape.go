@@ -10,6 +10,7 @@ import (
 type shaper struct {
 	*tracker
 	tolerance float64 // the farthest that the curve may be from the polyline, in the plane
+	longest   float64 // the longest piece of line in view
 	far       float64 // how far from the origin of the plane a chain that escapes is drawn
 	out       []point // in the plane
 }
@@ -39,9 +40,6 @@ func (s *shaper) add(κ float64, x complex128) {
 
 // between places points between knots i and i+1.
 func (s *shaper) between(c *chain, i int) {
-	if c.real {
-		return
-	}
 	k, n := &c.knots[i], &c.knots[i+1]
 	s.split(c, i, k.κ, n.κ, complex(k.zx, k.zy), complex(n.zx, n.zy), complex(k.vx, k.vy), complex(n.vx, n.vy), 0)
 }
@@ -58,7 +56,8 @@ func (s *shaper) split(c *chain, i int, lo, hi float64, x0, x1, v0, v1 complex12
 		}
 		return math.Abs(real(v)*imag(chord)-imag(v)*real(chord)) / length
 	}
-	if (normal(v0)+normal(v1))*(hi-lo)*4/27 <= s.tolerance || depth > 40 {
+	straight := c.real || (normal(v0)+normal(v1))*(hi-lo)*4/27 <= s.tolerance
+	if straight && (length <= s.longest || s.outside(x0, x1)) || depth > 40 {
 		return
 	}
 	mid := lo + (hi-lo)/2
@@ -80,6 +79,11 @@ func (s *shaper) split(c *chain, i int, lo, hi float64, x0, x1, v0, v1 complex12
 	s.split(c, i, lo, mid, x0, x, v0, complex(vx, vy), depth+1)
 	s.add(mid, x)
 	s.split(c, i, mid, hi, x, x1, complex(vx, vy), v1, depth+1)
+}
+
+// outside tells whether a piece of line is certainly out of view.
+func (s *shaper) outside(x0, x1 complex128) bool {
+	return cmplx.Abs(x0) > s.far && cmplx.Abs(x1) > s.far && cmplx.Abs(x1-x0) < cmplx.Abs(x0)
 }
 
 // head places the points from the beginning of a chain in a cell to its first knot.
@@ -182,7 +186,7 @@ func (s *shaper) inCell(e tip, from, to float64) {
 			d := x - x0
 			off = math.Abs(real(d)*imag(chord)-imag(d)*real(chord)) / length
 		}
-		if off <= s.tolerance && depth > 0 {
+		if off <= s.tolerance && depth > 0 && (cmplx.Abs(chord) <= s.longest || s.outside(x0, x1)) {
 			return
 		}
 		refine(u0, mid, x0, x, depth+1)
