@@ -12,12 +12,12 @@ import (
 type Count struct{ Inside, Boundary, Outside int }
 
 // CountLeftOf counts the roots with Re s < sigma, on the line Re s = sigma and beyond it,
-// without looking for them; sigma may be infinite. At 0, Inside is the number of roots in the
+// in general without looking for them; sigma may be infinite. At 0, Inside is the number of roots in the
 // open left half-plane, and a polynomial is a Hurwitz polynomial if that is all of them.
 //
 // The first column of Routh's table answers in float64 with error bounds, where none of its
-// entries may be zero; the Cauchy index in exact arithmetic does otherwise, in all singular
-// cases too.
+// entries may be zero; where that does not decide, the discs of all roots do, or the Cauchy index
+// in exact arithmetic, in all singular cases too.
 //
 // The error is a [*ArgumentError] for an invalid polynomial, for the zero polynomial, beyond
 // [MaxDegree], and if sigma is NaN.
@@ -38,6 +38,9 @@ func (p Poly) CountLeftOf(sigma float64) (Count, error) {
 	if c, ok := exact.FilterLeftOf(p.c, p.inexact(), sigma); ok {
 		return Count(c), nil
 	}
+	if c, ok := p.countByRoots(func(r Root) int { return sideOfLine(r, sigma) }); ok {
+		return c, nil
+	}
 	return Count(exact.LeftOf(p.integers(), exact.Float(sigma))), nil
 }
 
@@ -46,8 +49,8 @@ func (p Poly) CountLeftOf(sigma float64) (Count, error) {
 // of the rays. At zeta = 0 the sector is the left half-plane, and at 1 it has shrunk to
 // its boundary, the negative real axis with the origin.
 //
-// The argument principle answers by Routh's method along one ray, in float64 with error bounds
-// first, then in exact arithmetic.
+// The argument principle answers by Routh's method along one ray, in float64 with error bounds;
+// where that does not decide, the discs of all roots do, or exact arithmetic along the ray.
 //
 // The error is a [*ArgumentError] for an invalid polynomial, for the zero polynomial, beyond
 // [MaxDegree], and if zeta is not in [0, 1].
@@ -68,6 +71,9 @@ func (p Poly) CountInSector(zeta float64) (Count, error) {
 	if c, ok := exact.FilterInSector(p.c, p.inexact(), zeta); ok {
 		return Count(c), nil
 	}
+	if c, ok := p.countByRoots(func(r Root) int { return sideOfRays(r, zeta) }); ok {
+		return c, nil
+	}
 	return Count(exact.InSector(p.integers(), exact.Float(zeta))), nil
 }
 
@@ -75,8 +81,8 @@ func (p Poly) CountInSector(zeta float64) (Count, error) {
 // 0, where only the origin is on the circle, or +Inf.
 //
 // The Schur–Cohn test answers in float64 with error bounds, where none of its constants may be
-// zero; otherwise the disc is mapped to a half-plane and the Cauchy index in exact arithmetic
-// does, in all singular cases too.
+// zero; where that does not decide, the discs of all roots do, or the Cauchy index in exact
+// arithmetic after the disc was mapped to a half-plane, in all singular cases too.
 //
 // The error is a [*ArgumentError] for an invalid polynomial, for the zero polynomial, beyond
 // [MaxDegree], and if radius is negative or NaN.
@@ -97,6 +103,9 @@ func (p Poly) CountInDisc(radius float64) (Count, error) {
 	}
 	if c, ok := exact.FilterInDisc(p.c, p.inexact(), radius); ok {
 		return Count(c), nil
+	}
+	if c, ok := p.countByRoots(func(r Root) int { return sideOfCircle(r, radius) }); ok {
+		return c, nil
 	}
 	return Count(exact.InDisc(p.integers(), exact.Float(radius))), nil
 }

@@ -48,6 +48,15 @@ func (a bounded) div(b bounded) bounded {
 	return settled(q, (a.e+grow*math.Abs(q)*b.e+tiny)/(least*(1-0x1p-50)))
 }
 
+// sqrt claims nothing if a may be below zero.
+func (a bounded) sqrt() bounded {
+	if !(a.v > a.e) {
+		return bounded{0, math.Inf(1)}
+	}
+	v := math.Sqrt(a.v)
+	return settled(v, grow*a.e/v) // √ falls off by less than e/√a from a to a - e
+}
+
 // scaled multiplies by a power of two.
 func (a bounded) scaled(x float64) bounded { return bounded{a.v * x, a.e*x + tiny} }
 

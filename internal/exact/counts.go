@@ -113,15 +113,15 @@ func inSector(p Poly, zeta Dyadic) Count {
 	if u.signBeside(Dyadic{}, +1)*v.signBeside(Dyadic{}, +1) < 0 {
 		branch--
 	}
-	inside := branch + ceilOfAngle(m, zeta, u, v) - onRay
+	inside := branch + ceilOfAngle(m, zeta, u.LeadSign()*v.LeadSign()) - onRay
 	boundary := atOrigin + 2*onRay
 	return Count{inside, boundary, n - boundary - inside}
 }
 
 // ceilOfAngle returns N - branch for the N with branch·π ≤ N·π - m·acos zeta ≤ (branch+1)·π;
-// where two values fit, the signs of u and v at infinity tell from which side the argument comes
-// to its end.
-func ceilOfAngle(m int, zeta Dyadic, u, v Poly) int {
+// where two values fit, the sign of u·v at infinity tells from which side the argument comes to
+// its end.
+func ceilOfAngle(m int, zeta Dyadic, endSign int) int {
 	// Only for zeta = 1/2 is acos zeta (= π/3) a rational multiple of π (Niven).
 	if zeta.Cmp(PowerOfTwo(-1)) == 0 {
 		if m%3 != 0 {
@@ -129,7 +129,7 @@ func ceilOfAngle(m int, zeta Dyadic, u, v Poly) int {
 		}
 		// The argument ends at a multiple of π: from above, it is in the branch that begins
 		// there, and cot > 0; from below, in the branch that ends there.
-		if u.LeadSign()*v.LeadSign() > 0 {
+		if endSign > 0 {
 			return m / 3
 		}
 		return m/3 + 1

@@ -97,7 +97,7 @@ func TestInSector(t *testing.T) {
 	r := rand.New(rand.NewPCG(3, 1))
 	zetas := []float64{0.5, math.Nextafter(0.5, 0), math.Nextafter(0.5, 1), 0.25, 0.125, 0.875, 0.75,
 		math.Sqrt2 / 2, math.Cos(math.Pi / 5), math.Cos(math.Pi / 9), 1e-9, 1 - 1.0/(1<<53), 1e-300}
-	for range 1000 {
+	for range 300 {
 		zeta := zetas[r.IntN(len(zetas))]
 		p, want := product(r, func() piece {
 			switch r.IntN(4) {

@@ -120,11 +120,14 @@ func (f *filtered) inDisc(radius bounded) (Count, bool) {
 }
 
 // inSector counts by the argument principle, as [InSector] does (the letters are explained
-// there), with the chain of remainders of V and U in place of the Cauchy index. It is ok only if
-// all signs are certain: then no root but 0 is on the boundary.
+// there), with the signs of a chain of remainders in place of the Cauchy index. It is ok only if
+// all of them are certain: then no root but 0 is on the boundary.
+//
+// The argument is taken of p·e^(-jα), with an α for which both ends of the ray, and so the first
+// and the last coefficients of real and imaginary part, are far from the axes.
 func (f *filtered) inSector(zeta bounded) (Count, bool) {
 	if zeta.e != 0 {
-		return Count{}, false // its arc cosine below would need a bound
+		return Count{}, false // its arc cosine would need a bound
 	}
 	zeros := f.stripZeros()
 	c := f.c
@@ -132,37 +135,70 @@ func (f *filtered) inSector(zeta bounded) (Count, bool) {
 	if m == 0 {
 		return Count{Boundary: zeros}, true
 	}
-	var room [2][filterDegree + 1]bounded
-
-	// a = U, b = -V/r
-	a, b := room[0][:m+1], room[1][:m]
-	x := bounded{-zeta.v, zeta.e}
-	twice := x.scaled(2)
-	t, tNext := bounded{1, 0}, x
-	w, wNext := bounded{1, 0}, twice
-	for i := range a {
-		a[i] = c[i].mul(t)
-		t, tNext = tNext, twice.mul(tNext).sub(t)
+	phi := math.Acos(zeta.v)
+	// Where both ends of the ray lie in the same direction or in opposite ones, the first
+	// remainder nearly loses its constant. A further root inside, at -1, turns one end by φ.
+	added := 0
+	if end := math.Mod(float64(m)*phi, math.Pi); (end < 0.3 || end > math.Pi-0.3) && phi > 0.3 && m < filterDegree {
+		c = append(c, bounded{})
+		for i := m; i >= 0; i-- {
+			c[i+1] = c[i+1].add(c[i])
+		}
+		m, added = m+1, 1
 	}
-	for i := range b {
-		b[i] = c[i+1].mul(w)
-		b[i].v = -b[i].v
+	beta := math.Mod(float64(m)*phi, math.Pi/2)
+	alpha := math.Pi/4 - beta/2
+	if beta > math.Pi/4 {
+		alpha = math.Pi/2 - beta/2
+	}
+	// The α meant is the one that has exactly these two for its direction.
+	cosine, sine := bounded{math.Cos(alpha), 0}, bounded{math.Sin(alpha), 0}
+
+	// a = V, b = U, both turned by α
+	var room [2][filterDegree + 1]bounded
+	a, b := room[0][:m+1], room[1][:m+1]
+	one := bounded{1, 0}
+	across := one.sub(zeta).mul(one.add(zeta)).sqrt()
+	x := bounded{-zeta.v, 0}
+	twice := x.scaled(2)
+	t, tNext := one, x
+	w, wNext := bounded{}, one
+	for i := range c {
+		cos, sin := t, across.mul(w)
+		a[i] = c[i].mul(sin.mul(cosine).sub(cos.mul(sine)))
+		b[i] = c[i].mul(cos.mul(cosine).add(sin.mul(sine)))
+		t, tNext = tNext, twice.mul(tNext).sub(t)
 		w, wNext = wNext, twice.mul(wNext).sub(w)
 	}
 
-	// The chain V/r, U, -V/r, and so on: sign changes at 0 less those at infinity.
-	atZero, atInfinity := a[0].sign(), a[m].sign()
-	lowB, highB := b[0].sign(), b[m-1].sign()
-	if atZero*atInfinity*lowB*highB == 0 {
+	// Sign changes of the chain at 0 less those at infinity.
+	index := 0
+	lastZero, lastInfinity := a[0].sign(), a[m].sign()
+	next := func() bool { // joins b to the chain
+		s, h := b[0].sign(), b[len(b)-1].sign()
+		if s*h*lastZero*lastInfinity == 0 {
+			return false
+		}
+		if s != lastZero {
+			index++
+		}
+		if h != lastInfinity {
+			index--
+		}
+		lastZero, lastInfinity = s, h
+		return true
+	}
+	if !next() {
 		return Count{}, false
 	}
-	// One of the two first pairs in the chain always changes sign: V/r, U, -V/r.
-	index := 0
-	branch := 0
-	if atZero == lowB { // U·V < 0
-		branch = -1
+	q := a[m].div(b[m])
+	for i := range m {
+		a[i] = q.mul(b[i]).sub(a[i])
 	}
-	lastZero, lastInfinity := lowB, highB
+	a, b = b, a[:m]
+	if !next() {
+		return Count{}, false
+	}
 	for d := m - 1; d > 0; d-- {
 		// a has degree d+1, b degree d; a becomes -rem(a, b).
 		q := a[d+1].div(b[d])
@@ -174,22 +210,12 @@ func (f *filtered) inSector(zeta bounded) (Count, bool) {
 			a[i] = q.mul(b[i]).sub(a[i])
 		}
 		a, b = b, a[:d]
-		s, h := b[0].sign(), b[d-1].sign()
-		if s*h == 0 {
+		if !next() {
 			return Count{}, false
 		}
-		if s != lastZero {
-			index++
-		}
-		if h != lastInfinity {
-			index--
-		}
-		lastZero, lastInfinity = s, h
 	}
-	turns := float64(m) * math.Acos(zeta.v) / math.Pi
-	if math.Abs(turns-math.Round(turns)) < 1e-9 {
-		return Count{}, false
-	}
-	inside := branch + index + int(math.Floor(turns)) + 1
-	return Count{Inside: inside, Boundary: zeros, Outside: m - inside}, true
+	// The turned argument starts at -α, in (-π, 0), and ends at N·π - m·φ - α, at least π/8 from
+	// a multiple of π.
+	inside := index + int(math.Floor((float64(m)*phi+alpha)/math.Pi))
+	return Count{Inside: inside - added, Boundary: zeros, Outside: m - inside}, true
 }

@@ -9,6 +9,14 @@ func (r Isolated) Nearest() (value float64, side int) {
 		value = r.Lo.Float64()
 		return value, r.Lo.Cmp(Float(value))
 	}
+	if x, ok := r.guess(); ok {
+		// Proven by the signs half a place below and above.
+		below := Midpoint(finite(math.Nextafter(x, math.Inf(-1))), Float(x))
+		above := Midpoint(Float(x), finite(math.Nextafter(x, math.Inf(1))))
+		if r.against(below) > 0 && r.against(above) < 0 {
+			return x, r.against(Float(x))
+		}
+	}
 	if r.poly.Degree() > 1 {
 		r = r.narrow(54)
 	}
@@ -41,6 +49,53 @@ func (r Isolated) Nearest() (value float64, side int) {
 	}
 	value = middle.Float64()
 	return value, middle.Cmp(Float(value))
+}
+
+// guess returns a float64 near the root, by Newton's iteration with bisection where that leaves
+// the interval. Nothing is proven.
+func (r Isolated) guess() (float64, bool) {
+	var f filtered
+	if !f.fromPoly(r.poly) {
+		return 0, false
+	}
+	a, b := math.Ldexp(r.Lo.Float64(), -f.k), math.Ldexp(r.Hi.Float64(), -f.k)
+	if !(a < b) || math.IsInf(a, 0) || math.IsInf(b, 0) {
+		return 0, false
+	}
+	x := a + (b-a)/2
+	for range 60 {
+		var y, d float64
+		for i := len(f.c) - 1; i >= 0; i-- {
+			d = d*x + y
+			y = y*x + f.c[i].v
+		}
+		switch {
+		case y == 0 || math.IsNaN(y):
+			x = math.Ldexp(x, f.k)
+			return x, y == 0 && !math.IsInf(x, 0)
+		case (y > 0) == (r.below > 0):
+			b = x
+		default:
+			a = x
+		}
+		next := x - y/d
+		if math.Abs(next-x) <= 0x1p-53*math.Abs(x) {
+			x = math.Ldexp(next, f.k)
+			return x, !math.IsInf(x, 0)
+		}
+		if !(next > a && next < b) {
+			next = a + (b-a)/2
+			if a > 0 && b > 4*a || b < 0 && a < 4*b { // ends of very different size
+				next = math.Copysign(math.Sqrt(math.Abs(a))*math.Sqrt(math.Abs(b)), a)
+			}
+		}
+		if next == x {
+			x = math.Ldexp(next, f.k)
+			return x, !math.IsInf(x, 0)
+		}
+		x = next
+	}
+	return 0, false
 }
 
 // finite stands in for infinity the power of two next above the range, for the sake of
