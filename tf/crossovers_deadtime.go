@@ -2,6 +2,7 @@ package tf
 
 import (
 	"math"
+	"math/big"
 	"slices"
 
 	"github.com/polewright/polewright/internal/exact"
@@ -381,10 +382,21 @@ func (a *axisForm) inside(v float64, direction float64) float64 {
 	return v
 }
 
-// minusArgument returns arg(-g) in [-π, π], dead time left out.
+// minusArgument returns arg(-g) in [-π, π], dead time left out. Beside a multiple pole or zero
+// on the axis, where float64 has no digits left, the second stage tells.
 func (a *axisForm) minusArgument(v float64) float64 {
 	p := a.at(v * v)
-	return math.Atan2(-v*p.im().v, -p.re().v)
+	re, im := p.re(), p.im()
+	if re.e+v*im.e < 1e-10*math.Hypot(re.v, v*im.v) {
+		return math.Atan2(-v*im.v, -re.v)
+	}
+	if a.precise == nil {
+		a.precise = a.precisely()
+	}
+	x := new(big.Float).SetPrec(preciseBits).SetFloat64(v)
+	x.Mul(x, new(big.Float).SetFloat64(a.unit))
+	minusRe, minusIm := a.precise.at(x.Mul(x, x)).point().minusProduct()
+	return math.Atan2(minusIm, minusRe)
 }
 
 // argumentSlope returns d arg g/dv, dead time left out.

@@ -26,13 +26,14 @@ type axisForm struct {
 	weight                 float64 // of |N|² in the gain curve; 0 means 1
 	unit                   float64 // rad/s; of the tangent in z; a power of two
 
-	memory slab
-	ok     bool // false: coefficients span too much for the float64 stages
-	n, d   halves
-	f      halves
-	whole  intervalPoly // F by power of jv
-	nn, dd intervalPoly // |N|², |D|² in x
-	re, im intervalPoly // N·conj D = re + jv·im
+	memory  slab
+	precise *preciseAxis // made when needed, by searches on a copy of the form
+	ok      bool         // false: coefficients span too much for the float64 stages
+	n, d    halves
+	f       halves
+	whole   intervalPoly // F by power of jv
+	nn, dd  intervalPoly // |N|², |D|² in x
+	re, im  intervalPoly // N·conj D = re + jv·im
 }
 
 // halves are the parts of a polynomial in jv: even(x) + jv·odd(x).
