@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/internal/refdata"
 )
 
 func TestCounts(t *testing.T) {
@@ -153,5 +154,67 @@ func TestCountsStages(t *testing.T) {
 	}
 	if settled < total/2 {
 		t.Errorf("float64 settles only %d of %d", settled, total)
+	}
+}
+
+// TestCountsReferences counts the reference roots themselves. References: PARI/GP and mpmath, see
+// testdata/README.md.
+func TestCountsReferences(t *testing.T) {
+	for _, c := range rootCases(t) {
+		p := New(refdata.Floats(t, c.Coefficients)...)
+		if p.Degree() < 1 {
+			continue
+		}
+		var line Count
+		for _, r := range c.Roots {
+			// A part printed as "0" is exactly zero.
+			switch re := r.Re.Float(t); {
+			case r.Re == "0":
+				line.Boundary += r.Mult
+			case re < 0:
+				line.Inside += r.Mult
+			default:
+				line.Outside += r.Mult
+			}
+		}
+		if got, err := p.CountLeftOf(0); err != nil || got != line {
+			t.Errorf("%s: CountLeftOf(0) = %+v, %v; want %+v", c.Name, got, err, line)
+		}
+		if p.Degree() <= maxTableDegree {
+			if table, err := p.RouthTable(); err != nil || table.Count != line {
+				t.Errorf("%s: the table counts %+v, %v; want %+v", c.Name, table.Count, err, line)
+			}
+		}
+		// A radius and a damping ratio that keep clear of all reference roots.
+		radius, zeta := 1.0625, 0.6875
+		disc, sector, clear := Count{}, Count{}, true
+		for _, r := range c.Roots {
+			re, im := r.Re.Float(t), r.Im.Float(t)
+			m := math.Hypot(re, im)
+			d, e := m-radius, -re-zeta*m
+			clear = clear && math.Abs(d) > 1e-9*m && (math.Abs(e) > 1e-9*m || m == 0)
+			if d < 0 {
+				disc.Inside += r.Mult
+			} else {
+				disc.Outside += r.Mult
+			}
+			switch {
+			case m == 0:
+				sector.Boundary += r.Mult
+			case e > 0:
+				sector.Inside += r.Mult
+			default:
+				sector.Outside += r.Mult
+			}
+		}
+		if !clear {
+			t.Errorf("%s: a root is too near the boundary for this test", c.Name)
+		}
+		if got, err := p.CountInDisc(radius); err != nil || got != disc {
+			t.Errorf("%s: CountInDisc(%v) = %+v, %v; want %+v", c.Name, radius, got, err, disc)
+		}
+		if got, err := p.CountInSector(zeta); err != nil || got != sector {
+			t.Errorf("%s: CountInSector(%v) = %+v, %v; want %+v", c.Name, zeta, got, err, sector)
+		}
 	}
 }
