@@ -81,6 +81,7 @@ func fromTriples(sums []triple) (Poly, bool) {
 	p := Poly{c: all[:n:n]}
 	if layers > 0 {
 		p.rest = all[n:]
+		p.lo = p.rest[:n:n] // products below 2⁻⁹⁰⁰ do not get here: nothing underflows
 	}
 	for i := range sums[:n] {
 		t := &sums[i]

@@ -6,6 +6,7 @@ import (
 	"math/cmplx"
 
 	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/internal/rootkernel"
 )
 
 // unitRoundoff is half the distance from 1 to the next float64.
@@ -35,22 +36,17 @@ func (p Poly) At(x float64) float64 {
 		}
 		return math.Inf(sign)
 	}
-	// Horner with a running error bound (Higham, Accuracy and Stability of Numerical
-	// Algorithms, 2nd ed., SIAM 2002, Algorithm 5.1): 2u·m plus u·m for coefficients that are
-	// themselves rounded, and room for the rounding of m itself. Overflow makes the
-	// comparison false.
-	var y, m float64
-	for i := len(p.c) - 1; i >= 0; i-- {
-		y = float64(y*x) + p.c[i]
-		m = float64(m*math.Abs(x)) + math.Abs(y) + math.Abs(p.c[i]) + minNormal
-	}
-	if math.Abs(y) >= 0x1p52*(unitRoundoff*m) {
+	if y, _, miss := rootkernel.Value(p.c, p.lo, x, 0); p.evaluable() && math.Abs(y) >= 0x1p51*miss {
 		return y
 	}
 	re, _, e := exactAt(p.integers(), x, 0)
-	y, _ = nearest(re, e)
+	y, _ := nearest(re, e)
 	return y
 }
+
+// evaluable tells whether c + lo stands for the polynomial; it does not far beyond the range
+// of float64.
+func (p Poly) evaluable() bool { return p.exact == nil || p.lo != nil }
 
 // sign returns the sign of an exact coefficient.
 func (p Poly) sign(power int) int {
@@ -77,20 +73,12 @@ func (p Poly) AtComplex(s complex128) complex128 {
 	if b == 0 {
 		return complex(p.At(a), 0)
 	}
-	r := math.Hypot(a, b)
-	// As in At; a complex product has an error of at most √8·u of its modulus, which m
-	// gathers with |y| bounded by |re| + |im|.
-	var re, im, m float64
-	for i := len(p.c) - 1; i >= 0; i-- {
-		re, im = float64(re*a)-float64(im*b)+p.c[i], float64(re*b)+float64(im*a)
-		m = float64(m*r) + math.Abs(re) + math.Abs(im) + math.Abs(p.c[i]) + minNormal
-	}
-	if math.Abs(re)+math.Abs(im) >= 0x1p54*(unitRoundoff*m) {
+	if re, im, miss := rootkernel.Value(p.c, p.lo, a, b); p.evaluable() && math.Abs(re)+math.Abs(im) >= 0x1p52*miss {
 		return complex(re, im)
 	}
 	x, y, e := exactAt(p.integers(), a, b)
-	re, _ = nearest(x, e)
-	im, _ = nearest(y, e)
+	re, _ := nearest(x, e)
+	im, _ := nearest(y, e)
 	return complex(re, im)
 }
 

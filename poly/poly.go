@@ -20,6 +20,7 @@ type Poly struct {
 	c     []float64    // by power, c[i] of sⁱ, rounded to nearest; the last stands for a coefficient that is not zero
 	rest  []float64    // what c lacks: one number for each coefficient, or two that add up to it; or
 	exact *exact.Poly  // the polynomial itself, where that is not enough; both nil where c is exact
+	lo    []float64    // what c lacks, to nearest: the first numbers of rest, or computed from exact
 	given []complex128 // the roots, if they were given; nil if not
 	err   error        // what is wrong with an invalid polynomial
 }
@@ -161,34 +162,30 @@ func fromInteger(x exact.Poly) Poly {
 		whole = whole && ok
 	}
 	if !whole {
-		p.exact = &x
+		p.exact, p.lo = &x, low(p.c, x)
 	}
 	return p
 }
 
-// low returns what c lacks to the exact coefficients, rounded to nearest. It is not ok where
-// that loses digits to underflow: the stages that scale their terms up would miss them.
-func (p Poly) low() (lo []float64, ok bool) {
-	if p.exact == nil {
-		// Products below 2⁻⁹⁰⁰ do not get here: nothing underflows.
-		return p.rest[:min(len(p.c), len(p.rest))], true
-	}
-	integers, exponent := p.exact.Integers()
-	lo = make([]float64, len(p.c))
+// low returns what c lacks to an exact polynomial, rounded to nearest; nil where that loses
+// digits to underflow (the stages that scale their terms up would miss them) or overflow.
+func low(c []float64, p exact.Poly) []float64 {
+	integers, exponent := p.Integers()
+	lo := make([]float64, len(c))
 	for i, n := range integers {
-		if math.IsInf(p.c[i], 0) {
-			continue // of no use, and found out later
+		if math.IsInf(c[i], 0) {
+			return nil
 		}
 		f := new(big.Float).SetInt(n)
 		f.SetMantExp(f, exponent)
-		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(p.c[i])
+		rest := new(big.Float).SetPrec(f.Prec() + 2200).SetFloat64(c[i])
 		rest.Sub(f, rest)
 		lo[i], _ = rest.Float64()
 		if rest.Sign() != 0 && math.Abs(lo[i]) < minNormal {
-			return nil, false
+			return nil
 		}
 	}
-	return lo, true
+	return lo
 }
 
 // nearest returns the float64 nearest to n·2^e and whether it is exactly that.

@@ -39,11 +39,8 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 		zeros++
 	}
 	var lo []float64
-	usable := true
-	if p.inexact() {
-		if lo, usable = p.low(); usable {
-			lo = lo[zeros:]
-		}
+	if p.lo != nil {
+		lo = p.lo[zeros:]
 	}
 	n := p.Degree() - zeros
 	var room [32]rootkernel.Disc
@@ -54,7 +51,7 @@ func (s *Solver) find(dst []Root, p Poly, call string) ([]Root, error) {
 		}
 		discs = s.discs[:0]
 	}
-	if c := p.c[zeros:]; usable && c[0] != 0 && c[n] != 0 { // not below the range of float64
+	if c := p.c[zeros:]; p.evaluable() && c[0] != 0 && c[n] != 0 { // not below the range of float64
 		k := &s.kernel
 		k.Set(c, lo)
 		var failure rootkernel.Failure

@@ -171,7 +171,25 @@ func (k *Kernel) discRadius(r, d, h, bend, tangent, slopeMiss float64) float64 {
 func (k *Kernel) fastBounds(m, r float64) (bend, miss, slopeMiss float64) {
 	n := float64(k.n + 2)
 	bend = n * n * 1.02 * m
-	return bend, n * n * 0x1p-101 * m, bend / r * (10 * u)
+	return bend, valueMiss(k.n, m), bend / r * (10 * u)
+}
+
+// valueMiss bounds the error of the compensated p(z), besides its own last rounding.
+func valueMiss(n int, m float64) float64 {
+	return float64((n+2)*(n+2)) * 0x1p-101 * m
+}
+
+// Value returns the polynomial with the coefficients c + lo by power at x + jy, evaluated as if
+// in twice the working precision, and a bound on its error besides the rounding of each part.
+// The bound is infinite or NaN where something overflows.
+func Value(c, lo []float64, x, y float64) (re, im, miss float64) {
+	var m float64
+	if y == 0 {
+		re, _, m = compensatedReal(c, lo, x, math.Abs(x))
+	} else {
+		re, im, _, _, m = compensated(c, lo, x, y, math.Hypot(x, y))
+	}
+	return re, im, valueMiss(len(c)-1, m) * 1.01
 }
 
 // carefulBounds does so after values; p2 is |p″|/2 as evaluated, h the step. Horner's rule for
@@ -211,7 +229,7 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 				return Disc{}, Imprecise
 			}
 			r = math.Sqrt(square)
-			pr, pi, dr, di, m = k.compensated(x, y, r)
+			pr, pi, dr, di, m = compensated(k.c, k.lo, x, y, r)
 			bend, miss, slopeMiss = k.fastBounds(m, r)
 		}
 		d2 := dr*dr + di*di
@@ -269,7 +287,7 @@ func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 			if !(r > 0x1p-450 && r < 0x1p450) {
 				return Disc{}, Imprecise
 			}
-			p, d, m = k.compensatedReal(x, r)
+			p, d, m = compensatedReal(k.c, k.lo, x, r)
 			bend, miss, slopeMiss = k.fastBounds(m, r)
 		}
 		h := -p / d
@@ -289,11 +307,9 @@ func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 }
 
 // compensated returns p(z), p′(z) and m, as above.
-func (k *Kernel) compensated(x, y, r float64) (pr, pi, dr, di, m float64) {
+func compensated(c, lo []float64, x, y, r float64) (pr, pi, dr, di, m float64) {
 	var er, ei float64
-	n := k.n
-	c := k.c[:n+1]
-	lo := k.lo
+	n := len(c) - 1
 	pr = c[n]
 	m = math.Abs(c[n]) + floor
 	if lo != nil {
@@ -329,11 +345,9 @@ func (k *Kernel) compensated(x, y, r float64) (pr, pi, dr, di, m float64) {
 }
 
 // compensatedReal does the same on the real axis.
-func (k *Kernel) compensatedReal(x, r float64) (p, d, m float64) {
+func compensatedReal(c, lo []float64, x, r float64) (p, d, m float64) {
 	var e float64
-	n := k.n
-	c := k.c[:n+1]
-	lo := k.lo
+	n := len(c) - 1
 	p = c[n]
 	m = math.Abs(c[n]) + floor
 	if lo != nil {
