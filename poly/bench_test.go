@@ -71,6 +71,39 @@ func BenchmarkRoots(b *testing.B) {
 				}
 			}
 		})
+		b.Run(fmt.Sprintf("degree=%d/method=float64 stage", n), func(b *testing.B) {
+			b.ReportAllocs()
+			for i := 0; b.Loop(); i++ {
+				roots, err := New(inputs[i%len(inputs)]...).Roots(RelativeRadius(1e-3))
+				if err != nil {
+					b.Fatal(err)
+				}
+				for _, r := range roots {
+					sink += r.Value
+				}
+			}
+		})
+		b.Run(fmt.Sprintf("degree=%d/method=warm", n), func(b *testing.B) {
+			polynomials := make([]Poly, len(inputs))
+			known := make([][]Root, len(inputs))
+			for i, c := range inputs {
+				moved := append([]float64(nil), c...)
+				moved[len(moved)-1] *= 1 + 1e-4
+				polynomials[i] = New(moved...)
+				known[i], _ = New(c...).Roots()
+			}
+			var s Solver
+			b.ReportAllocs()
+			for i := 0; b.Loop(); i++ {
+				roots, err := s.Near(polynomials[i%len(inputs)], known[i%len(inputs)])
+				if err != nil {
+					b.Fatal(err)
+				}
+				for _, r := range roots {
+					sink += r.Value
+				}
+			}
+		})
 		b.Run(fmt.Sprintf("degree=%d/method=companion", n), func(b *testing.B) {
 			for i := 0; b.Loop(); i++ {
 				for _, s := range baseline.CompanionRoots(inputs[i%len(inputs)]) {

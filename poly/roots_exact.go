@@ -68,7 +68,7 @@ func (s *Solver) approachFactor(f exact.Poly, mirrored bool) ([]rootkernel.Disc,
 	if plain {
 		k.Set(c, lo)
 		k.Mirrored = mirrored
-		return approach(k, discs, false)
+		return approach(k, discs, false, 0)
 	}
 	k.SetScaled(c, lo, exponents)
 	k.Mirrored = mirrored

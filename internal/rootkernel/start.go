@@ -99,3 +99,24 @@ func (k *Kernel) Start(attempt int) {
 		k.addReal(leftSign * roughPower(leftLog))
 	}
 }
+
+// Begin starts without points; [Kernel.Place] adds them.
+func (k *Kernel) Begin() { k.pairCount, k.realCount, k.shift = 0, 0, false }
+
+// Place adds the point x + jy, the upper one of a pair, or a real point with y = 0. It is not ok
+// if there is no room.
+func (k *Kernel) Place(x, y float64) bool {
+	taken := 2*k.pairCount + k.realCount
+	switch {
+	case y > 0 && taken+2 <= k.n:
+		k.addPair(x, y)
+	case y == 0 && taken < k.n:
+		k.addReal(x)
+	default:
+		return false
+	}
+	return true
+}
+
+// Complete tells whether there are as many points as roots.
+func (k *Kernel) Complete() bool { return 2*k.pairCount+k.realCount == k.n }
