@@ -6,6 +6,9 @@ import "github.com/polewright/polewright/internal/exact"
 // of the boundary: side returns -1 for inside, +1 for outside, 0 if that is not certain and the
 // root is not exactly on the boundary, for which it returns onBoundary.
 func (p Poly) countByRoots(side func(Root) int) (c Count, ok bool) {
+	if p.Degree() <= exactDegree {
+		return Count{}, false
+	}
 	roots, err := p.Roots()
 	if err != nil {
 		return Count{}, false
@@ -26,6 +29,10 @@ func (p Poly) countByRoots(side func(Root) int) (c Count, ok bool) {
 }
 
 const onBoundary = 2
+
+// exactDegree is the degree up to which exact arithmetic takes well below a millisecond, whatever
+// the coefficients; roots that are hard to find take longer.
+const exactDegree = 8
 
 func sideOfLine(r Root, sigma float64) int {
 	if real(r.Value) == sigma && r.HalfRe == 0 {
