@@ -68,9 +68,8 @@ func (g Function) Continuous(how Method, opt ...Option) (Function, error) {
 		return invalid(err)
 	}
 	h = h.monic(2 * mapPrecision)
-	h.numerator, h.denominator = rounded(h.numerator), rounded(h.denominator)
-	if h.numerator.Err() != nil || h.denominator.Err() != nil || h.denominator.Degree() < 0 {
-		return invalid(&poly.RangeError{Call: call, Reason: "a coefficient is beyond the range of float64"})
+	if h, err = h.Rounded(); err != nil {
+		return invalid(err)
 	}
 	h.delay = deadTimeOf(new(big.Rat).Mul(ratOf(g.period), new(big.Rat).SetInt64(int64(periods))))
 	h.period = 0
@@ -88,9 +87,6 @@ func dividedByPower(p poly.Poly, n int) poly.Poly {
 	}
 	return d.Quotient
 }
-
-// rounded returns the polynomial with its coefficients rounded to float64.
-func rounded(p poly.Poly) poly.Poly { return poly.New(p.Coefficients()...) }
 
 // logarithmBits is the precision of poles in s on the way back.
 const logarithmBits = offsetBits + 64

@@ -31,9 +31,8 @@ func TestContinuousUndoesSample(t *testing.T) {
 					t.Errorf("%s, %v s, %v: %s does not come back: %v", text, period, how, h, err)
 					continue
 				}
-				want := g
-				want.numerator, want.denominator = rounded(g.monic(200).numerator), rounded(g.monic(200).denominator)
-				if !back.Equal(want) {
+				want, err := g.monic(200).Rounded()
+				if err != nil || !back.Equal(want) {
 					t.Errorf("%s, %v s, %v: comes back as %s, want %s", text, period, how, back, want)
 				}
 			}

@@ -2,6 +2,7 @@ package tf
 
 import (
 	"fmt"
+	"math"
 	"math/big"
 	"sort"
 	"strconv"
@@ -13,7 +14,16 @@ import (
 // String returns the function as [Parse] reads it: Parse gives back the identical function,
 // with the roots that were given. A coefficient that is no float64 stands in hexadecimal. Of
 // an invalid function the text is its error in parentheses, which Parse refuses.
-func (g Function) String() string {
+func (g Function) String() string { return g.text(exactly) }
+
+// Text returns the function as [Function.String] does, its numbers rounded to so many
+// significant digits, for people to read: at least 1, at most 17.
+func (g Function) Text(digits int) string { return g.text(min(max(digits, 1), 17)) }
+
+// exactly, in the place of a number of digits, asks for all of them.
+const exactly = 0
+
+func (g Function) text(digits int) string {
 	if g.err != nil {
 		return "(" + g.err.Error() + ")"
 	}
@@ -22,23 +32,27 @@ func (g Function) String() string {
 	if g.period > 0 {
 		variable = "z"
 	}
-	top := factored(g.numerator, variable)
+	top := factored(g.numerator, variable, digits)
 	if !g.delay.zero() {
-		delay := "exp(-" + exactNumber(g.delay.rat()) + " s)"
+		delay := exactNumber(g.delay.rat())
+		if digits != exactly {
+			delay = decimal(g.delay.near, digits)
+		}
+		delay = "exp(-" + delay + " s)"
 		if len(top.factors) == 0 && top.lead == "1" {
 			top.lead = ""
 		}
 		top.factors = append(top.factors, delay)
 	}
 	text := top.product(false)
-	bottom := factored(g.denominator, variable)
+	bottom := factored(g.denominator, variable, digits)
 	if bottom.lead != "1" || len(bottom.factors) > 0 {
 		text = top.product(true) + " / " + bottom.below()
 	}
 	if g.period > 0 {
-		text += ", period " + decimal(g.period)
+		text += ", period " + decimal(g.period, digits)
 		if g.periods > 0 {
-			text += ", dead time " + decimal(g.DeadTime())
+			text += ", dead time " + decimal(g.DeadTime(), digits)
 		}
 	}
 	return text
@@ -55,13 +69,13 @@ type factors struct {
 }
 
 // factored returns a polynomial as the product of its given roots, or as a sum.
-func factored(p poly.Poly, variable string) factors {
+func factored(p poly.Poly, variable string, digits int) factors {
 	p = keepRoot(p)
 	if p.Degree() < 0 {
 		return factors{lead: "0"}
 	}
 	if roots, ok := p.GivenRoots(); ok {
-		return factors{lead: coefficient(p, p.Degree()), factors: linearFactors(roots, variable)}
+		return factors{lead: coefficient(p, p.Degree(), digits), factors: linearFactors(roots, variable, digits)}
 	}
 	c, _ := p.Integers()
 	var b strings.Builder
@@ -70,7 +84,7 @@ func factored(p poly.Poly, variable string) factors {
 		if c[i].Sign() == 0 {
 			continue
 		}
-		number := coefficient(p, i)
+		number := coefficient(p, i, digits)
 		switch negative := number[0] == '-'; {
 		case terms == 0 && negative:
 			b.WriteString("-")
@@ -92,13 +106,13 @@ func factored(p poly.Poly, variable string) factors {
 		terms++
 	}
 	if terms == 1 { // a lone power
-		return factors{lead: coefficient(p, p.Degree()), factors: []string{raised(variable, p.Degree())}}
+		return factors{lead: coefficient(p, p.Degree(), digits), factors: []string{raised(variable, p.Degree())}}
 	}
 	return factors{sum: b.String()}
 }
 
 // linearFactors returns the factors of the roots, equal ones as powers, in a fixed order.
-func linearFactors(roots []complex128, variable string) []string {
+func linearFactors(roots []complex128, variable string, digits int) []string {
 	count := map[complex128]int{}
 	for _, s := range roots {
 		if imag(s) >= 0 {
@@ -121,12 +135,12 @@ func linearFactors(roots []complex128, variable string) []string {
 		text := variable
 		switch a := real(s); {
 		case a > 0:
-			text = "(" + variable + " - " + decimal(a) + ")"
+			text = "(" + variable + " - " + decimal(a, digits) + ")"
 		case a < 0:
-			text = "(" + variable + " + " + decimal(-a) + ")"
+			text = "(" + variable + " + " + decimal(-a, digits) + ")"
 		}
 		if b := imag(s); b > 0 {
-			text = "(" + text + "^2 + " + decimal(b) + "^2)"
+			text = "(" + text + "^2 + " + decimal(b, digits) + "^2)"
 		}
 		list = append(list, raised(text, count[s]))
 	}
@@ -184,12 +198,15 @@ func (f factors) below() string {
 	return "(" + text + ")"
 }
 
-// coefficient returns a coefficient with all its digits.
-func coefficient(p poly.Poly, power int) string {
+// coefficient returns a coefficient, with all its digits if it is beyond the range of float64.
+func coefficient(p poly.Poly, power, digits int) string {
 	x := p.Coefficient(power)
+	if digits != exactly && !math.IsInf(x, 0) && x != 0 {
+		return decimal(x, digits)
+	}
 	c, e := p.Integers()
 	if n, exact := floatOf(c[power], e); exact && n == x {
-		return decimal(x)
+		return decimal(x, exactly)
 	}
 	return hexadecimalText(c[power], e)
 }
@@ -204,7 +221,7 @@ func floatOf(n *big.Int, e int) (float64, bool) {
 // exactNumber returns a fraction whose denominator is a power of two with all its digits.
 func exactNumber(r *big.Rat) string {
 	if x, exact := r.Float64(); exact {
-		return decimal(x)
+		return decimal(x, exactly)
 	}
 	return hexadecimalText(r.Num(), 1-r.Denom().BitLen())
 }
@@ -223,8 +240,11 @@ func hexadecimalText(n *big.Int, e int) string {
 	return fmt.Sprintf("%s0x%xp%+d", sign, m, e+int(shift))
 }
 
-// decimal returns the shortest decimal that reads back as x.
-func decimal(x float64) string {
-	text := strconv.FormatFloat(x, 'g', -1, 64)
+// decimal returns x to so many digits; exactly, that is the shortest decimal that reads back as x.
+func decimal(x float64, digits int) string {
+	if digits == exactly {
+		digits = -1
+	}
+	text := strconv.FormatFloat(x, 'g', digits, 64)
 	return strings.Replace(text, "e+", "e", 1)
 }

@@ -257,6 +257,22 @@ func (g Function) Equal(h Function) bool {
 		g.Numerator().Equal(h.Numerator()) && g.Denominator().Equal(h.Denominator())
 }
 
+// Rounded returns the function with every coefficient rounded to the nearest float64: what a
+// program gets that reads its coefficients. Exact products and sampled functions have more
+// digits, and keep their roots by them; given roots are multiplied out. The error is a
+// [*poly.RangeError] where a coefficient is beyond the range of float64.
+func (g Function) Rounded() (Function, error) {
+	if g.err != nil {
+		return g, g.err
+	}
+	g = g.filled()
+	g.numerator, g.denominator = poly.New(g.numerator.Coefficients()...), poly.New(g.denominator.Coefficients()...)
+	if g.numerator.Err() != nil || g.denominator.Err() != nil || g.denominator.Degree() < 0 {
+		return invalid(&poly.RangeError{Call: "tf.Function.Rounded", Reason: "a coefficient is beyond the range of float64"})
+	}
+	return g, nil
+}
+
 // isProper tells whether the function stays finite at infinity.
 func (g Function) isProper() bool { return g.Numerator().Degree() <= g.Denominator().Degree() }
 
