@@ -267,16 +267,6 @@ func (a *axisForm) levelCrossings(call string) ([]Crossover, error) {
 	return b.gainCrossovers()
 }
 
-// Bandwidth returns the bandwidth of the path, as [Function.Bandwidth] does. For a loop with
-// dead time in s the error is an [*IrrationalError].
-func (p Path) Bandwidth() (float64, error) {
-	g, err := p.function("tf.Path.Bandwidth")
-	if err != nil {
-		return math.NaN(), err
-	}
-	return g.Bandwidth()
-}
-
 // Resonance returns the supremum of the path's magnitude, as [Function.Resonance] does. For a
 // loop with dead time in s the error is an [*IrrationalError]; [Loop.SensitivityPeak] and
 // [Loop.ComplementaryPeak] take dead time.

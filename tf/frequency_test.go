@@ -261,3 +261,60 @@ func TestMeasuredMargins(t *testing.T) {
 		}
 	}
 }
+
+// The bandwidth of closed loops with dead time, against a dense evaluation.
+func TestBandwidthWithDeadTime(t *testing.T) {
+	for _, test := range []struct{ controller, plant string }{
+		{"1", "exp(-0.2 s) / (s (s + 1))"},
+		{"0.4 (s + 0.5)/s", "exp(-1.5 s)/(2 s + 1)"},
+		{"3", "exp(-0.001 s) / (s^2 + 0.02 s + 1)"},
+		{"2e-6", "exp(-2e5 s)/s"},
+		{"0.3", "1e9 exp(-2e-10 s)/(s + 1e8)"},
+	} {
+		l := tf.Loop{Controller: tf.MustParse(test.controller), Plant: tf.MustParse(test.plant)}
+		p, err := l.ComplementarySensitivity()
+		if err != nil {
+			t.Fatal(err)
+		}
+		w, err := p.Bandwidth()
+		if err != nil {
+			t.Errorf("%v: %v", test, err)
+			continue
+		}
+		level := cmplx.Abs(p.At(0)) / math.Sqrt2
+		if got := cmplx.Abs(p.At(complex(0, w))); math.Abs(got-level) > 1e-10*level {
+			t.Errorf("%v: magnitude %v at the bandwidth %v, want %v", test, got, w, level)
+		}
+		for k := range 20000 {
+			if x := w * (float64(k) + 0.5) / 20000; cmplx.Abs(p.At(complex(0, x))) < level*(1-1e-12) {
+				t.Errorf("%v: below the level at %v already, bandwidth %v", test, x, w)
+				break
+			}
+		}
+	}
+	// |S| of a loop without integrator rises to 1 and never falls to 1/√2 of its value at zero.
+	s, err := (tf.Loop{Plant: tf.MustParse("0.5 exp(-0.1 s)/(s+1)")}).Sensitivity()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if w, err := s.Bandwidth(); err != nil || !math.IsInf(w, 1) {
+		t.Errorf("bandwidth %v of a path that never falls, %v", w, err)
+	}
+	// Without dead time the same code path must agree with the exact roots: a vanishing dead time.
+	a, err := (tf.Loop{Plant: tf.MustParse("4/(s(s+1))")}).ComplementarySensitivity()
+	if err != nil {
+		t.Fatal(err)
+	}
+	b, err := (tf.Loop{Plant: tf.MustParse("4 exp(-1e-14 s)/(s(s+1))")}).ComplementarySensitivity()
+	if err != nil {
+		t.Fatal(err)
+	}
+	x, err := a.Bandwidth()
+	if err != nil {
+		t.Fatal(err)
+	}
+	y, err := b.Bandwidth()
+	if err != nil || math.Abs(x-y) > 1e-12*x {
+		t.Errorf("bandwidth %v, with a vanishing dead time %v, %v", x, y, err)
+	}
+}
