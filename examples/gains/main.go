@@ -98,7 +98,7 @@ func run(ctx context.Context, args []string, in io.Reader, out, problems io.Writ
 		err = printReport(out, j, design)
 	}
 	if err == nil && *pictures != "" {
-		err = drawPictures(ctx, *pictures, j, design)
+		err = drawPictures(ctx, *pictures, j, design, problems)
 	}
 	if err != nil {
 		fmt.Fprintf(problems, "gains: %v\n", err)

@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"io"
 	"math"
 
 	"gonum.org/v1/plot/plotter"
@@ -14,8 +15,9 @@ import (
 )
 
 // drawPictures writes the locus and the step response, as PNG and SVG, of the plant and of
-// each variant. Where no gain works they show the nearest miss.
-func drawPictures(ctx context.Context, folder string, j *job, d spec.Design) error {
+// each variant. Where no gain works they show the nearest miss. What cannot be drawn is told
+// in notes.
+func drawPictures(ctx context.Context, folder string, j *job, d spec.Design, notes io.Writer) error {
 	gain := d.Gain
 	if !d.Feasible {
 		if d.Nearest == nil {
@@ -32,7 +34,7 @@ func drawPictures(ctx context.Context, folder string, j *job, d spec.Design) err
 		if len(j.loops) > 1 {
 			title += ", " + j.names[i]
 		}
-		if err := drawLocusOf(ctx, folder, "locus"+suffix, title, j, d, i, gain); err != nil {
+		if err := drawLocusOf(ctx, folder, "locus"+suffix, title, j, d, i, gain, notes); err != nil {
 			return err
 		}
 		if err := drawStepOf(folder, "step"+suffix, title, j, d, i, gain); err != nil {
@@ -42,13 +44,14 @@ func drawPictures(ctx context.Context, folder string, j *job, d spec.Design) err
 	return nil
 }
 
-func drawLocusOf(ctx context.Context, folder, name, title string, j *job, d spec.Design, i int, gain float64) error {
+func drawLocusOf(ctx context.Context, folder, name, title string, j *job, d spec.Design, i int, gain float64, notes io.Writer) error {
 	open, err := j.loops[i].Open()
 	if err != nil {
 		return err
 	}
 	if open.DeadTime() > 0 {
-		return nil // infinitely many branches
+		_, err := fmt.Fprintf(notes, "gains: no picture of the locus of %s: with dead time it has infinitely many branches\n", j.names[i])
+		return err
 	}
 	family, err := locus.Gain(open)
 	if err != nil {
