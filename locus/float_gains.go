@@ -2,7 +2,6 @@ package locus
 
 import (
 	"math"
-	"slices"
 
 	"github.com/polewright/polewright/poly"
 )
@@ -56,7 +55,7 @@ func (w *floatFamily) load(p poly.Poly, into []float64) bool {
 }
 
 // windowsFloat returns the windows of a half-plane or sector, and false if it cannot prove them.
-func (f Family) windowsFloat(on constraint) ([]Window, bool) {
+func (f Family) windowsFloat(r Region) ([]Window, bool) {
 	n, m := f.fixed.Degree(), f.scaled.Degree()
 	if n < 0 || m < 0 || max(n, m) < 1 || max(n, m) > floatDegree {
 		return nil, false
@@ -70,11 +69,11 @@ func (f Family) windowsFloat(on constraint) ([]Window, bool) {
 	if f.fixed.Rounded() || f.scaled.Rounded() {
 		w.rounded = unitRoundoff
 	}
-	switch on := on.(type) {
-	case halfPlane:
-		return w.leftOf(on.sigma.Float64())
-	case sector:
-		return w.damped(on.zeta.Float64())
+	switch r := r.(type) {
+	case leftOf:
+		return w.leftOf(r.sigma)
+	case damped:
+		return w.damped(r.zeta)
 	}
 	return nil, false
 }
@@ -146,8 +145,7 @@ func (w *floatFamily) leftOf(sigma float64) ([]Window, bool) {
 	if len(c) == 0 || signOf(c[0], e[0]) == 0 || signOf(c[len(c)-1], e[len(c)-1]) == 0 {
 		return nil, false
 	}
-	var rootRoom [floatRoots]floatRoot
-	s := isolator{c: c, e: e, roots: rootRoom[:0]}
+	s := isolator{c: c, e: e}
 	if !s.positive(typical(c)) {
 		return nil, false
 	}
@@ -167,7 +165,7 @@ func (w *floatFamily) leftOf(sigma float64) ([]Window, bool) {
 		k := -a[0] / b[0]
 		list = append(list, floatContact{k, math.Abs(k) * quotientError(relative*majorA[0], a[0], relative*majorB[0], b[0]), signOf(c[0], 0)})
 	}
-	for _, r := range s.roots {
+	for _, r := range s.found[:s.count] {
 		omega := math.Sqrt(r.x)
 		at := floatPoint{double{h: sigma}, double{h: omega}, 0, 1}
 		k, err, ok := w.gain(at, 0.51*r.d/omega+2*unitRoundoff*omega)
@@ -243,8 +241,7 @@ func (w *floatFamily) damped(zeta float64) ([]Window, bool) {
 	if len(c) == 0 || signOf(c[0], e[0]) == 0 || signOf(c[len(c)-1], e[len(c)-1]) == 0 {
 		return nil, false
 	}
-	var rootRoom [floatRoots]floatRoot
-	s := isolator{c: c, e: e, roots: rootRoom[:0]}
+	s := isolator{c: c, e: e}
 	if !s.positive(typical(c)) {
 		return nil, false
 	}
@@ -265,7 +262,7 @@ func (w *floatFamily) damped(zeta float64) ([]Window, bool) {
 	square := productOf(-zeta, zeta).plusFloat(1)
 	root := double{h: math.Sqrt(square.h)}
 	root.l = square.plus(productOf(-root.h, root.h)).float() / (2 * root.h)
-	for _, r := range s.roots {
+	for _, r := range s.found[:s.count] {
 		at := floatPoint{productOf(-zeta, r.x), root.times(double{h: r.x}), -zeta, root.h}
 		k, err, ok := w.gain(at, r.d)
 		if !ok {
@@ -307,8 +304,7 @@ func (w *floatFamily) damped(zeta float64) ([]Window, bool) {
 // relative error of its majorant.
 func (w *floatFamily) combine(a, majorA, b, majorB []float64, k, relative float64) (f, e []float64) {
 	n := max(len(a), len(b))
-	room := make([]float64, 2*n)
-	f, e = room[:n], room[n:]
+	f, e = w.take(n), w.take(n)
 	size := math.Abs(k)
 	copy(f, a)
 	for i, x := range majorA {
@@ -433,12 +429,11 @@ func (w *floatFamily) degreeDrop(list []floatContact, highest int) ([]floatConta
 // assemble sorts the contacts and returns the intervals between them in which all roots are
 // inside: those with the highest count, if one sample, which holds tells, has all inside.
 func (w *floatFamily) assemble(list []floatContact, holds func(k float64) (all, ok bool)) ([]Window, bool) {
-	slices.SortFunc(list, func(x, y floatContact) int {
-		if x.k < y.k {
-			return -1
+	for i := 1; i < len(list); i++ {
+		for j := i; j > 0 && list[j].k < list[j-1].k; j-- {
+			list[j], list[j-1] = list[j-1], list[j]
 		}
-		return +1
-	})
+	}
 	count, best, wide := 0, 0, 0.0
 	for i, c := range list {
 		if i > 0 && !(list[i-1].k+list[i-1].e < c.k-c.e) {

@@ -5,7 +5,6 @@ import (
 	"math/rand/v2"
 	"testing"
 
-	"github.com/polewright/polewright/internal/exact"
 	"github.com/polewright/polewright/poly"
 )
 
@@ -35,7 +34,7 @@ func roundedPoly(p poly.Poly) poly.Poly { return poly.New(p.Coefficients()...) }
 // The two ways must agree wherever the one in float64 claims an answer.
 func TestFloatAgainstExact(t *testing.T) {
 	rng := rand.New(rand.NewPCG(11, 12))
-	parts := []constraint{halfPlane{exact.Float(0)}, halfPlane{exact.Float(-0.125)}, sector{exact.Float(0.5)}, sector{exact.Float(math.Sqrt2 / 2)}, sector{exact.Float(0.3)}}
+	parts := []Region{LeftOf(0), LeftOf(-0.125), Damped(0.5), Damped(math.Sqrt2 / 2), Damped(0.3)}
 	tried, answered := map[[2]int]int{}, map[[2]int]int{}
 	for range 150 {
 		n := []int{4, 8, 12}[rng.IntN(3)]
@@ -47,7 +46,7 @@ func TestFloatAgainstExact(t *testing.T) {
 				continue
 			}
 			answered[[2]int{n, i}]++
-			want, err := f.reduced().windows("", []constraint{on})
+			want, err := f.reduced().windows("", constraintsFor(t, on))
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -65,6 +64,15 @@ func TestFloatAgainstExact(t *testing.T) {
 			t.Logf("degree %d, constraint %d: %d of %d", n, i, answered[[2]int{n, i}], tried[[2]int{n, i}])
 		}
 	}
+}
+
+func constraintsFor(t testing.TB, r Region) []constraint {
+	t.Helper()
+	list, err := constraintsOf("", r)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return list
 }
 
 func nearEnd(got, want float64) bool {

@@ -18,7 +18,8 @@ type floatRoot struct {
 // An isolator finds roots of w(x) = Σ c[i]·xⁱ.
 type isolator struct {
 	c, e  []float64
-	roots []floatRoot
+	count int
+	found [floatRoots]floatRoot
 }
 
 // signOf returns the sign of a number that is within e of v, 0 if it is not certain.
@@ -117,15 +118,14 @@ func (s *isolator) bernstein(b, e []float64, t0, t1, scale float64, depth int) b
 	if depth > 40 {
 		return false
 	}
-	var room [2 * (floatRoots + 1)]float64
+	var room, trial [2 * (floatRoots + 1)]float64
 	lb, le := room[:n+1], room[n+1:2*n+2]
+	tb, te := trial[:n+1], trial[n+1:2*n+2]
 	for _, share := range [...]float64{0.5, 0.4375, 0.59375} {
 		rest := 1 - share
 		// The left part gets the first column of the scheme, the right part stays in b.
 		copyB, copyE := lb, le
 		copyB[0], copyE[0] = b[0], e[0]
-		var trial [2 * (floatRoots + 1)]float64
-		tb, te := trial[:n+1], trial[n+1:2*n+2]
 		copy(tb, b)
 		copy(te, e)
 		if share == 0.5 {
@@ -226,7 +226,11 @@ func (s *isolator) refineFrom(lo, hi, x float64, positive bool) bool {
 	if low <= lo0 && lo0 > 0 || high >= hi0 {
 		return false
 	}
-	s.roots = append(s.roots, floatRoot{x, d, !positive})
+	if s.count == len(s.found) {
+		return false
+	}
+	s.found[s.count] = floatRoot{x, d, !positive}
+	s.count++
 	return true
 }
 

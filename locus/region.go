@@ -36,6 +36,34 @@ func constraintsOf(call string, r Region) ([]constraint, error) {
 	return []constraint{userRegion{r}}, nil
 }
 
+// simpleRegions returns the regions that r is the intersection of; their arguments are valid.
+func simpleRegions(call string, r Region) ([]Region, error) {
+	switch s := r.(type) {
+	case leftOf:
+		if finite(s.sigma) {
+			return []Region{r}, nil
+		}
+	case damped:
+		if s.zeta > 0 && s.zeta < 1 {
+			return []Region{r}, nil
+		}
+	case all:
+		var list []Region
+		for _, one := range s {
+			more, err := simpleRegions(call, one)
+			if err != nil {
+				return nil, err
+			}
+			list = append(list, more...)
+		}
+		return list, nil
+	}
+	if _, err := constraintsOf(call, r); err != nil {
+		return nil, err
+	}
+	return []Region{r}, nil
+}
+
 func invalidRegion(call, constructor, argument string, value float64, wanted string) error {
 	return &poly.ArgumentError{Call: call, Argument: "r", Reason: fmt.Sprintf("locus.%s: %s is %v; %s", constructor, argument, value, wanted)}
 }

@@ -40,6 +40,11 @@ func TestOnSamplesWindows(t *testing.T) {
 		"fast sampling":     family(t, poly.New(1, -1).Mul(poly.New(1, -0.9999)).Mul(poly.New(1, -0.9995)).Mul(poly.New(1, -0.998)), poly.New(1e-12, 1e-12)),
 		"biproper":          family(t, poly.New(1, -0.5, 0.2), poly.New(1, 0.3, 0.1)),
 	}
+	if testing.Short() {
+		delete(families, "delay")
+		delete(families, "biproper")
+		delete(families, "double integrator")
+	}
 	for name, f := range families {
 		for _, r := range []locus.Region{locus.LeftOf(0), locus.LeftOf(-2), locus.Damped(0.5), locus.Damped(0.1), locus.Within(30), locus.Within(100), locus.Beyond(1), locus.Strip(12), locus.Strip(40), locus.Strip(100),
 			locus.All(locus.Damped(0.5), locus.LeftOf(-0.5))} {

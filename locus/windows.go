@@ -23,37 +23,41 @@ func (f Family) Windows(r Region) ([]Window, error) {
 	if err := f.valid(call); err != nil {
 		return nil, err
 	}
-	parts, err := constraintsOf(call, r)
+	parts, err := simpleRegions(call, r)
 	if err != nil {
 		return nil, err
 	}
-	// In float64 first, each constraint by itself; what is not proven there is left to exact
+	// In float64 first, each region by itself; what is not proven there is left to exact
 	// arithmetic.
-	answer := []Window{everything}
+	answer, first := []Window(nil), true
 	var left []constraint
-	for _, on := range parts {
-		some, ok := f.windowsFloat(on)
-		if !ok {
-			left = append(left, on)
+	for _, one := range parts {
+		some, ok := f.windowsFloat(one)
+		switch {
+		case !ok:
+			constraints, err := constraintsOf(call, one)
+			if err != nil {
+				return nil, err
+			}
+			left = append(left, constraints...)
 			continue
-		}
-		if len(answer) == 1 && answer[0] == everything {
-			answer = some
-		} else {
+		case first:
+			answer, first = some, false
+		default:
 			answer = intersect(answer, some)
 		}
 		if len(answer) == 0 {
 			return nil, nil
 		}
 	}
-	if len(left) == 0 {
+	if len(left) == 0 && !first {
 		return answer, nil
 	}
-	some, err := f.reduced().windows(call, left)
-	if err != nil {
-		return nil, err
+	exactly, err := f.reduced().windows(call, left)
+	if err != nil || first {
+		return exactly, err
 	}
-	return intersect(answer, some), nil
+	return intersect(answer, exactly), nil
 }
 
 func (r reduced) windows(call string, parts []constraint) ([]Window, error) {
