@@ -5,6 +5,7 @@ import (
 	"math/big"
 
 	"github.com/polewright/polewright/internal/exact"
+	"github.com/polewright/polewright/poly"
 )
 
 // A form describes a curve through the plane by points γ(x) with x in [lo, hi], on which every
@@ -47,6 +48,8 @@ type constraint interface {
 	// side returns +1 if s lies strictly inside, -1 if outside, 0 if on the boundary or too close
 	// to tell.
 	side(s bigComplex) int
+	// around is side for a root that is known to within its disc.
+	around(r poly.Root) int
 	// count counts the roots of p, which is not zero.
 	count(call string, p exact.Poly) (exact.Count, error)
 }

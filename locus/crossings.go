@@ -29,7 +29,7 @@ func (f Family) Crossings(r Region) ([]Crossing, error) {
 		return nil, err
 	}
 	moving := f.reduced()
-	var crossings []Crossing
+	var kept []contact
 	for i, on := range parts {
 		list, whole, err := on.contacts(call, moving)
 		if err != nil {
@@ -39,29 +39,37 @@ func (f Family) Crossings(r Region) ([]Crossing, error) {
 			return nil, &BoundaryOnLocusError{Region: r}
 		}
 		for _, c := range list {
-			if c.gain.Sign() == 0 {
-				continue
-			}
 			inside := true
 			for j, other := range parts {
-				inside = inside && (i == j || other.side(c.s) >= 0)
+				inside = inside && (i == j || c.gain.Sign() == 0 || other.side(c.s) >= 0)
 			}
-			if !inside {
-				continue
+			if inside {
+				kept = append(kept, c)
 			}
-			k, at, touch := toFloat(c.gain), number(c.s), poly.Fails
-			if c.even {
-				touch = poly.Holds
-			}
-			if c.pair {
-				crossings = append(crossings, Crossing{complex(real(at), -imag(at)), k, touch})
-			}
-			crossings = append(crossings, Crossing{at, k, touch})
 		}
+	}
+	return sortedCrossings(kept), nil
+}
+
+// sortedCrossings returns the crossings at gains other than 0 that contacts stand for.
+func sortedCrossings(list []contact) []Crossing {
+	var crossings []Crossing
+	for _, c := range list {
+		if c.gain.Sign() == 0 {
+			continue
+		}
+		k, at, touch := toFloat(c.gain), number(c.s), poly.Fails
+		if c.even {
+			touch = poly.Holds
+		}
+		if c.pair {
+			crossings = append(crossings, Crossing{complex(real(at), -imag(at)), k, touch})
+		}
+		crossings = append(crossings, Crossing{at, k, touch})
 	}
 	slices.SortFunc(crossings, compareCrossings)
 	// A corner of an intersection lies on two pieces.
-	return slices.CompactFunc(crossings, func(a, b Crossing) bool { return a.S == b.S && a.Gain == b.Gain }), nil
+	return slices.CompactFunc(crossings, func(a, b Crossing) bool { return a.S == b.S && a.Gain == b.Gain })
 }
 
 func compareCrossings(a, b Crossing) int {

@@ -307,21 +307,26 @@ func (r userRegion) contacts(call string, f reduced) (list []contact, whole bool
 		}
 		list, whole = append(list, more...), whole || on
 	}
+	return snapReal(list), whole, nil
+}
+
+// snapReal makes real the points that float64 cannot tell from real ones: there the branch on the
+// real axis meets the curve.
+func snapReal(list []contact) []contact {
 	for i := range list {
-		// Where float64 cannot tell it from a real point, it is the branch on the real axis that
-		// meets the curve.
 		if s := &list[i].s; s.im != nil && exponent(s.im) < exponent(s.re)-50 {
 			s.im = newFloat(64)
 		}
 	}
-	return list, whole, nil
+	return list
 }
 
-func (r userRegion) side(s bigComplex) int { return r.around(number(s), 0) }
+func (r userRegion) side(s bigComplex) int { return r.around(poly.Root{Value: number(s)}) }
 
 // around asks the region about a point and its neighbours; they must agree.
-func (r userRegion) around(s complex128, radius float64) int {
-	h := 4*radius + 0x1p-40*cmplx.Abs(s)
+func (r userRegion) around(root poly.Root) int {
+	s := root.Value
+	h := 4*root.Radius + 0x1p-40*cmplx.Abs(s)
 	in := r.Contains(s)
 	for _, d := range [...]complex128{complex(h, 0), complex(-h, 0), complex(0, h), complex(0, -h)} {
 		if r.Contains(s+d) != in {
@@ -332,7 +337,7 @@ func (r userRegion) around(s complex128, radius float64) int {
 }
 
 func (r userRegion) count(call string, p exact.Poly) (exact.Count, error) {
-	return countRoots(call, p, func(root poly.Root) int { return r.around(root.Value, root.Radius) })
+	return countRoots(call, p, r.around)
 }
 
 // curvesOf returns the boundary of an image under sampling.

@@ -198,22 +198,24 @@ func sign(holds bool) int {
 	return -1
 }
 
+func (c sampled) around(r poly.Root) int {
+	if r.Value == 0 && r.Radius == 0 {
+		return sign(c.region.Contains(0))
+	}
+	size := cmplx.Abs(r.Value)
+	if r.Radius > size/4 {
+		return 0
+	}
+	s := logarithm(r.Value)
+	m := c.margin(s)
+	if math.Abs(m) <= 1.5*r.Radius/size+0x1p-49*cmplx.Abs(s) {
+		return 0
+	}
+	return sign(m > 0)
+}
+
 func (c sampled) count(call string, p exact.Poly) (exact.Count, error) {
-	return countRoots(call, p, func(r poly.Root) int {
-		if r.Value == 0 && r.Radius == 0 {
-			return sign(c.region.Contains(0))
-		}
-		size := cmplx.Abs(r.Value)
-		if r.Radius > size/4 {
-			return 0
-		}
-		s := logarithm(r.Value)
-		m := c.margin(s)
-		if math.Abs(m) <= 1.5*r.Radius/size+0x1p-49*cmplx.Abs(s) {
-			return 0
-		}
-		return sign(m > 0)
-	})
+	return countRoots(call, p, c.around)
 }
 
 // countRoots counts by the roots themselves: side tells on which side a root's disc lies, 0 if

@@ -86,16 +86,7 @@ func (r reduced) windowsOf(call string, on constraint) ([]Window, error) {
 	}
 	var windows []Window
 	for i := 0; i <= len(gains); i++ {
-		w := everything
-		var lo, hi *big.Float
-		if i > 0 {
-			lo = gains[i-1]
-			w.Lo = toFloat(lo)
-		}
-		if i < len(gains) {
-			hi = gains[i]
-			w.Hi = toFloat(hi)
-		}
+		w, lo, hi := gap(gains, i)
 		if w.Lo >= w.Hi {
 			continue
 		}
@@ -109,6 +100,20 @@ func (r reduced) windowsOf(call string, on constraint) ([]Window, error) {
 		}
 	}
 	return windows, nil
+}
+
+// gap returns the interval below the i-th of ascending gains, with its ends, nil if infinite.
+func gap(gains []*big.Float, i int) (w Window, lo, hi *big.Float) {
+	w = everything
+	if i > 0 {
+		lo = gains[i-1]
+		w.Lo = toFloat(lo)
+	}
+	if i < len(gains) {
+		hi = gains[i]
+		w.Hi = toFloat(hi)
+	}
+	return w, lo, hi
 }
 
 // between returns a short number well inside (lo, hi); nil is infinity.
@@ -158,11 +163,26 @@ func (r reduced) critical(call string, on constraint) ([]*big.Float, error) {
 	if k, ok := r.drop(); ok {
 		gains = append(gains, k)
 	}
-	slices.SortFunc(gains, (*big.Float).Cmp)
-	if _, ok := on.(userRegion); ok {
-		return slices.CompactFunc(gains, sameGain), nil
+	return mergeGains(gains, []constraint{on}), nil
+}
+
+// mergeGains sorts gains and drops repeated ones.
+func mergeGains(gains []*big.Float, parts []constraint) []*big.Float {
+	same := func(a, b *big.Float) bool { return a.Cmp(b) == 0 }
+	for _, on := range parts {
+		if _, ok := on.(userRegion); ok {
+			same = sameGain
+		}
 	}
-	return slices.CompactFunc(gains, func(a, b *big.Float) bool { return a.Cmp(b) == 0 }), nil
+	slices.SortFunc(gains, (*big.Float).Cmp)
+	return slices.CompactFunc(gains, same)
+}
+
+// sameGain tells whether two gains at points of curves that are rounded to float64 may be the
+// same, such as those of a conjugate pair.
+func sameGain(a, b *big.Float) bool {
+	d := newFloat(128).Sub(a, b)
+	return exponent(d) < max(exponent(a), exponent(b))-42
 }
 
 // drop returns the finite gain at which a root passes through infinity.
@@ -176,11 +196,4 @@ func (r reduced) drop() (*big.Float, bool) {
 	}
 	k := newFloat(128).Quo(round(r.a.Coefficient(n), 192), round(r.b.Coefficient(m), 192))
 	return k.Neg(k), true
-}
-
-// sameGain tells whether two gains at points of curves that are rounded to float64 may be the
-// same, such as those of a conjugate pair.
-func sameGain(a, b *big.Float) bool {
-	d := newFloat(128).Sub(a, b)
-	return exponent(d) < max(exponent(a), exponent(b))-42
 }
