@@ -135,6 +135,9 @@ func (l Loop) period(call string) (float64, error) {
 			return 0, &PeriodError{Call: call, Periods: [2]float64{period, 0}}
 		}
 	}
+	if l.ComputationDelay > 0 && l.Plant.period > 0 && !l.Plant.isConstant() {
+		return 0, badArgument(call, "ComputationDelay", "%v s around a plant in z, which has no time between samples; give the plant its dead time", l.ComputationDelay)
+	}
 	if period == 0 && l.ComputationDelay > 0 {
 		return 0, badArgument(call, "ComputationDelay", "%v s in a loop that is not sampled; give the plant this dead time", l.ComputationDelay)
 	}

@@ -70,7 +70,9 @@ func ZerosAtInfinity(n int) Option { return func(s *settings) { s.zerosAtInfinit
 //
 // The error is a [*poly.ArgumentError] for a period that is not finite and > 0, a function
 // of z, an improper function behind a hold, or an option out of place; a [*poly.RangeError]
-// for a pole so unstable that exp(s·period) overflows.
+// for a pole so unstable that exp(s·period) overflows; an [*UnsupportedError] for a function
+// of order above 60 behind a hold, and for roots closer together than float64 can part where they
+// are mapped one by one.
 func (g Function) Sample(period float64, how Method, opt ...Option) (Function, error) {
 	const call = "tf.Function.Sample"
 	var s settings
@@ -105,8 +107,15 @@ func (g Function) Sample(period float64, how Method, opt ...Option) (Function, e
 	return g.sampleHeld(call, g.delay, period, how)
 }
 
+// maxHeld is the highest order that is sampled behind a hold: the work grows with the fifth
+// power, to some ten seconds here.
+const maxHeld = 60
+
 // sampleHeld samples a proper function behind a hold, with the dead time given.
 func (g Function) sampleHeld(call string, delay deadTime, period float64, how Method) (Function, error) {
+	if n := g.denominator.Degree(); n > maxHeld {
+		return invalid(&UnsupportedError{Call: call, What: fmt.Sprintf("a hold before a function of order %d; at most %d", n, maxHeld)})
+	}
 	// delay = (whole - fraction)·period, 0 ≤ fraction < 1.
 	ratio := new(big.Rat).Quo(delay.rat(), ratOf(period))
 	whole, rest := new(big.Int).DivMod(ratio.Num(), ratio.Denom(), new(big.Int))

@@ -93,6 +93,7 @@ func TestSampledDataLoopErrors(t *testing.T) {
 		"prefilter in s":                  {Prefilter: p, Controller: c, Plant: p},
 		"two periods":                     {Controller: c, Plant: p, Sensor: MustParse("1 / z, period 0.2")},
 		"delay without sampling":          {Plant: p, ComputationDelay: 0.1},
+		"delay around a plant in z":       {Controller: c, Plant: c, ComputationDelay: 0.1},
 		"negative delay":                  {Controller: c, Plant: p, ComputationDelay: -0.1},
 		"sensor in s behind a plant in z": {Controller: c, Plant: c, Sensor: p},
 	} {
