@@ -344,13 +344,6 @@ func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 		return nil, err
 	}
 	slices.Sort(knots)
-	small, large := 1.0, 1.0 // of the finite features
-	for i, x := range append(slices.Clone(knots), turns...) {
-		if i == 0 {
-			small, large = x, x
-		}
-		small, large = math.Min(small, x), math.Max(large, x)
-	}
 	knots = append(append([]float64{0}, knots...), inf)
 	knots = slices.Compact(knots)
 	cause.Kind = Crossing
@@ -374,9 +367,9 @@ func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 		for _, x := range [2]float64{a, b} {
 			switch {
 			case x == 0:
-				consider(q.limit(small*0x1p-50, 0x1p-20))
+				consider(q.limit(true))
 			case math.IsInf(x, 1):
-				consider(q.limit(large*0x1p50, 0x1p20))
+				consider(q.limit(false))
 			default:
 				// At the end of a piece both roots of F meet, or a or b changes its sign.
 				if l, h, ok := q.span(x); ok {
@@ -400,24 +393,37 @@ func (q quadratic) holes(cause Cause) ([]GainWindow, error) {
 	return holes, nil
 }
 
-// limit returns the limits of span for x towards 0 or infinity: power laws far from every
-// finite feature, told by one more step.
-func (q quadratic) limit(x, step float64) (lo, hi float64) {
-	l1, h1, ok1 := q.span(x)
-	l2, h2, ok2 := q.span(x * step)
-	if !ok1 || !ok2 {
+// limit returns the limits of span for x towards infinity, or towards 0 with low: those of
+// the dominant terms of the three polynomials. Where these forbid nothing at finite gains and
+// the piece reaches so far all the same, the gains it forbids grow without bound.
+func (q quadratic) limit(low bool) (lo, hi float64) {
+	power := -1
+	for _, p := range [3]poly.Poly{q.a, q.b, q.c} {
+		n := p.Degree()
+		if low {
+			for i := 0; i <= n; i++ {
+				if p.Coefficient(i) != 0 {
+					n = i
+					break
+				}
+			}
+		}
+		if n >= 0 && (power < 0 || low && n < power || !low && n > power) {
+			power = n
+		}
+	}
+	term := func(p poly.Poly) poly.Poly { return poly.New(p.Coefficient(power)) }
+	t := quadratic{term(q.a), term(q.b), term(q.c)}
+	if lo, hi, ok := t.span(1); ok {
+		return lo, hi
+	}
+	if a := t.a.At(0); a != 0 {
+		if k := -t.b.At(0) / (2 * a); k > 0 {
+			return k, k
+		}
 		return inf, 0
 	}
-	trend := func(a, b float64) float64 {
-		switch {
-		case b > 8*a:
-			return inf
-		case b < a/8:
-			return 0
-		}
-		return b
-	}
-	return trend(l1, l2), trend(h1, h2)
+	return inf, inf
 }
 
 // sensitivityHoles: |1/(1+L)| > peak, that is d2 > peak²·|D + kN|².
