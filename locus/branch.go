@@ -79,12 +79,23 @@ func (b Branch) At(k float64) (complex128, bool) {
 	if b.plane == nil || math.IsNaN(k) {
 		return 0, false
 	}
-	κ := b.plane.toK(k)
-	i := sort.Search(len(b.parts), func(i int) bool { return b.parts[i].upto >= κ })
-	if i == len(b.parts) || b.parts[i].from > κ {
+	for _, part := range b.parts {
+		if s, ok := part.vertexAtGain(k); ok {
+			if part.mirror {
+				s = complex(real(s), -imag(s))
+			}
+			return s, true
+		}
+	}
+	i := sort.Search(len(b.parts), func(i int) bool { return b.parts[i].upto >= b.parts[i].plane.toK(k) })
+	if i == len(b.parts) {
 		return 0, false
 	}
-	x, ok := b.parts[i].at(b.plane, κ)
+	κ := b.parts[i].plane.toK(k)
+	if b.parts[i].from > κ {
+		return 0, false
+	}
+	x, ok := b.parts[i].at(b.parts[i].plane, κ)
 	if !ok {
 		return 0, false
 	}

@@ -133,6 +133,7 @@ func (t *tracker) trace(lo, hi float64) error {
 			}
 		}
 	}
+	t.last = t.end
 	if err := t.foresee(); err != nil {
 		return err
 	}
@@ -147,9 +148,6 @@ func (t *tracker) trace(lo, hi float64) error {
 		for i := range t.rows {
 			c := &t.chains[t.rows[i].chain]
 			c.head, c.from = tips[i], first
-		}
-		for i := range t.branches {
-			t.branches[i].birth = first
 		}
 	}
 	if err := t.walk(); err != nil {
@@ -200,6 +198,7 @@ func (t *tracker) foresee() error {
 
 // draw places the points of all branches and finds the frame.
 func (t *tracker) draw(l *Locus) {
+	t.plane = t.home
 	for i := range t.chains {
 		if v := t.chains[i].head.cell; v != nil && !v.atInfinity && !v.reciprocal {
 			l.meetings = append(l.meetings, t.plane.fromX(v.centre))

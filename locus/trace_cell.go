@@ -160,14 +160,24 @@ func (p *plane) vertexCellBy(x complex128, order int, errX float64, precise bool
 	if precise {
 		u, κlow = 20*float64(n+1)*doubleRoundoff, 0
 	}
+	r := cmplx.Abs(x) * (1 + 4*unitRoundoff)
+	share := 0x1p-48 // as in pencil.set
+	if precise {
+		share = 1
+	}
+	terms := 0.0
 	for i := range f {
 		errF[i] = math.Abs(p.a[i]) + math.Abs(κ.h*p.b[i])
 		errB[i] = math.Abs(p.b[i])
+		whole := errF[i]
+		if p.major != nil {
+			whole += p.major[i]
+			errF[i] += share * p.major[i]
+		}
+		terms += whole * math.Pow(r, float64(i))
 	}
-	r := cmplx.Abs(x) * (1 + 4*unitRoundoff)
 	taylorReal(errF, r)
 	taylorReal(errB, r)
-	terms := errF[0]
 	for i := range f {
 		errF[i] = u*errF[i] + 2*unitRoundoff*cmplx.Abs(f[i]) + minNormal
 		errB[i] = u*errB[i] + 2*unitRoundoff*cmplx.Abs(b[i]) + minNormal
@@ -341,6 +351,9 @@ func taylorReal(c []float64, x float64) {
 		}
 	}
 }
+
+// before tells whether the gain of the cell is below that of another.
+func (c *cell) before(d *cell) bool { return (c.gain-d.gain)+(c.gainLow-d.gainLow) < 0 }
 
 // ahead tells whether the gain of the cell is above κ.
 func (c *cell) ahead(κ float64) bool { return (c.gain-κ)+c.gainLow > 0 }

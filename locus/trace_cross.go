@@ -372,9 +372,9 @@ func (t *tracker) turn(v *cell, g int, members, sectors []int) [][2]int {
 	for l := range heirs {
 		switch {
 		case v.realSector(l, +1):
-			heirs[l][0] = t.newBranch(v.gain)
+			heirs[l][0] = t.newBranch()
 		case imag(v.centre) > 0 || v.upper(l, +1):
-			heirs[l][0], heirs[l][1] = t.newBranch(v.gain), t.newBranch(v.gain)
+			heirs[l][0], heirs[l][1] = t.newBranch(), t.newBranch()
 		}
 	}
 	return heirs

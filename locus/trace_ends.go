@@ -71,10 +71,10 @@ func (t *tracker) beginSimple(roots []poly.Root) bool {
 func (t *tracker) name(rows []row) {
 	for i := range rows {
 		r := &rows[i]
-		owner, mirror := t.newBranch(t.from), -1
+		owner, mirror := t.newBranch(), -1
 		if r.y > 0 {
 			// the lower one comes first, as in the order of roots
-			owner, mirror = t.newBranch(t.from), owner
+			owner, mirror = t.newBranch(), owner
 		}
 		r.chain = t.newChain(r.y == 0, owner, mirror, t.from, tip{})
 	}

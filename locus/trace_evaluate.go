@@ -53,6 +53,9 @@ func (q *pencil) set(κ float64) {
 		q.f[i] = v + float64(κ*p.b[i])
 		q.majorF[i] = math.Abs(v) + float64(size*q.majorB[i])
 	}
+	for i, v := range p.major { // growth takes ten units of roundoff of this and more
+		q.majorF[i] += 0x1p-48 * v
+	}
 }
 
 // at evaluates all that [value] holds at x = (re, im).

@@ -26,12 +26,14 @@ type plane struct {
 	tailA, tailB  []float64
 	n             int
 	stretch, lift int
-	leadA, leadB  int     // degrees of a and b
-	dropAt        float64 // κ at which the leading coefficient vanishes; NaN if at none
-	dropLow       float64 // the rest of it beyond float64
-	dropOrder     int     // how many roots are at infinity there
-	dropError     float64 // bound on the error of dropAt + dropLow
-	escaping      int     // how many roots are at infinity for κ = ±∞
+	origin        float64   // κ is counted from here
+	major         []float64 // with an origin: |a| + |origin·b|, of which a is off by less than 2⁻¹⁰¹ beyond its tail
+	leadA, leadB  int       // degrees of a and b
+	dropAt        float64   // κ at which the leading coefficient vanishes; NaN if at none
+	dropLow       float64   // the rest of it beyond float64
+	dropOrder     int       // how many roots are at infinity there
+	dropError     float64   // bound on the error of dropAt + dropLow
+	escaping      int       // how many roots are at infinity for κ = ±∞
 }
 
 // newPlane scales a coprime pair of which neither is zero and not both are constant.
@@ -209,6 +211,22 @@ func (p *plane) fromX(x complex128) complex128 {
 	return complex(math.Ldexp(real(x), p.stretch), math.Ldexp(imag(x), p.stretch))
 }
 
-func (p *plane) toK(k float64) float64 { return math.Ldexp(k, -p.lift) }
+func (p *plane) toK(k float64) float64 { return math.Ldexp(k, -p.lift) - p.origin }
 
-func (p *plane) fromK(κ float64) float64 { return math.Ldexp(κ, p.lift) }
+func (p *plane) fromK(κ float64) float64 { return math.Ldexp(κ+p.origin, p.lift) }
+
+// from returns the plane with gains counted from κ, for the small steps that float64 cannot
+// make from there otherwise. It is made of one without origin.
+func (p *plane) from(κ float64) *plane {
+	q := *p
+	q.origin = κ
+	q.a, q.tailA, q.major = make([]float64, len(p.a)), make([]float64, len(p.a)), make([]float64, len(p.a))
+	for i := range q.a {
+		q.major[i] = math.Abs(p.a[i]) + math.Abs(κ*p.b[i])
+		c := coefficient(p.a, p.tailA, i).plus(coefficient(p.b, p.tailB, i).timesFloat(κ))
+		q.a[i], q.tailA[i] = c.h, c.l
+	}
+	drop := double{p.dropAt, p.dropLow}.plusFloat(-κ)
+	q.dropAt, q.dropLow = drop.h, drop.l
+	return &q
+}

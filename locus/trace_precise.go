@@ -84,7 +84,15 @@ func (p *plane) precisely(x, y, κ float64, v *value) {
 		f.re = f.re.plus(coefficient(p.b, p.tailB, i).timesFloat(κ).plus(coefficient(p.a, p.tailA, i)))
 	}
 	v.re, v.im, v.dRe, v.dIm = f.re.h, f.im.h, d.re.h, d.im.h
-	v.errF = 20*float64(p.n+1)*doubleRoundoff*v.modulusMax + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
+	scale := v.modulusMax
+	if p.major != nil {
+		r := math.Hypot(x, y) * (1 + 4*unitRoundoff)
+		scale = 0
+		for i := p.n; i >= 0; i-- {
+			scale = scale*r + p.major[i] + math.Abs(p.a[i]) + math.Abs(κ*p.b[i])
+		}
+	}
+	v.errF = 20*float64(p.n+1)*doubleRoundoff*scale + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
 }
 
 // preciseTaylor computes the coefficients of a + κ·b and of b about x, rounded at the end.
@@ -106,10 +114,11 @@ func (p *plane) preciseTaylor(x complex128, κ double, f, b []complex128) {
 	}
 }
 
-// preciseCritical improves a real x near a simple root of a′b - ab′, moving it by less than size.
-func (p *plane) preciseCritical(x, size float64) float64 {
+// preciseCritical improves a real x near a simple root of a′b - ab′ to the last digit or two,
+// moving it by less than size.
+func (p *plane) preciseCritical(x, size float64) (float64, bool) {
 	start := x
-	for range 3 {
+	for range 6 {
 		κ := p.preciseGain(x, 0)
 		var y1, y, z double // derivative and value of a + κ·b, value of b
 		var y2, z1 float64  // half the second derivative, derivative of b
@@ -124,12 +133,12 @@ func (p *plane) preciseCritical(x, size float64) float64 {
 		// y vanishes, but for rounding.
 		step := -(y1.h - y.h*z1/z.h) / (2 * y2)
 		if !(math.Abs(x+step-start) < size) {
-			break
+			return x, false
 		}
 		x += step
-		if math.Abs(step) <= unitRoundoff*math.Abs(x) {
-			break
+		if math.Abs(step) <= 2*unitRoundoff*math.Abs(x) {
+			return x, true
 		}
 	}
-	return x
+	return x, false
 }

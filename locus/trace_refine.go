@@ -28,6 +28,17 @@ func (c *chain) at(p *plane, κ float64) (complex128, bool) {
 	return p.polish(x, κ, k.radius-math.Hypot(real(x)-k.x, imag(x)-k.y)), true
 }
 
+// vertexAtGain returns the break point, or the multiple root at gain zero, at which the chain
+// begins or ends, if its gain rounds to k.
+func (c *chain) vertexAtGain(k float64) (complex128, bool) {
+	for _, e := range [...]tip{c.head, c.tail} {
+		if v := e.cell; v != nil && !v.atInfinity && !v.reciprocal && c.plane.fromK(v.gain) == k {
+			return c.plane.fromX(v.centre), true
+		}
+	}
+	return 0, false
+}
+
 // near computes the root at a gain that knot i covers, by Newton's method, and makes sure
 // that it is in the disc of the knot. The pencil q stands at that gain.
 func (c *chain) near(q *pencil, i int, κ float64) (complex128, bool) {

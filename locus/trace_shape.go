@@ -18,6 +18,9 @@ type shaper struct {
 // points returns the points of a chain in ascending gain.
 func (s *shaper) points(c *chain) []point {
 	s.out = make([]point, 0, 2*len(c.knots)+16)
+	if s.pencil.plane != c.plane {
+		s.pencil = newPencil(c.plane)
+	}
 	s.head(c)
 	for i := range c.knots {
 		k := &c.knots[i]
@@ -27,7 +30,48 @@ func (s *shaper) points(c *chain) []point {
 		s.add(k.κ, complex(k.zx, k.zy))
 	}
 	s.tail(c)
+	if c.plane.origin != 0 {
+		s.out = s.representable(c, s.out)
+	}
 	return s.out
+}
+
+// representable moves points to gains that are float64 when counted from 0.
+func (s *shaper) representable(c *chain, points []point) []point {
+	kept := points[:0]
+	last := math.Inf(-1)
+	for _, p := range points {
+		gain := c.plane.fromK(p.gain)
+		κ := c.plane.toK(gain)
+		if gain == last && !(p.gain == c.upto && c.tail.cell != nil) {
+			continue
+		}
+		if κ != p.gain {
+			if e := c.vertexAt(p.gain); e == nil {
+				if κ < c.from || κ > c.upto {
+					continue
+				}
+				x, ok := c.at(c.plane, κ)
+				if !ok {
+					continue
+				}
+				p = point{κ, x}
+			}
+		}
+		last = gain
+		kept = append(kept, p)
+	}
+	return kept
+}
+
+// vertexAt returns the cell at whose centre the chain begins or ends at a gain, nil if none.
+func (c *chain) vertexAt(κ float64) *cell {
+	for _, e := range []tip{c.head, c.tail} {
+		if e.cell != nil && !e.cell.atInfinity && !e.cell.reciprocal && e.cell.gain == κ {
+			return e.cell
+		}
+	}
+	return nil
 }
 
 func (s *shaper) add(κ float64, x complex128) {
@@ -211,16 +255,17 @@ func (t *tracker) branch(b threads, points [][]point) Branch {
 	}
 	out := Branch{points: make([]point, 0, n), plane: t.plane, period: t.family.period, parts: make([]stretch, 0, len(b.parts))}
 	for i, p := range b.parts {
-		out.parts = append(out.parts, stretch{&t.chains[p.chain], p.mirror})
+		c := &t.chains[p.chain]
+		out.parts = append(out.parts, stretch{c, p.mirror})
 		for j, q := range points[p.chain] {
-			x := t.plane.fromX(q.s)
+			x, gain := c.plane.fromX(q.s), c.plane.fromK(q.gain)
 			if p.mirror {
 				x = complex(real(x), -imag(x))
 			}
-			if i > 0 && j == 0 && len(out.points) > 0 && out.points[len(out.points)-1].gain == t.plane.fromK(q.gain) {
+			if i > 0 && j == 0 && len(out.points) > 0 && out.points[len(out.points)-1].gain == gain {
 				continue // the vertex where two chains join
 			}
-			out.points = append(out.points, point{t.plane.fromK(q.gain), x})
+			out.points = append(out.points, point{gain, x})
 		}
 	}
 	return out

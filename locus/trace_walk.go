@@ -14,7 +14,7 @@ import (
 type tracker struct {
 	family       Family // without common factors
 	poles, zeros []poly.Root
-	plane        *plane
+	plane, home  *plane // the one in use, and the one with all gains counted from 0
 	pencil       *pencil
 	pairs        []float64
 	ctx          context.Context
@@ -22,6 +22,7 @@ type tracker struct {
 	spent        int
 	from         float64 // where the walk starts
 	end          float64 // where the walk ends
+	last         float64 // the same, counted from 0
 	κ            float64 // where it is
 	reach        float64 // the proven discs of rows hold up to κ + reach
 	rows         []row
@@ -39,6 +40,7 @@ type tracker struct {
 
 // A chain is the way of one root, or of one conjugate pair, between two vertices.
 type chain struct {
+	plane         *plane // whose gains it counts in
 	real          bool
 	owner, mirror int // the branches that run along it and along its mirror image; -1 if none
 	from, upto    float64
@@ -62,10 +64,7 @@ type knot struct {
 }
 
 // threads are the chains that make up a branch, in order.
-type threads struct {
-	parts []part
-	birth float64
-}
+type threads struct{ parts []part }
 
 type part struct {
 	chain  int
@@ -79,20 +78,21 @@ func newTracker(f Family, poles, zeros []poly.Root, s *traceSettings) *tracker {
 	if t.budget <= 0 {
 		t.budget = defaultSteps
 	}
+	t.home = t.plane
 	t.pencil = newPencil(t.plane)
 	return t
 }
 
 // newBranch adds a branch.
-func (t *tracker) newBranch(birth float64) int {
-	t.branches = append(t.branches, threads{birth: birth})
+func (t *tracker) newBranch() int {
+	t.branches = append(t.branches, threads{})
 	return len(t.branches) - 1
 }
 
 // newChain adds a chain with its owners.
 func (t *tracker) newChain(real bool, owner, mirror int, from float64, head tip) int {
 	id := len(t.chains)
-	t.chains = append(t.chains, chain{real: real, owner: owner, mirror: mirror, from: from, upto: from, head: head, knots: make([]knot, 0, 24)})
+	t.chains = append(t.chains, chain{plane: t.plane, real: real, owner: owner, mirror: mirror, from: from, upto: from, head: head, knots: make([]knot, 0, 24)})
 	if owner >= 0 {
 		t.branches[owner].parts = append(t.branches[owner].parts, part{id, false})
 	}
@@ -132,6 +132,9 @@ func (t *tracker) walk() error {
 		if err := t.spend(); err != nil {
 			return err
 		}
+		if err := t.scale(); err != nil {
+			return err
+		}
 		t.look()
 		limit := t.end
 		if v := t.nextVertex(); v != nil && v.gain <= t.end+v.slack {
@@ -157,7 +160,7 @@ func (t *tracker) walk() error {
 			continue
 		}
 		// Towards a meeting off the real axis steps shrink without end.
-		if t.κ-before < 1e-3*max(math.Abs(t.κ), math.Abs(before)) && t.reach < 0.5*(t.κ-before) {
+		if t.κ-before < 1e-3*max(math.Abs(t.κ+t.plane.origin), math.Abs(before)) && t.reach < 0.5*(t.κ-before) {
 			if stalled++; stalled > 3 {
 				t.ask()
 			}
@@ -165,6 +168,82 @@ func (t *tracker) walk() error {
 			stalled = 0
 		}
 	}
+	return nil
+}
+
+// scale changes to gains counted from here where steps come near the last digits of the gain,
+// and back where they are long again.
+func (t *tracker) scale() error {
+	if t.plane.origin == 0 {
+		if t.reach < 0x1p-20*math.Abs(t.κ) {
+			t.ask()
+		}
+		if t.reach < 0x1p-38*math.Abs(t.κ) {
+			return t.recount(t.κ)
+		}
+		return nil
+	}
+	if origin := math.Abs(t.plane.origin); t.reach > 0x1p-30*origin {
+		// A gain that float64 can hold both ways.
+		at := t.plane.origin + (t.κ + 0.5*t.reach)
+		to := at - t.plane.origin
+		if to > t.κ && to-t.κ <= t.reach && to < t.end {
+			if v := t.nextVertex(); v != nil && v.gain <= to+v.width {
+				return nil // not before that vertex
+			}
+			if t.step(to) {
+				return t.recount(0)
+			}
+		}
+	}
+	return nil
+}
+
+// recount continues in a plane with another origin of gains.
+func (t *tracker) recount(origin float64) error {
+	old := t.plane.origin
+	if old != 0 && origin != 0 {
+		return nil
+	}
+	now := t.κ + old // exact
+	t.plane = t.home
+	if origin != 0 {
+		t.plane = t.home.from(origin)
+	}
+	t.pencil = newPencil(t.plane)
+	t.end = t.last - origin
+	for i, v := range t.vertices {
+		moved := *v
+		gain := double{v.gain, v.gainLow}.plusFloat(old).plusFloat(-origin)
+		moved.gain, moved.gainLow = gain.h, gain.l
+		moved.slack += 4 * doubleRoundoff * math.Abs(old+origin)
+		t.vertices[i] = &moved
+	}
+	t.κ = now - origin
+	t.pencil.set(t.κ)
+	rows := append(t.spare[:0], t.rows...)
+	for i := range rows {
+		r := &rows[i]
+		if !t.correct(r, r.near) {
+			return t.fail("the branches come closer than the arithmetic can part")
+		}
+	}
+	t.spare = rows
+	reach := t.certify(rows, nil)
+	if reach == 0 {
+		return t.fail("the branches come closer than the arithmetic can part")
+	}
+	for i := range rows {
+		r, q := &rows[i], &t.rows[i]
+		// Both discs hold one root at this very gain.
+		if !(math.Hypot(r.x-q.x, r.y-q.y)+r.settled() < q.radius) {
+			return t.fail("the branches come closer than the arithmetic can part")
+		}
+		c := &t.chains[r.chain]
+		r.chain = t.newChain(c.real, c.owner, c.mirror, t.κ, tip{})
+	}
+	t.sharpen(rows)
+	t.commit(t.κ, reach, rows)
 	return nil
 }
 
@@ -349,7 +428,7 @@ func (t *tracker) addVertex(c *cell) {
 			return
 		}
 	}
-	i := sort.Search(len(t.vertices), func(i int) bool { return t.vertices[i].gain > c.gain })
+	i := sort.Search(len(t.vertices), func(i int) bool { return c.before(t.vertices[i]) })
 	t.vertices = append(t.vertices, nil)
 	copy(t.vertices[i+1:], t.vertices[i:])
 	t.vertices[i] = c
@@ -424,11 +503,11 @@ func (t *tracker) lookAt(x0, size float64) {
 		if math.Abs(x-x0) > 4*size {
 			return
 		}
-		if math.Abs(step) <= 4*unitRoundoff*math.Abs(x) || math.Abs(step) <= 1e-9*size {
+		if math.Abs(step) <= 4*unitRoundoff*math.Abs(x) || math.Abs(step) <= 1e-9*min(size, math.Abs(x)) {
 			ahead := -y / z
-			noise := 1e-13 * math.Abs(t.κ)
+			noise := 1e-13 * math.Abs(t.κ+p.origin)
 			κ := t.κ + ahead
-			if !(ahead >= -noise) || ahead > 8*t.reach+noise || κ > t.end {
+			if !(ahead >= -noise) || ahead > 8*t.reach+noise || κ > t.end+noise {
 				return
 			}
 			for _, v := range t.vertices {
@@ -436,7 +515,11 @@ func (t *tracker) lookAt(x0, size float64) {
 					return
 				}
 			}
-			if c := p.vertexCell(complex(p.preciseCritical(x, size), 0), 2, -1); c != nil && c.ahead(t.κ) {
+			x, ok := p.preciseCritical(x, size)
+			if !ok {
+				return
+			}
+			if c := p.vertexCell(complex(x, 0), 2, -1); c != nil && c.ahead(t.κ) {
 				t.addVertex(c)
 			}
 			return
@@ -456,7 +539,7 @@ func (t *tracker) ask() bool {
 	}
 	for _, point := range points {
 		κ := t.plane.toK(point.Gain)
-		if imag(point.S) < 0 || κ < t.κ || κ > t.end {
+		if slack := 1e-13 * math.Abs(t.plane.origin); imag(point.S) < 0 || κ < t.κ-slack || κ > t.end+slack {
 			continue
 		}
 		x := t.plane.toX(point.S)
