@@ -123,6 +123,9 @@ func (a *axisForm) phaseCrossovers() ([]Crossover, error) {
 	if found, ok := a.phaseCrossoversFast(); ok {
 		return found, nil
 	}
+	if found, ok := a.phaseCrossoversOfPeriods(); ok {
+		return found, nil
+	}
 	return a.exactly().phaseCrossovers()
 }
 

@@ -42,6 +42,7 @@ func (a *axisForm) delayedPhaseCrossovers(upTo float64) (delayedPhase, error) {
 		return delayedPhase{}, err
 	}
 	tau := a.deadTime * a.unit
+	turn := turning{tau: tau}
 	out := delayedPhase{smallest: math.Inf(1)}
 	level, err := rational.lastMagnitude(listedDownTo)
 	if err != nil {
@@ -92,14 +93,14 @@ func (a *axisForm) delayedPhaseCrossovers(upTo float64) (delayedPhase, error) {
 	}
 	var all []Crossover
 	for i := 1; i < len(edges); i++ {
-		all = rational.solvePhase(edges[i-1], edges[i], tau, all)
+		all = rational.solvePhase(edges[i-1], edges[i], turn, all)
 	}
 	// The tail, turn by turn, until it has a crossing.
 	tailStart := edges[len(edges)-1]
 	for range a.degree + 4 {
 		before := len(all)
 		next := tailStart + 2*math.Pi/tau
-		all = rational.solvePhase(tailStart, next, tau, all)
+		all = rational.solvePhase(tailStart, next, turn, all)
 		tailStart = next
 		if len(all) > before {
 			break
@@ -302,9 +303,31 @@ func (a *axisForm) lastMagnitude(level float64) (float64, error) {
 	return last, nil
 }
 
+// A turning is the phase that a delay takes away at v: tau·v, or that of whole periods.
+type turning struct {
+	tau     float64
+	periods float64
+	unit    float64
+}
+
+func (t turning) at(v float64) float64 {
+	if t.periods > 0 {
+		return 2 * t.periods * math.Atan(v*t.unit)
+	}
+	return v * t.tau
+}
+
+func (t turning) slope(v float64) float64 {
+	if t.periods > 0 {
+		x := v * t.unit
+		return 2 * t.periods * t.unit / (1 + x*x)
+	}
+	return t.tau
+}
+
 // solvePhase appends the crossings with v in (lo, hi], between which the phase is monotone
 // and the rational part does not cross the real axis.
-func (a *axisForm) solvePhase(lo, hi, tau float64, found []Crossover) []Crossover {
+func (a *axisForm) solvePhase(lo, hi float64, turn turning, found []Crossover) []Crossover {
 	if !(lo < hi) {
 		return found
 	}
@@ -325,7 +348,7 @@ func (a *axisForm) solvePhase(lo, hi, tau float64, found []Crossover) []Crossove
 				m = 0
 			}
 		}
-		return m - v*tau
+		return m - turn.at(v)
 	}
 	from, to := a.inside(lo, +1), a.inside(hi, -1)
 	pa, pb := psi(from), psi(to)
@@ -357,7 +380,7 @@ func (a *axisForm) solvePhase(lo, hi, tau float64, found []Crossover) []Crossove
 			} else {
 				r = v
 			}
-			next := v - g/(a.argumentSlope(v)-tau)
+			next := v - g/(a.argumentSlope(v)-turn.slope(v))
 			if math.Abs(next-v) <= 2*unitRoundoff*v {
 				v = next
 				break

@@ -22,9 +22,11 @@ type axisForm struct {
 	numerator, denominator poly.Poly // in s, or in w
 	degree                 int       // of the pair: the larger of both; in w it is formal
 	deadTime, period       float64
-	onBoundary             int     // closed-loop poles on the boundary that N and D had in common and are taken out
-	weight                 float64 // of |N|² in the gain curve; 0 means 1
-	unit                   float64 // rad/s; of the tangent in z; a power of two
+	sampled                [2]poly.Poly // numerator and denominator in z, as given
+	delay                  int          // periods, of a function of z
+	onBoundary             int          // closed-loop poles on the boundary that N and D had in common and are taken out
+	weight                 float64      // of |N|² in the gain curve; 0 means 1
+	unit                   float64      // rad/s; of the tangent in z; a power of two
 
 	memory  slab
 	precise *preciseAxis // made when needed, by searches on a copy of the form
@@ -49,6 +51,8 @@ func newAxisForm(numerator, denominator poly.Poly, deadTime, period float64) *ax
 			delay = int(math.Round(deadTime / period))
 		}
 		a.deadTime = 0
+		a.sampled = [2]poly.Poly{numerator, denominator}
+		a.delay = delay
 		a.degree = max(numerator.Degree(), denominator.Degree()+delay)
 		a.numerator = toAxis(numerator, 0, a.degree)
 		a.denominator = toAxis(denominator, delay, a.degree)
@@ -151,11 +155,15 @@ func toAxis(p poly.Poly, delay, degree int) poly.Poly {
 	return poly.FromIntegers(c, exponent)
 }
 
+// maxAxisDegree is the largest degree that is evaluated in float64; the isolation of roots stops
+// at maxFastDegree.
+const maxAxisDegree = 127
+
 // prepare chooses the unit of frequency and fills the polynomials in x.
 func (a *axisForm) prepare() {
 	shift := unitExponent(a.numerator, a.denominator)
 	a.unit = math.Ldexp(1, shift)
-	if a.degree > maxFastDegree {
+	if a.degree > maxAxisDegree {
 		return
 	}
 	size := a.degree + 1
@@ -235,7 +243,7 @@ func (a *axisForm) scaledCoefficients(p poly.Poly, shift int) (q intervalPoly, t
 	deg := p.Degree()
 	q = a.memory.take(deg + 1)
 	top, bottom = math.MinInt32, math.MaxInt32
-	var array [maxFastDegree + 1]float64
+	var array [maxAxisDegree + 1]float64
 	descending := array[:deg+1]
 	for k := 0; k <= deg; k++ {
 		c := p.Coefficient(k)

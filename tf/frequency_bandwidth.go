@@ -54,7 +54,7 @@ func newDelayedLevel(p, q, r poly.Poly, deadTime, at0 float64) (*delayedLevel, b
 	var tops [3]int
 	size := 0
 	for i, x := range [...]poly.Poly{p, q, r} {
-		if x.Degree() > maxFastDegree {
+		if x.Degree() > maxAxisDegree {
 			return nil, false
 		}
 		var a axisForm

@@ -62,6 +62,7 @@ func (l Loop) StableGains() ([]GainInterval, error) {
 func (a *axisForm) withGain(k float64) *axisForm {
 	b := *a
 	b.numerator = a.numerator.Scale(k)
+	b.sampled[0] = a.sampled[0].Scale(k)
 	b.prepare()
 	return &b
 }

@@ -323,3 +323,34 @@ func TestMarginsOfHardLoops(t *testing.T) {
 		})
 	}
 }
+
+// Many periods of delay: as a phase they give what the polynomial written out gives.
+func TestPhaseCrossoversOfPeriods(t *testing.T) {
+	for _, text := range []string{"0.02/(z-0.9), period 1", "0.5, period 0.1", "-0.3 (z-0.5)/((z-0.9)(z-0.2)), period 2", "0.01(z+0.9)/((z-1)(z-0.8)), period 0.01", "0.1/(z^2-1.8z+0.9), period 1"} {
+		for _, periods := range []int{6, 7, 13, 20} {
+			h := MustParse(text)
+			g, err := h.WithDeadTime(float64(periods) * h.Period())
+			if err != nil {
+				t.Fatal(err)
+			}
+			a, err := g.axis("")
+			if err != nil {
+				t.Fatal(err)
+			}
+			want, err := a.exactly().phaseCrossovers()
+			if err != nil {
+				t.Fatal(err)
+			}
+			got, ok := a.phaseCrossoversOfPeriods()
+			if !ok || len(got) != len(want) {
+				t.Errorf("%s behind %d periods: %v, want %v", text, periods, got, want)
+				continue
+			}
+			for i, w := range want {
+				if math.Abs(got[i].Frequency-w.Frequency) > 1e-11*w.Frequency || math.Abs(got[i].Margin-w.Margin) > 1e-11*w.Margin {
+					t.Errorf("%s behind %d periods: %v, want %v", text, periods, got[i], w)
+				}
+			}
+		}
+	}
+}
