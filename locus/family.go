@@ -97,20 +97,29 @@ func (f Family) At(k float64) poly.Poly { return f.fixed.Add(f.scaled.Scale(k)) 
 // its gain, and only then. Where the degree drops, the roots at infinity are not listed.
 //
 // The error is a [*poly.ArgumentError] for a k that is not finite, or at which the polynomial is
-// zero, and a [*poly.RangeError] for a root outside the range of float64.
+// zero, and a [*poly.RangeError] for a root outside the range of float64. For many gains in a row
+// there is [Workspace].
 func (f Family) PolesAt(k float64) ([]poly.Root, error) {
-	const call = "locus.Family.PolesAt"
-	if err := f.valid(call); err != nil {
+	p, err := f.checkedAt("locus.Family.PolesAt", k)
+	if err != nil {
 		return nil, err
 	}
-	if math.IsNaN(k) || math.IsInf(k, 0) {
-		return nil, &poly.ArgumentError{Call: call, Argument: "k", Reason: "the gain is not finite"}
+	return p.Roots()
+}
+
+// checkedAt returns the polynomial at gain k, which has roots to be found.
+func (f Family) checkedAt(call string, k float64) (poly.Poly, error) {
+	if err := f.valid(call); err != nil {
+		return poly.Poly{}, err
+	}
+	if !finite(k) {
+		return poly.Poly{}, &poly.ArgumentError{Call: call, Argument: "k", Reason: "the gain is not finite"}
 	}
 	p := f.At(k)
 	if p.Degree() < 0 {
-		return nil, &poly.ArgumentError{Call: call, Argument: "k", Reason: "at this gain the polynomial is zero, so that every number is a root"}
+		return poly.Poly{}, &poly.ArgumentError{Call: call, Argument: "k", Reason: "at this gain the polynomial is zero, so that every number is a root"}
 	}
-	return p.Roots()
+	return p, nil
 }
 
 // GainAt returns the gain at which a root is nearest to s in the sense that |fixed + k·scaled|

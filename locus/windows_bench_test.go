@@ -54,3 +54,51 @@ func BenchmarkWindows(b *testing.B) {
 		})
 	}
 }
+
+// modes returns a plant with n/2 lightly damped modes over a decade, as a flexible structure has.
+func modes(n int) (fixed, scaled poly.Poly) {
+	fixed = poly.New(1)
+	for i := range n / 2 {
+		w := math.Round(100*math.Pow(10, float64(2*i)/float64(n))) / 100
+		fixed = poly.New(fixed.Mul(poly.New(1, 0.1*w, w*w)).Coefficients()...)
+	}
+	return fixed, poly.New(1, 0.5)
+}
+
+// BenchmarkPolesAt sets the proven roots at gains in steps of a thousandth beside the eigenvalues
+// of companion matrices.
+func BenchmarkPolesAt(b *testing.B) {
+	for _, n := range []int{8, 12, 20} {
+		fixed, scaled := modes(n)
+		f, err := locus.Parameter(fixed, scaled)
+		if err != nil {
+			b.Fatal(err)
+		}
+		gain := func(i int) float64 { return 10 * (1 + 0.001*float64(i%1000)) }
+		b.Run(fmt.Sprintf("method=warm/degree=%d", n), func(b *testing.B) {
+			var w locus.Workspace
+			b.ReportAllocs()
+			for i := 0; b.Loop(); i++ {
+				if _, err := w.PolesAt(f, gain(i)); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
+		b.Run(fmt.Sprintf("method=cold/degree=%d", n), func(b *testing.B) {
+			for i := 0; b.Loop(); i++ {
+				if _, err := f.PolesAt(gain(i)); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
+		b.Run(fmt.Sprintf("method=companion/degree=%d", n), func(b *testing.B) {
+			for i := 0; b.Loop(); i++ {
+				c := fixed.Coefficients()
+				for j, x := range scaled.Coefficients() {
+					c[len(c)-1-scaled.Degree()+j] += gain(i) * x
+				}
+				baseline.CompanionRoots(c)
+			}
+		})
+	}
+}
