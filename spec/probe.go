@@ -245,7 +245,11 @@ func peakProbe(i int, t float64) *probe {
 			if final == 0 || t < 0 {
 				return noFinal()
 			}
-			v, w, _ := s.y.largest(sign, 0, inf)
+			v, w, above := s.y.largest(sign, 0, inf)
+			if above > v && s.y.tail > excess*final/2 { // a later, smaller bump may be the largest
+				s.y.trace(math.Max(t, 0), excess*final/2, maxSteps)
+				v, w, _ = s.y.largest(sign, 0, inf)
+			}
 			if v <= final*(1+excess) {
 				return judgment{margin: math.Inf(-1), where: none, jump: true}
 			}

@@ -571,7 +571,6 @@ func (h *hunt) engine(m *model, which []int) *engine {
 			e.until = math.Max(e.until, r.limit)
 		case peakTime:
 			e.needOutput = true
-			e.small = math.Min(e.small, excess)
 			e.until = math.Max(e.until, r.limit)
 		default:
 			e.needOutput = true

@@ -417,13 +417,38 @@ func (q quadratic) limit(low bool) (lo, hi float64) {
 	if lo, hi, ok := t.span(1); ok {
 		return lo, hi
 	}
-	if a := t.a.At(0); a != 0 {
-		if k := -t.b.At(0) / (2 * a); k > 0 {
-			return k, k
+	if a := t.a.At(0); a != 0 { // both roots meet
+		k := math.Max(0, -t.b.At(0)/(2*a))
+		return k, k
+	}
+	if t.b.At(0) < 0 {
+		// What is forbidden shrinks to gains near zero, where c > 0, and beyond bounds, where a > 0.
+		lo, hi = inf, 0
+		if signAt(q.c, low) > 0 {
+			lo = 0
 		}
-		return inf, 0
+		if signAt(q.a, low) > 0 {
+			hi = inf
+			lo = math.Min(lo, hi)
+		}
+		return lo, hi
 	}
 	return inf, inf
+}
+
+// signAt returns the sign of p(x) for x near infinity, or near 0 with low.
+func signAt(p poly.Poly, low bool) float64 {
+	n := p.Degree()
+	for i := range n + 1 {
+		power := n - i
+		if low {
+			power = i
+		}
+		if c := p.Coefficient(power); c != 0 {
+			return math.Copysign(1, c)
+		}
+	}
+	return 0
 }
 
 // sensitivityHoles: |1/(1+L)| > peak, that is d2 > peak²·|D + kN|².
