@@ -223,7 +223,7 @@ func (t *tracker) draw(l *Locus) {
 // the origin, in the plane.
 func (t *tracker) place(l *Locus, size, far float64) {
 	points := make([][]point, len(t.chains))
-	s := shaper{tracker: t, tolerance: 2e-4 * size, longest: 0.06 * size, far: far}
+	s := shaper{tracker: t, tolerance: t.accuracy * size, longest: 0.06 * size, far: far}
 	for i := range t.chains {
 		points[i] = s.points(&t.chains[i])
 	}

@@ -52,9 +52,9 @@ type obstacle struct {
 // (1970) 287–296.
 func (t *tracker) certify(rows []row, obstacles []obstacle) (reach float64) {
 	p, n := t.plane, len(rows)
-	lead := math.Abs(t.pencil.f[p.n])
+	lead := math.Abs(t.pencil.f[p.n]) - 4*unitRoundoff*t.pencil.majorF[p.n]
 	slope := math.Abs(p.b[p.n]) / lead
-	if lead < t.pencil.majorF[p.n]*8*unitRoundoff {
+	if !(lead > 0) {
 		lead, slope = 0, math.Inf(1)
 	}
 	count := 0

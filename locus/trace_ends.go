@@ -197,6 +197,7 @@ func (t *tracker) findEnds() (float64, error) {
 func (t *tracker) tips() ([]tip, bool) {
 	// The rows may be much nearer to their ends than to each other.
 	t.pencil.set(t.κ)
+	before := append([]row(nil), t.rows...)
 	for range 2 {
 		for i := range t.rows {
 			r := &t.rows[i]
@@ -208,6 +209,12 @@ func (t *tracker) tips() ([]tip, bool) {
 	}
 	if t.certify(t.rows, nil) == 0 {
 		return nil, false
+	}
+	for i := range t.rows {
+		r, q := &t.rows[i], &before[i]
+		if !(math.Hypot(r.x-q.x, r.y-q.y)+r.settled() < q.radius) {
+			return nil, false
+		}
 	}
 	tips := make([]tip, len(t.rows))
 	count := make(map[tip]bool)

@@ -169,7 +169,7 @@ func TestNearMisses(t *testing.T) {
 
 // TestMixedTimeScales follows random plants whose poles and zeros spread over many decades.
 func TestMixedTimeScales(t *testing.T) {
-	count := 10
+	count := 40
 	if os.Getenv("POLEWRIGHT_LONG") != "" {
 		count = 400
 	}

@@ -83,7 +83,8 @@ func (c *chain) near(q *pencil, i int, κ float64) (complex128, bool) {
 
 // converge runs Newton's method within the disc of a knot, in float64 or in twice that, and is
 // ok if the result provably approximates the root in the disc: n·|F/F′| about a point holds a
-// root, and one that is in the disc is this one. The factor 2 pays for the rounding of F′.
+// root, and one that is in the disc is this one. The factor 2 pays for the rounding of F′, whose
+// terms are at most n/|x| times those of F.
 func (c *chain) converge(q *pencil, k *knot, x, y float64, precise bool) (float64, float64, bool) {
 	var v value
 	for range 60 {
@@ -107,6 +108,9 @@ func (c *chain) converge(q *pencil, k *knot, x, y float64, precise bool) (float6
 		size := math.Abs(dx) + math.Abs(dy)
 		slope := math.Hypot(v.dRe, v.dIm)
 		if size <= 2*unitRoundoff*(math.Abs(x)+math.Abs(y)) || size*slope <= v.errF {
+			if !precise && slope*modulus(x, y) < 2*q.growth*float64(q.plane.n)*v.modulusMax {
+				return x, y, false
+			}
 			miss := 2 * float64(q.plane.n) * (math.Hypot(v.re, v.im) + v.errF) / slope
 			return x + dx, y + dy, math.Hypot(x-k.x, y-k.y)+miss < k.radius
 		}

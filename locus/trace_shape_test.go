@@ -70,3 +70,25 @@ func TestPolylineAccuracy(t *testing.T) {
 		check(fmt.Sprint("random ", i), Family{fixed: poly.New(fixed...), scaled: poly.New(scaled...)}, 1e-3, 1e3)
 	}
 }
+
+// TestLineAccuracy asks for finer and coarser polylines.
+func TestLineAccuracy(t *testing.T) {
+	f := Family{fixed: poly.New(1, 2, 0), scaled: poly.New(1, 3)}
+	points := func(opt ...Option) int {
+		l, err := f.Trace(0, 100, opt...)
+		if err != nil {
+			t.Fatal(err)
+		}
+		n := 0
+		for _, b := range l.Branches {
+			n += b.Len()
+		}
+		return n
+	}
+	if fine, plain := points(LineAccuracy(1e-6)), points(); fine < 4*plain {
+		t.Errorf("%d points for 1e-6, %d for the default", fine, plain)
+	}
+	if odd, plain := points(LineAccuracy(math.NaN())), points(); odd != plain {
+		t.Errorf("%d points for NaN, %d for the default", odd, plain)
+	}
+}

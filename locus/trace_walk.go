@@ -30,6 +30,8 @@ type tracker struct {
 	worst        float64 // see certify
 	limiting     int
 
+	accuracy float64 // of the polylines, see LineAccuracy
+
 	chains   []chain
 	branches []threads
 	vertices []*cell // ahead, ascending gain
@@ -77,6 +79,9 @@ func newTracker(f Family, poles, zeros []poly.Root, s *traceSettings) *tracker {
 	t := &tracker{family: f, poles: poles, zeros: zeros, plane: newPlane(f.fixed, f.scaled), ctx: s.ctx, budget: s.steps}
 	if t.budget <= 0 {
 		t.budget = defaultSteps
+	}
+	if t.accuracy = s.accuracy; !(t.accuracy >= 1e-7 && t.accuracy <= 0.1) {
+		t.accuracy = 2e-4
 	}
 	t.home = t.plane
 	t.pencil = newPencil(t.plane)
