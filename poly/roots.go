@@ -8,7 +8,7 @@ import (
 )
 
 // MaxDegree is the highest degree that [Poly.Roots] and [FromRoots] accept.
-const MaxDegree = 500
+const MaxDegree = 256
 
 // Option adjusts a call of this package; the zero number of options is the tested default.
 type Option func(*settings)
@@ -55,7 +55,8 @@ type Root struct {
 // pairs are exactly conjugate.
 //
 // The error is a [*ArgumentError] for an invalid polynomial, for the zero polynomial (every
-// number is a root) and beyond [MaxDegree], and a [*RangeError] for a root that is no
+// number is a root), beyond [MaxDegree], and where the bound on work is met before the roots are
+// parted (no polynomial is known to need that much), and a [*RangeError] for a root that is no
 // float64, being too large or, without being zero, too small.
 func (p Poly) Roots(opt ...Option) ([]Root, error) {
 	var s Solver

@@ -135,6 +135,16 @@ func inverse(z bigComplex) bigComplex {
 	return bigComplex{x, y.Neg(y)}
 }
 
+// restless returns how many points still move.
+func (b *bigSolver) restless() (count int) {
+	for _, done := range b.done {
+		if !done {
+			count++
+		}
+	}
+	return count
+}
+
 // sweep moves each point once and reports whether all stand still.
 func (b *bigSolver) sweep() bool {
 	still := true
@@ -217,8 +227,11 @@ func (b *bigSolver) radii() []*big.Float {
 	return radii
 }
 
-// maxBits bounds the precision, and with it the work.
-const maxBits = 1 << 15
+// maxBits bounds the precision, maxWork the work, in products of two words: minutes at most.
+const (
+	maxBits = 1 << 15
+	maxWork = 1 << 33
+)
 
 // locate finds all roots of a square-free polynomial, not zero at 0, at once: single ones
 // and clusters that float64 cannot part. It starts at the given points (the upper ones of
@@ -234,9 +247,12 @@ func locate(call string, f exact.Poly, points []rootkernel.Point, mirrored bool)
 	if !b.startAt(points) {
 		b.start(0.7)
 	}
-	for bits := uint(128); bits <= maxBits; bits *= 2 {
+	work := 0
+	for bits := uint(128); bits <= maxBits && work < maxWork; bits *= 2 {
 		b.setPrecision(bits)
-		for k := 0; k < 60+4*n; k++ {
+		words := int(bits / 64)
+		for k := 0; k < 60+4*n && work < maxWork; k++ {
+			work += b.restless() * n * (8*words*words + 50)
 			if b.sweep() {
 				break
 			}
@@ -245,7 +261,7 @@ func locate(call string, f exact.Poly, points []rootkernel.Point, mirrored bool)
 			return inRange(found, call)
 		}
 	}
-	return nil, &ArgumentError{Call: call, Argument: "p", Reason: fmt.Sprintf("the roots were not parted within %d bits", maxBits)}
+	return nil, &ArgumentError{Call: call, Argument: "p", Reason: "its roots were not parted within the bound on precision and work"}
 }
 
 // startAt starts at given points and reports whether they are usable.

@@ -110,9 +110,9 @@ func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, p2, m, miss floa
 	pr, epr = c[n], lo[n]
 	m = math.Abs(pr) + floor
 	for i := n - 1; i >= 0; i-- {
-		m = m*r + math.Abs(c[i]) + floor
+		m = float64(m*r) + math.Abs(c[i]) + floor
 
-		qr, qi = qr*x-qi*y+dr, qr*y+qi*x+di // half the second derivative
+		qr, qi = float64(qr*x)-float64(qi*y)+dr, float64(qr*y)+float64(qi*x)+di // half the second derivative
 
 		// d ← d·z + p
 		p1, p2 := float64(dr*x), float64(di*y)
@@ -124,7 +124,7 @@ func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, p2, m, miss floa
 		var f2, f4 float64
 		dr, f2 = twoSum(s, pr)
 		di, f4 = twoSum(w, pi)
-		edr, edi = edr*x-edi*y+((e1-e2)+(f1+f2)+epr), edr*y+edi*x+((e3+e4)+(f3+f4)+epi)
+		edr, edi = float64(edr*x)-float64(edi*y)+((e1-e2)+(f1+f2)+epr), float64(edr*y)+float64(edi*x)+((e3+e4)+(f3+f4)+epi)
 
 		// p ← p·z + c
 		p1, p2 = float64(pr*x), float64(pi*y)
@@ -135,10 +135,10 @@ func (f *frame) values(n int, x, y, r float64) (pr, pi, dr, di, p2, m, miss floa
 		pr, f2 = twoSum(s, c[i])
 		pi, f3 = twoSum(p3, p4)
 		parts := math.Abs(e1) + math.Abs(e2) + math.Abs(f1) + math.Abs(f2) + math.Abs(lo[i]) + math.Abs(e3) + math.Abs(e4) + math.Abs(f3)
-		miss = miss*r + ((math.Abs(epr)+math.Abs(epi))*r + parts)
-		epr, epi = epr*x-epi*y+((e1-e2)+(f1+f2)+lo[i]), epr*y+epi*x+((e3+e4)+f3)
+		miss = float64(miss*r) + (float64((math.Abs(epr)+math.Abs(epi))*r) + parts)
+		epr, epi = float64(epr*x)-float64(epi*y)+((e1-e2)+(f1+f2)+lo[i]), float64(epr*y)+float64(epi*x)+((e3+e4)+f3)
 	}
-	return pr + epr, pi + epi, dr + edr, di + edi, math.Abs(qr) + math.Abs(qi), m, 4.4*u*miss + 0x1p-104*m
+	return pr + epr, pi + epi, dr + edr, di + edi, math.Abs(qr) + math.Abs(qi), m, float64(4.4*u*miss) + float64(0x1p-104*m)
 }
 
 // valuesReal does the same on the real axis.
@@ -148,20 +148,20 @@ func (f *frame) valuesReal(n int, x, r float64) (p, d, p2, m, miss float64) {
 	p, ep = c[n], lo[n]
 	m = math.Abs(p) + floor
 	for i := n - 1; i >= 0; i-- {
-		m = m*r + math.Abs(c[i]) + floor
-		q2 = q2*x + d
+		m = float64(m*r) + math.Abs(c[i]) + floor
+		q2 = float64(q2*x) + d
 		q := float64(d * x)
 		e1 := math.FMA(d, x, -q)
 		var f1 float64
 		d, f1 = twoSum(q, p)
-		ed = ed*x + (e1 + f1 + ep)
+		ed = float64(ed*x) + (e1 + f1 + ep)
 		q = float64(p * x)
 		e1 = math.FMA(p, x, -q)
 		p, f1 = twoSum(q, c[i])
-		miss = miss*r + (math.Abs(ep)*r + math.Abs(e1) + math.Abs(f1) + math.Abs(lo[i]))
-		ep = ep*x + (e1 + f1 + lo[i])
+		miss = float64(miss*r) + (float64(math.Abs(ep)*r) + math.Abs(e1) + math.Abs(f1) + math.Abs(lo[i]))
+		ep = float64(ep*x) + (e1 + f1 + lo[i])
 	}
-	return p + ep, d + ed, math.Abs(q2), m, 3.1*u*miss + 0x1p-104*m
+	return p + ep, d + ed, math.Abs(q2), m, float64(3.1*u*miss) + float64(0x1p-104*m)
 }
 
 // twoSum returns a + b rounded and what the rounding lost (Knuth, The Art of Computer
@@ -170,6 +170,20 @@ func twoSum(a, b float64) (sum, lost float64) {
 	sum = a + b
 	t := sum - a
 	return sum, (a - (sum - t)) + (b - t)
+}
+
+// modulus returns √(x²+y²) within 4u of itself; unlike math.Hypot, with the same bits on every
+// processor.
+func modulus(x, y float64) float64 {
+	x, y = math.Abs(x), math.Abs(y)
+	if x < y {
+		x, y = y, x
+	}
+	if y == 0 {
+		return x
+	}
+	t := y / x
+	return x * math.Sqrt(1+float64(t*t))
 }
 
 // negligible says when a point beside which another stands that much farther away does not
@@ -186,29 +200,29 @@ func (k *Kernel) othersScaled(x, y float64, skip int) (sr, si, gr, gi float64) {
 			continue
 		}
 		q := &pairs[j]
-		qx, qy := q.x*scale, q.y*scale
+		qx, qy := float64(q.x*scale), float64(q.y*scale)
 		if math.Abs(qx)+qy > negligible {
 			continue
 		}
 		t := x - qx
-		qr := t*t + (qy-y)*(qy+y)
-		qi := 2 * y * t
-		inverse := 1 / (qr*qr + qi*qi)
-		vr, vi := qr*inverse, qi*inverse
-		sr += 2 * (t*vr + y*vi)
-		si += 2 * (y*vr - t*vi)
-		gr, gi = direction(gr*vr+gi*vi, gi*vr-gr*vi)
+		qr := float64(t*t) + float64((qy-y)*(qy+y))
+		qi := float64(2 * y * t)
+		inverse := 1 / (float64(qr*qr) + float64(qi*qi))
+		vr, vi := float64(qr*inverse), float64(qi*inverse)
+		sr += float64(2 * (float64(t*vr) + float64(y*vi)))
+		si += float64(2 * (float64(y*vr) - float64(t*vi)))
+		gr, gi = direction(float64(gr*vr)+float64(gi*vi), float64(gi*vr)-float64(gr*vi))
 	}
 	for _, q := range k.reals() {
-		t := x - q.x*scale
+		t := x - float64(q.x*scale)
 		if math.Abs(t) > negligible {
 			continue
 		}
-		inverse := 1 / (t*t + y*y)
-		vr, vi := t*inverse, y*inverse
+		inverse := 1 / (float64(t*t) + float64(y*y))
+		vr, vi := float64(t*inverse), float64(y*inverse)
 		sr += vr
 		si -= vi
-		gr, gi = direction(gr*vr+gi*vi, gi*vr-gr*vi)
+		gr, gi = direction(float64(gr*vr)+float64(gi*vi), float64(gi*vr)-float64(gr*vi))
 	}
 	return sr, si, gr, gi
 }
@@ -216,20 +230,20 @@ func (k *Kernel) othersScaled(x, y float64, skip int) (sr, si, gr, gi float64) {
 // direction keeps the phase of a number and brings its modulus near 1.
 func direction(x, y float64) (float64, float64) {
 	s := 1 / (math.Abs(x) + math.Abs(y))
-	return x * s, y * s
+	return float64(x * s), float64(y * s)
 }
 
 // othersRealScaled returns Σ 1/(x - zⱼ) in the frame over all but two.
 func (k *Kernel) othersRealScaled(x float64, skip1, skip2 int) (s float64) {
 	scale := 1 / k.frame.unit
 	for _, q := range k.pairs() {
-		t, y := x-q.x*scale, q.y*scale
+		t, y := x-float64(q.x*scale), float64(q.y*scale)
 		if math.Abs(t)+y < negligible {
-			s += 2 * t / (t*t + y*y)
+			s += 2 * t / (float64(t*t) + float64(y*y))
 		}
 	}
 	for j, q := range k.reals() {
-		if t := x - q.x*scale; j != skip1 && j != skip2 && math.Abs(t) < negligible {
+		if t := x - float64(q.x*scale); j != skip1 && j != skip2 && math.Abs(t) < negligible {
 			s += 1 / t
 		}
 	}
@@ -241,8 +255,8 @@ func (k *Kernel) othersRealScaled(x float64, skip1, skip2 int) (s float64) {
 func (k *Kernel) ratio(x1, x2 float64, skip1, skip2 int) float64 {
 	ratio := 1.0
 	for _, q := range k.pairs() {
-		a, b := math.Hypot(x1-q.x, q.y), math.Hypot(x2-q.x, q.y)
-		ratio *= (a / b) * (a / b)
+		a, b := modulus(x1-q.x, q.y), modulus(x2-q.x, q.y)
+		ratio *= float64((a / b) * (a / b))
 	}
 	for j, q := range k.reals() {
 		if j != skip1 && j != skip2 {

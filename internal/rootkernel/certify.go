@@ -102,17 +102,17 @@ func Disjoint(discs []Disc) bool {
 	}
 	for i := range discs {
 		a := &discs[i]
-		reach := (a.Radius + largest) * (1 + 0x1p-50)
+		reach := float64((a.Radius + largest) * (1 + 0x1p-50))
 		for j := i + 1; j < len(discs); j++ {
 			b := &discs[j]
 			dx, dy := b.X-a.X, b.Y-a.Y
 			if dx > reach {
 				break
 			}
-			if sum := (a.Radius + b.Radius) * (1 + 0x1p-50); math.Abs(dy) > sum || dx > sum {
+			if sum := float64((a.Radius + b.Radius) * (1 + 0x1p-50)); math.Abs(dy) > sum || dx > sum {
 				continue
 			}
-			if math.Hypot(dx, dy) <= (a.Radius+b.Radius)*(1+0x1p-50) {
+			if modulus(dx, dy) <= (a.Radius+b.Radius)*(1+0x1p-50) {
 				return false
 			}
 		}
@@ -155,12 +155,12 @@ func (k *Kernel) discRadius(r, d, h, bend, tangent, slopeMiss float64) float64 {
 	if !(tau < 0x1p-20/float64(k.n)) {
 		return math.Inf(1)
 	}
-	slope := d*(1-8*u) - slopeMiss - bend/r*tau
+	slope := float64(d*(1-8*u)) - slopeMiss - float64(bend/r*tau)
 	if !(slope > d/2) {
 		return math.Inf(1)
 	}
-	residue := tangent*1.01 + bend*tau*tau + slopeMiss*h + 4*u*h*d
-	radius := residue / slope * 1.02
+	residue := float64(tangent*1.01) + float64(bend*tau*tau) + float64(slopeMiss*h) + float64(4*u*h*d)
+	radius := float64(residue / slope * 1.02)
 	if !(bend/r*(radius/r) < 0.019*slope) {
 		return math.Inf(1)
 	}
@@ -170,13 +170,13 @@ func (k *Kernel) discRadius(r, d, h, bend, tangent, slopeMiss float64) float64 {
 // fastBounds returns the bounds on |p″|·r² and on the errors of p and p′, after compensated.
 func (k *Kernel) fastBounds(m, r float64) (bend, miss, slopeMiss float64) {
 	n := float64(k.n + 2)
-	bend = n * n * 1.02 * m
-	return bend, valueMiss(k.n, m), bend / r * (10 * u)
+	bend = float64(n * n * 1.02 * m)
+	return bend, valueMiss(k.n, m), float64(bend / r * (10 * u))
 }
 
 // valueMiss bounds the error of the compensated p(z), besides its own last rounding.
 func valueMiss(n int, m float64) float64 {
-	return float64((n+2)*(n+2)) * 0x1p-101 * m
+	return float64(float64((n+2)*(n+2)) * 0x1p-101 * m)
 }
 
 // Value returns the polynomial with the coefficients c + lo by power at x + jy, evaluated as if
@@ -187,17 +187,17 @@ func Value(c, lo []float64, x, y float64) (re, im, miss float64) {
 	if y == 0 {
 		re, _, m = compensatedReal(c, lo, x, math.Abs(x))
 	} else {
-		re, im, _, _, m = compensated(c, lo, x, y, math.Hypot(x, y))
+		re, im, _, _, m = compensated(c, lo, x, y, modulus(x, y))
 	}
-	return re, im, valueMiss(len(c)-1, m) * 1.01
+	return re, im, float64(valueMiss(len(c)-1, m) * 1.01)
 }
 
 // carefulBounds does so after values; p2 is |p″|/2 as evaluated, h the step. Horner's rule for
 // p″ errs by less than 24(n+2)³·u·m/r², and p‴ is at most n³·m/r³.
 func (k *Kernel) carefulBounds(m, r, p2, h float64) (bend, slopeMiss float64) {
 	n := float64(k.n + 2)
-	cube := n * n * n * m
-	return 2.01*p2*r*r + cube*(24*u+1.05*(h/r+0x1p-52)), cube / r * 0x1p-98
+	cube := float64(n * n * n * m)
+	return float64(2.01*p2*r*r) + float64(cube*(24*u+float64(1.05*(h/r+0x1p-52)))), float64(cube / r * 0x1p-98)
 }
 
 // sharp is how small a disc about a point must be beside its modulus, before the centre is
@@ -217,7 +217,7 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 		unit, enough := 1.0, sharp
 		var r, pr, pi, dr, di, p2, m, bend, miss, slopeMiss float64
 		if k.careful {
-			if r = math.Hypot(x, y); !k.enter(r) {
+			if r = modulus(x, y); !k.enter(r) {
 				return Disc{}, Imprecise
 			}
 			unit, enough = k.frame.unit, sharpCareful
@@ -232,28 +232,28 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 			pr, pi, dr, di, m = compensated(k.c, k.lo, x, y, r)
 			bend, miss, slopeMiss = k.fastBounds(m, r)
 		}
-		d2 := dr*dr + di*di
+		d2 := float64(dr*dr) + float64(di*di)
 		if !(d2 > 0x1p-900 && d2 < 0x1p900) {
 			return Disc{}, Imprecise
 		}
 		t := 1 / d2
-		ur, ui := dr*t, di*t // in this order no product underflows that matters
-		hx, hy := -(pr*ur + pi*ui), -(pi*ur - pr*ui)
+		ur, ui := float64(dr*t), float64(di*t) // in this order no product underflows that matters
+		hx, hy := -(float64(pr*ur) + float64(pi*ui)), -(float64(pi*ur) - float64(pr*ui))
 		h := math.Abs(hx) + math.Abs(hy)
 		if k.careful {
 			bend, slopeMiss = k.carefulBounds(m, r, p2, h)
 		}
 		// |p + h·p′| as it is, whatever may have been lost on the way to h.
-		miss += math.Abs(pr+(hx*dr-hy*di)) + math.Abs(pi+(hx*di+hy*dr)) + 8*u*(math.Abs(pr)+math.Abs(pi))
+		miss += math.Abs(pr+(float64(hx*dr)-float64(hy*di))) + math.Abs(pi+(float64(hx*di)+float64(hy*dr))) + float64(8*u*(math.Abs(pr)+math.Abs(pi)))
 		rho := k.discRadius(r, math.Sqrt(d2), h, bend, miss, slopeMiss)
 		X, Y := x+hx, y+hy
 		if rho <= enough*r && rho <= partSharp*math.Abs(Y) && Y > 0 {
 			if rho <= partSharp*math.Abs(X) {
 				lostX, lostY := (x-X)+hx, (y-Y)+hy
-				up := unit * (1 + 0x1p-48)
+				up := float64(unit * (1 + 0x1p-48))
 				return Disc{
 					X: X * unit, Y: Y * unit,
-					Radius: (math.Sqrt(lostX*lostX+lostY*lostY) + rho) * up,
+					Radius: (math.Sqrt(float64(lostX*lostX)+float64(lostY*lostY)) + rho) * up,
 					HalfX:  (math.Abs(lostX) + rho) * up,
 					HalfY:  (math.Abs(lostY) + rho) * up,
 				}, None
@@ -261,12 +261,12 @@ func (k *Kernel) certifyPair(x, y float64) (Disc, Failure) {
 			if k.Mirrored && math.Abs(X) <= rho {
 				// A disc of three times the radius holds this root and its mirror image,
 				// and still only one: they are the same.
-				half := (math.Abs((y-Y)+hy) + rho) * (unit * (1 + 0x1p-48))
+				half := float64((math.Abs((y-Y)+hy) + rho) * (unit * (1 + 0x1p-48)))
 				return Disc{Y: Y * unit, Radius: half, HalfY: half}, None
 			}
 			failure = OnAxis
 		}
-		x, y = X*unit, Y*unit
+		x, y = float64(X*unit), float64(Y*unit)
 	}
 	return Disc{}, failure
 }
@@ -294,14 +294,14 @@ func (k *Kernel) certifyReal(x float64) (Disc, Failure) {
 		if k.careful {
 			bend, slopeMiss = k.carefulBounds(m, r, p2, math.Abs(h))
 		}
-		miss += math.Abs(p+h*d) + 8*u*math.Abs(p)
+		miss += math.Abs(p+float64(h*d)) + float64(8*u*math.Abs(p))
 		rho := k.discRadius(r, math.Abs(d), math.Abs(h), bend, miss, slopeMiss)
 		X := x + h
 		if rho <= enough*r {
-			half := (math.Abs((x-X)+h) + rho) * (unit * (1 + 0x1p-48))
+			half := float64((math.Abs((x-X)+h) + rho) * (unit * (1 + 0x1p-48)))
 			return Disc{X: X * unit, Radius: half, HalfX: half}, None
 		}
-		x = X * unit
+		x = float64(X * unit)
 	}
 	return Disc{}, Imprecise
 }
@@ -316,8 +316,8 @@ func compensated(c, lo []float64, x, y, r float64) (pr, pi, dr, di, m float64) {
 		er = lo[n]
 	}
 	for i := n - 1; i >= 0; i-- {
-		dr, di = dr*x-di*y+pr, dr*y+di*x+pi
-		m = m*r + math.Abs(c[i]) + floor
+		dr, di = float64(dr*x)-float64(di*y)+pr, float64(dr*y)+float64(di*x)+pi
+		m = float64(m*r) + math.Abs(c[i]) + floor
 
 		p1, p2 := float64(pr*x), float64(pi*y)
 		p3, p4 := float64(pr*y), float64(pi*x)
@@ -339,7 +339,7 @@ func compensated(c, lo []float64, x, y, r float64) (pr, pi, dr, di, m float64) {
 		if lo != nil {
 			local += lo[i]
 		}
-		er, ei = er*x-ei*y+local, er*y+ei*x+((e3+e4)+f3)
+		er, ei = float64(er*x)-float64(ei*y)+local, float64(er*y)+float64(ei*x)+((e3+e4)+f3)
 	}
 	return pr + er, pi + ei, dr, di, m
 }
@@ -354,8 +354,8 @@ func compensatedReal(c, lo []float64, x, r float64) (p, d, m float64) {
 		e = lo[n]
 	}
 	for i := n - 1; i >= 0; i-- {
-		d = d*x + p
-		m = m*r + math.Abs(c[i]) + floor
+		d = float64(d*x) + p
+		m = float64(m*r) + math.Abs(c[i]) + floor
 		p1 := float64(p * x)
 		e1 := math.FMA(p, x, -p1)
 		q := p1 + c[i]
@@ -364,7 +364,7 @@ func compensatedReal(c, lo []float64, x, r float64) (p, d, m float64) {
 		if lo != nil {
 			local += lo[i]
 		}
-		e = e*x + local
+		e = float64(e*x) + local
 		p = q
 	}
 	return p + e, d, m

@@ -135,7 +135,7 @@ func (k *Kernel) movePair(i int) bool {
 	tiny := 0.0
 	var pr, pi, dr, di, sr, si, gr, gi float64
 	if k.careful {
-		r := math.Hypot(x, y)
+		r := modulus(x, y)
 		if !k.enter(r) {
 			return false
 		}
@@ -151,29 +151,31 @@ func (k *Kernel) movePair(i int) bool {
 		q.restless = false
 		return true
 	}
-	fr, fi := pr*gr-pi*gi, pr*gi+pi*gr
-	if t := fi / (y * (fr*fr + fi*fi)); t-t == 0 {
-		sr += t * fr
-		si -= t * fi
-	} else {
-		si -= 0.5 / y // out of range: Newton's term 1/(z - z̄)
+	// With g = 1/∏: w = p/(d - p·s - (Im f/y)/g) = y·f/(y·g·(d - p·s) - Im f).
+	ar, ai := dr-(float64(pr*sr)-float64(pi*si)), di-(float64(pr*si)+float64(pi*sr))
+	fr, fi := float64(pr*gr)-float64(pi*gi), float64(pr*gi)+float64(pi*gr)
+	br := float64(y*(float64(gr*ar)-float64(gi*ai))) - fi
+	bi := float64(y * (float64(gr*ai) + float64(gi*ar)))
+	t := y / (float64(br*br) + float64(bi*bi))
+	wr, wi := float64((float64(fr*br)+float64(fi*bi))*t), float64((float64(fi*br)-float64(fr*bi))*t)
+	if wr-wr != 0 || wi-wi != 0 || fr == 0 && fi == 0 {
+		// g is out of range: Newton's term 1/(z - z̄) instead.
+		cr, ci := ar-float64(pi*(0.5/y)), ai+float64(pr*(0.5/y))
+		t = 1 / (float64(cr*cr) + float64(ci*ci))
+		wr, wi = float64((float64(pr*cr)+float64(pi*ci))*t), float64((float64(pi*cr)-float64(pr*ci))*t)
 	}
-	// w = p/(d - p·s)
-	ar, ai := dr-(pr*sr-pi*si), di-(pr*si+pi*sr)
-	t := 1 / (ar*ar + ai*ai)
-	wr, wi := (pr*ar+pi*ai)*t, (pi*ar-pr*ai)*t
-	size := wr*wr + wi*wi
+	size := float64(wr*wr) + float64(wi*wi)
 	rest := y - wi
 	if size < 0x1p-10*y*y {
-		square := x*x + y*y
-		still := size*(sr*sr+si*si) < settled*settled && size < settled*settled*square || size < tiny*square
+		still := size*(float64(sr*sr)+float64(si*si)) < settled*settled && size < settled*settled*(y*y) ||
+			size < tiny*(float64(x*x)+float64(y*y))
 		rest *= unit
 		*q = pair{(x - wr) * unit, rest, rest * rest, !still}
 		return still
 	}
-	switch discriminant := size - rest*rest; {
+	switch discriminant := size - float64(rest*rest); {
 	case discriminant < 0:
-		h := math.Sqrt(-discriminant) * unit
+		h := float64(math.Sqrt(-discriminant) * unit)
 		*q = pair{(x - wr) * unit, h, h * h, true}
 	case discriminant >= 0:
 		h := math.Sqrt(discriminant)
@@ -193,10 +195,10 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 	x1, x2 := a.x, b.x
 	gap := x1 - x2
 	if gap == 0 {
-		x1 += 0x1p-20 * x1
+		x1 += float64(0x1p-20 * x1)
 		gap = x1 - x2
 	}
-	var p1, d1, p2, d2, s1, s2, f float64
+	var p1, d1, p2, d2, s1, s2, ratio float64
 	unit, tiny := 1.0, 0.0
 	if k.careful {
 		r1, r2 := math.Abs(x1), math.Abs(x2)
@@ -209,42 +211,40 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 			return false, still1 && still2
 		}
 		unit, tiny = k.frame.unit, rounding
-		ratio := k.ratio(x1, x2, i, j)
+		ratio = k.ratio(x1, x2, i, j)
 		x1, x2, gap = x1/unit, x2/unit, gap/unit
 		p1, d1, _, _, _ = k.frame.valuesReal(k.n, x1, r1/unit)
 		p2, d2, _, _, _ = k.frame.valuesReal(k.n, x2, r2/unit)
 		s1, s2 = k.othersRealScaled(x1, i, j), k.othersRealScaled(x2, i, j)
-		f = p2 / p1 * ratio
 	} else {
 		p1, d1, p2, d2 = k.horner2(x1, x2)
-		s1, s2, f = k.othersReal2(x1, x2, i, j)
-		f *= p2 / p1
+		s1, s2, ratio = k.othersReal2(x1, x2, i, j)
 	}
-	inverse := 1 / gap
-	if f-f == 0 && f != 0 { // f(x₂)/f(x₁)
-		s1 += (1 - f) * inverse
-		s2 += (1/f - 1) * inverse
-	} else {
-		s1 += inverse
-		s2 -= inverse
-	}
-	var w1, w2 float64
-	if p1 != 0 {
-		w1 = p1 / (d1 - p1*s1)
-	}
-	if p2 != 0 {
-		w2 = p2 / (d2 - p2*s2)
+	// w₁ = p₁/(d₁ - p₁·s₁ - r·g₁…): with f = p·g, the slope r = (f₁ - f₂)/(x₁ - x₂) over g.
+	moved := float64(p2 * ratio) // f₂/g₁
+	slope := (p1 - moved) / gap
+	w1 := p1 / (d1 - float64(p1*s1) - slope)
+	w2 := moved / (float64((d2-float64(p2*s2))*ratio) - slope)
+	if w1-w1 != 0 || w2-w2 != 0 {
+		// The ratio is out of range: Newton's terms instead.
+		w1, w2 = 0, 0
+		if p1 != 0 {
+			w1 = p1 / (d1 - float64(p1*(s1+1/gap)))
+		}
+		if p2 != 0 {
+			w2 = p2 / (d2 - float64(p2*(s2-1/gap)))
+		}
 	}
 	half := (gap - w1 + w2) / 2
-	cross := w1 * w2
+	cross := float64(w1 * w2)
 	if math.Abs(cross) < 0x1p-10*half*half {
-		a.x, b.x = (x1-w1)*unit, (x2-w2)*unit
-		a.restless = !settledReal(x1, w1, s1, tiny)
-		b.restless = !settledReal(x2, w2, s2, tiny)
+		a.x, b.x = float64((x1-w1)*unit), float64((x2-w2)*unit)
+		a.restless = !settledReal(min(math.Abs(gap), math.Abs(x1)), w1, s1, tiny*math.Abs(x1))
+		b.restless = !settledReal(min(math.Abs(gap), math.Abs(x2)), w2, s2, tiny*math.Abs(x2))
 		return false, !a.restless && !b.restless
 	}
 	centre := (x1 - w1 + x2 - w2) / 2
-	discriminant := half*half + cross
+	discriminant := float64(half*half) + cross
 	if discriminant < 0 {
 		k.removeReals(i, j)
 		k.addPair(centre*unit, math.Sqrt(-discriminant)*unit)
@@ -252,7 +252,7 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 	}
 	if discriminant >= 0 {
 		h := math.Sqrt(discriminant)
-		a.x, b.x = (centre-h)*unit, (centre+h)*unit
+		a.x, b.x = float64((centre-h)*unit), float64((centre+h)*unit)
 	}
 	return false, false
 }
@@ -279,17 +279,17 @@ func (k *Kernel) moveReal(i int) bool {
 		q.restless = false
 		return true
 	}
-	w := p / (d - p*s)
-	q.x = (x - w) * unit
-	q.restless = !settledReal(x, w, s, tiny)
+	w := p / (d - float64(p*s))
+	q.x = float64((x - w) * unit)
+	q.restless = !settledReal(math.Abs(x), w, s, tiny*math.Abs(x))
 	return !q.restless
 }
 
-// settledReal tells whether the correction w of a real point is negligible; s is about the
-// inverse of its distance from the others.
-func settledReal(x, w, s, tiny float64) bool {
-	w, x = math.Abs(w), math.Abs(x)
-	return w*math.Abs(s) < settled && w < settled*x || w < tiny*x
+// settledReal tells whether the correction w of a real point is negligible beside its scale, its
+// distance from the others (about 1/s), or what rounding alone would explain.
+func settledReal(scale, w, s, tiny float64) bool {
+	w = math.Abs(w)
+	return w*math.Abs(s) < settled && w < settled*scale || w < tiny
 }
 
 // rounding is a correction, relative to the point, that its own rounding would explain.
@@ -299,8 +299,8 @@ const rounding = 0x1p-51
 func (k *Kernel) horner(x float64) (p, d float64) {
 	c := k.c
 	for i := len(c) - 1; i >= 0; i-- {
-		d = d*x + p
-		p = p*x + c[i]
+		d = float64(d*x) + p
+		p = float64(p*x) + c[i]
 	}
 	return p, d
 }
@@ -309,10 +309,10 @@ func (k *Kernel) horner(x float64) (p, d float64) {
 func (k *Kernel) horner2(x1, x2 float64) (p1, d1, p2, d2 float64) {
 	c := k.c
 	for i := len(c) - 1; i >= 0; i-- {
-		d1 = d1*x1 + p1
-		d2 = d2*x2 + p2
-		p1 = p1*x1 + c[i]
-		p2 = p2*x2 + c[i]
+		d1 = float64(d1*x1) + p1
+		d2 = float64(d2*x2) + p2
+		p1 = float64(p1*x1) + c[i]
+		p2 = float64(p2*x2) + c[i]
 	}
 	return p1, d1, p2, d2
 }
@@ -320,28 +320,28 @@ func (k *Kernel) horner2(x1, x2 float64) (p1, d1, p2, d2 float64) {
 // quadratic returns p(z) and p′(z) from the remainders of division by the real quadratic
 // s² - 2x·s + |z|². Digits are lost near the real axis; the proof does not rest on it.
 func (k *Kernel) quadratic(x, y float64) (pr, pi, dr, di float64) {
-	u, v := 2*x, -(x*x + y*y)
+	u, v := float64(2*x), -(float64(x*x) + float64(y*y))
 	c := k.c
 	// b: quotient and remainder of p; e: those of the quotient.
 	b1 := c[len(c)-1]
-	b0 := c[len(c)-2] + u*b1
+	b0 := c[len(c)-2] + float64(u*b1)
 	var e1, e0 float64
 	e0 = b1
 	for i := len(c) - 3; i >= 1; i-- {
-		b0, b1 = (c[i]+v*b1)+u*b0, b0
-		e0, e1 = (b1+v*e1)+u*e0, e0
+		b0, b1 = (c[i]+float64(v*b1))+float64(u*b0), b0
+		e0, e1 = (b1+float64(v*e1))+float64(u*e0), e0
 	}
-	b0, b1 = (c[0]+v*b1)+u*b0, b0
-	pr, pi = b0-x*b1, y*b1
-	qr, qi := e0-x*e1, y*e1
-	return pr, pi, b1 - 2*y*qi, 2 * y * qr
+	b0, b1 = (c[0]+float64(v*b1))+float64(u*b0), b0
+	pr, pi = b0-float64(x*b1), float64(y*b1)
+	qr, qi := e0-float64(x*e1), float64(y*e1)
+	return pr, pi, b1 - float64(2*y*qi), float64(2 * y * qr)
 }
 
 // othersComplex returns Σ 1/(z - zⱼ) and ∏ 1/(z - zⱼ) over the real points and all pairs
 // but one.
 func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) {
 	gr = 1
-	y2 := y * y
+	y2 := float64(y * y)
 	pairs := k.pairs()
 	for j := range pairs {
 		if j == skip {
@@ -349,21 +349,21 @@ func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) 
 		}
 		q := &pairs[j]
 		t := x - q.x
-		qr := t*t + (q.yy - y2)
-		qi := 2 * y * t
-		inverse := 1 / (qr*qr + qi*qi)
-		vr, vi := qr*inverse, qi*inverse
-		sr += 2 * (t*vr + y*vi)
-		si += 2 * (y*vr - t*vi)
-		gr, gi = gr*vr+gi*vi, gi*vr-gr*vi
+		qr := float64(t*t) + (q.yy - y2)
+		qi := float64(2 * y * t)
+		inverse := 1 / (float64(qr*qr) + float64(qi*qi))
+		vr, vi := float64(qr*inverse), float64(qi*inverse)
+		sr += float64(2 * (float64(t*vr) + float64(y*vi)))
+		si += float64(2 * (float64(y*vr) - float64(t*vi)))
+		gr, gi = float64(gr*vr)+float64(gi*vi), float64(gi*vr)-float64(gr*vi)
 	}
 	for _, q := range k.reals() {
 		t := x - q.x
-		inverse := 1 / (t*t + y2)
-		vr, vi := t*inverse, y*inverse
+		inverse := 1 / (float64(t*t) + y2)
+		vr, vi := float64(t*inverse), float64(y*inverse)
 		sr += vr
 		si -= vi
-		gr, gi = gr*vr+gi*vi, gi*vr-gr*vi
+		gr, gi = float64(gr*vr)+float64(gi*vi), float64(gi*vr)-float64(gr*vi)
 	}
 	return sr, si, gr, gi
 }
@@ -372,7 +372,7 @@ func (k *Kernel) othersComplex(x, y float64, skip int) (sr, si, gr, gi float64) 
 func (k *Kernel) othersReal(x float64, skip int) (s float64) {
 	for _, q := range k.pairs() {
 		t := x - q.x
-		s += 2 * t / (t*t + q.yy)
+		s += 2 * t / (float64(t*t) + q.yy)
 	}
 	for j, q := range k.reals() {
 		if j != skip {
@@ -387,21 +387,21 @@ func (k *Kernel) othersReal2(x1, x2 float64, skip1, skip2 int) (s1, s2, ratio fl
 	ratio = 1
 	for _, q := range k.pairs() {
 		t1, t2 := x1-q.x, x2-q.x
-		q1, q2 := t1*t1+q.yy, t2*t2+q.yy
+		q1, q2 := float64(t1*t1)+q.yy, float64(t2*t2)+q.yy
 		inverse := 1 / (q1 * q2)
-		v2 := q1 * inverse
-		s1 += 2 * t1 * (q2 * inverse)
-		s2 += 2 * t2 * v2
-		ratio *= q1 * v2
+		v2 := float64(q1 * inverse)
+		s1 += float64(2 * t1 * (q2 * inverse))
+		s2 += float64(2 * t2 * v2)
+		ratio *= float64(q1 * v2)
 	}
 	for j, q := range k.reals() {
 		if j != skip1 && j != skip2 {
 			t1, t2 := x1-q.x, x2-q.x
 			inverse := 1 / (t1 * t2)
-			v2 := t1 * inverse
-			s1 += t2 * inverse
+			v2 := float64(t1 * inverse)
+			s1 += float64(t2 * inverse)
 			s2 += v2
-			ratio *= t1 * v2
+			ratio *= float64(t1 * v2)
 		}
 	}
 	return s1, s2, ratio

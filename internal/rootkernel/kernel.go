@@ -8,6 +8,9 @@
 // The points are real ones and the upper ones of conjugate pairs. Two neighbouring real ones
 // move together as one real quadratic, as does a conjugate pair: the sign of its
 // discriminant turns one kind into the other.
+//
+// Every product that enters a sum is rounded explicitly, so that no processor fuses the two: the
+// answer has the same bits everywhere.
 package rootkernel
 
 // A Kernel owns the working storage of a solution. The zero value is ready for use; it is

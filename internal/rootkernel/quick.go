@@ -11,7 +11,7 @@ func (k *Kernel) CertifyQuick(dst []Disc, origin bool, relative float64) ([]Disc
 	}
 	for _, q := range k.pairs() {
 		d := k.quickPair(q.x, q.y)
-		if !(d.Radius <= relative*math.Sqrt(d.X*d.X+d.Y*d.Y)) {
+		if !(d.Radius <= relative*math.Sqrt(float64(d.X*d.X)+float64(d.Y*d.Y))) {
 			return dst, false
 		}
 		dst = append(dst, d)
@@ -32,8 +32,8 @@ func (k *Kernel) CertifyQuick(dst []Disc, origin bool, relative float64) ([]Disc
 // 7(n+1)·u·m.
 func (k *Kernel) quickBounds(m, r float64) (bend, miss, slopeMiss float64) {
 	n := float64(k.n + 2)
-	bend = n * n * 1.02 * m
-	return bend, n * (7 * u) * m, bend / r * (10 * u)
+	bend = float64(n * n * 1.02 * m)
+	return bend, float64(n * (7 * u) * m), float64(bend / r * (10 * u))
 }
 
 func (k *Kernel) quickPair(x, y float64) Disc {
@@ -45,21 +45,21 @@ func (k *Kernel) quickPair(x, y float64) Disc {
 	var pr, pi, dr, di, m float64
 	for i := len(k.c) - 1; i >= 0; i-- {
 		c := k.c[i]
-		dr, di = dr*x-di*y+pr, dr*y+di*x+pi
-		pr, pi = pr*x-pi*y+c, pr*y+pi*x
-		m = m*r + (math.Abs(c) + floor)
+		dr, di = float64(dr*x)-float64(di*y)+pr, float64(dr*y)+float64(di*x)+pi
+		pr, pi = float64(pr*x)-float64(pi*y)+c, float64(pr*y)+float64(pi*x)
+		m = float64(m*r) + (math.Abs(c) + floor)
 	}
-	d2 := dr*dr + di*di
+	d2 := float64(dr*dr) + float64(di*di)
 	if !(d2 > 0x1p-900 && d2 < 0x1p900) {
 		return Disc{Radius: math.Inf(1)}
 	}
 	t := 1 / d2
-	ur, ui := dr*t, di*t
-	hx, hy := -(pr*ur + pi*ui), -(pi*ur - pr*ui)
+	ur, ui := float64(dr*t), float64(di*t)
+	hx, hy := -(float64(pr*ur) + float64(pi*ui)), -(float64(pi*ur) - float64(pr*ui))
 	bend, miss, slopeMiss := k.quickBounds(m, r)
-	miss += math.Abs(pr+(hx*dr-hy*di)) + math.Abs(pi+(hx*di+hy*dr)) + 8*u*(math.Abs(pr)+math.Abs(pi))
+	miss += math.Abs(pr+(float64(hx*dr)-float64(hy*di))) + math.Abs(pi+(float64(hx*di)+float64(hy*dr))) + float64(8*u*(math.Abs(pr)+math.Abs(pi)))
 	rho := k.discRadius(r, math.Sqrt(d2), math.Abs(hx)+math.Abs(hy), bend, miss, slopeMiss)
-	radius := (rho + r*(2*u)) * (1 + 0x1p-40) // the sum z + h is rounded
+	radius := float64((rho + float64(r*(2*u))) * (1 + 0x1p-40)) // the sum z + h is rounded
 	return Disc{X: x + hx, Y: y + hy, Radius: radius, HalfX: radius, HalfY: radius}
 }
 
@@ -71,14 +71,14 @@ func (k *Kernel) quickReal(x float64) Disc {
 	var p, d, m float64
 	for i := len(k.c) - 1; i >= 0; i-- {
 		c := k.c[i]
-		d = d*x + p
-		p = p*x + c
-		m = m*r + (math.Abs(c) + floor)
+		d = float64(d*x) + p
+		p = float64(p*x) + c
+		m = float64(m*r) + (math.Abs(c) + floor)
 	}
 	h := -p / d
 	bend, miss, slopeMiss := k.quickBounds(m, r)
-	miss += math.Abs(p+h*d) + 8*u*math.Abs(p)
+	miss += math.Abs(p+float64(h*d)) + float64(8*u*math.Abs(p))
 	rho := k.discRadius(r, math.Abs(d), math.Abs(h), bend, miss, slopeMiss)
-	radius := (rho + r*(2*u)) * (1 + 0x1p-40)
+	radius := float64((rho + float64(r*(2*u))) * (1 + 0x1p-40))
 	return Disc{X: x + h, Radius: radius, HalfX: radius}
 }

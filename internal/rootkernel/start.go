@@ -5,7 +5,7 @@ import "math"
 // roughLog returns log₂ x within 0.09, for normal x > 0: the exponent, and the fraction
 // taken as linear.
 func roughLog(x float64) float64 {
-	return float64(int64(math.Float64bits(x)))*0x1p-52 - 1023
+	return float64(float64(int64(math.Float64bits(x)))*0x1p-52) - 1023
 }
 
 // roughPower is the inverse of roughLog within its range, else 0 or a huge number.
@@ -61,6 +61,7 @@ func (k *Kernel) Start(attempt int) {
 	k.pairCount, k.realCount, k.shift = 0, 0, false
 	left := false // a real point of an earlier edge
 	var leftLog, leftSign float64
+	var leftPower int
 	cos, sin := -0.4161468365471424, 0.9092974268256817
 	if attempt > 0 {
 		sin, cos = math.Sincos(2 + float64(attempt))
@@ -72,7 +73,7 @@ func (k *Kernel) Start(attempt int) {
 		r := roughPower(l)
 		for ; m >= 2; m -= 2 {
 			k.addPair(r*cos, r*math.Abs(sin))
-			cos, sin = cos*turnCos-sin*turnSin, cos*turnSin+sin*turnCos
+			cos, sin = float64(cos*turnCos)-float64(sin*turnSin), float64(cos*turnSin)+float64(sin*turnCos)
 		}
 		if m == 0 {
 			continue
@@ -84,7 +85,9 @@ func (k *Kernel) Start(attempt int) {
 		}
 		switch {
 		case !left:
-			left, leftLog, leftSign = true, l, sign
+			left, leftLog, leftSign, leftPower = true, l, sign, a.power
+		case leftPower+2 == b.power && k.exponents == nil && k.startQuadratic(leftPower):
+			left = false
 		case l-leftLog < 2 && sign == leftSign:
 			g := roughPower((l + leftLog) / 2)
 			k.addPair(sign*g*0.8, g*0.6)
@@ -98,6 +101,25 @@ func (k *Kernel) Start(attempt int) {
 	if left {
 		k.addReal(leftSign * roughPower(leftLog))
 	}
+}
+
+// startQuadratic places two points at the roots of the quadratic that three neighbouring
+// corners of the polygon make, from the given power on: the other terms are smaller there.
+func (k *Kernel) startQuadratic(power int) bool {
+	lead := 1 / k.c[power+2]
+	half := -0.5 * k.c[power+1] * lead
+	product := k.c[power] * lead
+	switch discriminant := float64(half*half) - product; {
+	case discriminant < 0:
+		k.addPair(half, math.Sqrt(-discriminant))
+	case discriminant > 0:
+		large := half + math.Copysign(math.Sqrt(discriminant), half)
+		k.addReal(large)
+		k.addReal(product / large)
+	default:
+		return false
+	}
+	return true
 }
 
 // Begin starts without points; [Kernel.Place] adds them.
