@@ -1,6 +1,7 @@
 package timeresp
 
 import (
+	"fmt"
 	"math"
 	"math/cmplx"
 
@@ -25,8 +26,8 @@ import (
 // 1963, chapter 3 (continuation interval by interval).
 
 const (
-	delayTerms    = 36        // of the series of a cell
-	mostPerPeriod = 1_000_000 // cells
+	delayTerms    = 36      // of the series of a cell
+	mostPerPeriod = 1 << 14 // cells
 )
 
 // A delayEquation is the equation in scaled time, with the states of the observer canonical
@@ -54,27 +55,19 @@ func newDelayEquation(call string, a, b, f poly.Poly, seconds float64) (*delayEq
 	if err != nil {
 		return nil, err
 	}
-	// The rate: the fastest pole, and the frequency beyond which the loop has a gain below
-	// 1 for certain.
-	rate, lead := 0.0, math.Abs(a.Coefficient(n))
+	// The cells are set by the fastest pole; where the gain around the loop asks for shorter
+	// ones, the series will tell.
+	rate := 1 / seconds
 	for _, p := range poles {
 		rate = max(rate, cmplx.Abs(p.Value))
 	}
-	for k := 1; k <= n; k++ {
-		rate = max(rate, math.Pow(math.Abs(b.Coefficient(n-k))/lead, 1/float64(k)))
-	}
 	q := &delayEquation{n: n}
-	scale := 0
-	if rate > 0 {
-		_, scale = math.Frexp(rate)
-	} else {
-		_, scale = math.Frexp(1 / seconds)
-	}
+	_, scale := math.Frexp(rate)
 	q.w = math.Ldexp(1, scale)
 	q.period = math.Ldexp(seconds, scale)
 	q.cells = int(max(1, math.Ceil(min(q.period/earlyStep, 2*mostPerPeriod))))
 	if q.cells > mostPerPeriod {
-		return nil, &tf.UnsupportedError{Call: call, What: "dead time in the loop that is very long beside its fastest mode"}
+		return nil, &tf.UnsupportedError{Call: call, What: fmt.Sprintf("dead time in the loop that is more than %d times the fastest time constant", 2*mostPerPeriod)}
 	}
 	q.h = q.period / float64(q.cells)
 	da := scaledCoefficients(a, scale)

@@ -3,6 +3,7 @@ package timeresp
 import (
 	"context"
 	"math"
+	"sort"
 
 	"github.com/polewright/polewright/tf"
 )
@@ -19,12 +20,13 @@ type stepwise struct {
 	settled   bool      // after the last cell the signal is its limit, to the accuracy promised
 	rest      *march    // at the end of the last cell; nil if settled
 	spreads   []float64 // bound on |y - limit| from a cell on; nil if there is no limit
+	largest   []float64 // |y| so far, by cell
 	dirac     []float64 // τ and areas of impulses, in scaled time
 }
 
 const (
 	leastPeriods = 8
-	mostCells    = 100_000
+	mostCells    = 1 << 15
 	settledTo    = 1e-13 // of the largest value so far
 	askedCells   = 2_000_000
 )
@@ -36,8 +38,8 @@ func (q *delayEquation) solve(ctx context.Context, call string, in event, d *dec
 		if s != nil || err != nil {
 			return s, err
 		}
-		if attempt == 6 {
-			return nil, &tf.UnsupportedError{Call: call, What: "a delay equation whose series does not converge on short cells"}
+		if q.cells > mostPerPeriod {
+			return nil, &tf.UnsupportedError{Call: call, What: "dead time in a loop of so high a gain that the series of its response do not converge"}
 		}
 		q.divide()
 	}
@@ -70,7 +72,7 @@ func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepw
 					break
 				}
 			}
-			if m.index >= leastPeriods*q.cells && (m.index >= mostCells || steady == nil && m.index >= 4096) {
+			if m.index >= mostCells || steady == nil && m.index >= max(4096, min(leastPeriods*q.cells, mostCells/2)) {
 				s.rest = m.clone()
 				break
 			}
@@ -96,6 +98,7 @@ func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepw
 			end += c.hi
 		}
 		largest = max(largest, math.Abs(end), math.Abs(y[0].hi))
+		s.largest = append(s.largest, largest)
 		if largest > 1e300 {
 			s.rest = m.clone()
 			break
@@ -314,4 +317,10 @@ func (s *stepwise) ultimate() float64 { return s.limit }
 
 func (s *stepwise) horizon() float64 { return 0 }
 
-func (s *stepwise) calm(level float64) float64 { return calmBySearch(s, level) }
+func (s *stepwise) calm(level float64) float64 {
+	i := sort.Search(len(s.spreads), func(i int) bool { return s.spreads[i] <= level })
+	if i == len(s.spreads) {
+		return math.Inf(1)
+	}
+	return s.boundary(i)
+}

@@ -78,5 +78,9 @@ func (s *stepwise) errorAt(t float64) float64 {
 	if i == 0 && s.leading > 0 {
 		sum *= math.Pow(x, float64(s.leading)) * (1 + float64(s.leading)/earlyTerms)
 	}
+	// What the cells before have lost, in wide arithmetic, weighs little: 2⁻⁶⁷ is enough.
+	if i > 0 {
+		sum += 0x1p-20 * s.largest[i-1] // times 2⁻⁴⁷
+	}
 	return sum * (polynomialRounding + seriesRest)
 }

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"github.com/polewright/polewright/poly"
+	"github.com/polewright/polewright/tf"
 )
 
 // Figures are the figures of merit of a response. Times are in seconds from t = 0, dead time
@@ -43,7 +44,8 @@ type curve interface {
 	cellStart(tau float64) float64
 	// horizon returns the τ from which on the spread of nodes bounds what is still to come.
 	horizon() float64
-	// calm returns a τ not before the horizon from which on the spread is at most the level.
+	// calm returns a τ not before the horizon from which on the spread is at most the level;
+	// +Inf if the curve is not known for so long.
 	calm(level float64) float64
 }
 
@@ -105,9 +107,15 @@ type scan struct {
 	band    float64
 	span    float64 // nothing closer to the final value than this, over it, is looked for
 	only    int     // stop after so many levels; 0: do not
+	open    bool    // the curve, or the work allowed, ended before everything was decided
+	either  bool    // most and least move together: only the largest magnitude is looked for
+	nodes   int     // evaluated so far
 }
 
-const maxDepth = 60
+const (
+	maxDepth = 60
+	maxNodes = 4_000_000 // of one scan
+)
 
 func (s *scan) node(tau float64) (n node) {
 	s.fill(tau, false, &n)
@@ -115,6 +123,7 @@ func (s *scan) node(tau float64) (n node) {
 }
 
 func (s *scan) fill(tau float64, before bool, n *node) {
+	s.nodes++
 	s.curve.node(tau, before, n)
 	n.y *= s.inverse
 	n.d *= s.inverse
@@ -134,9 +143,15 @@ func (s *scan) see(n *node) {
 	}
 	if n.y > s.most {
 		s.most, s.mostAt = n.y, n.t
+		if s.either {
+			s.least, s.leastAt = -n.y, math.NaN()
+		}
 	}
 	if n.y < s.least {
 		s.least, s.leastAt = n.y, n.t
+		if s.either {
+			s.most, s.mostAt = -n.y, math.NaN()
+		}
 	}
 }
 
@@ -144,6 +159,10 @@ func (s *scan) see(n *node) {
 func (s *scan) forward(a, b *node, depth int) {
 	c := enclose(a, b, s.fourth(a, b))
 	if !(c.high > s.most || c.low < s.least || s.next < len(s.levels) && c.high >= s.levels[s.next]) {
+		return
+	}
+	if s.nodes > maxNodes {
+		s.open = true
 		return
 	}
 	if c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t {
@@ -281,7 +300,7 @@ func (r *Response) scan() (s scan, start, w float64) {
 	s = scan{levels: [4]float64{0.1, 0.5, 0.9, 1}, reached: [4]float64{nan, nan, nan, nan}, mostAt: nan, leastAt: nan}
 	s.curve, w = r.curve()
 	if r.final == 0 {
-		s.inverse, s.next = 1, len(s.levels)
+		s.inverse, s.next, s.either = 1, len(s.levels), true
 	} else {
 		s.inverse, s.most, s.least = 1/r.final, 1+noExcursion, -noExcursion
 		s.span = 1
@@ -307,8 +326,10 @@ func checkBand(call string, band float64) error {
 // Figures returns the figures of merit, with the settling time for a band that is a fraction
 // of the final value, such as 0.02. An excursion below 1e-9·|Final| is none.
 //
-// The error is a [*poly.ArgumentError] for a band that is not positive and finite, and a
-// [*NoFinalValueError], with every figure NaN, if the response has no limit.
+// The error is a [*poly.ArgumentError] for a band that is not positive and finite, a
+// [*NoFinalValueError], with every figure NaN, if the response has no limit, and a
+// [*tf.UnsupportedError] if a loop with dead time dies away too slowly, or a sampled one, for
+// the figures to be decided: then what is not NaN holds.
 func (r *Response) Figures(band float64) (Figures, error) {
 	const call = "timeresp.Response.Figures"
 	nan := math.NaN()
@@ -325,6 +346,9 @@ func (r *Response) Figures(band float64) (Figures, error) {
 	}
 	s, start, w := r.scan()
 	s.run()
+	if s.open {
+		return f, unsettled(call)
+	}
 	seconds := func(tau float64) float64 { return start + tau/w }
 	if r.final == 0 {
 		f.LargestValue, f.LargestTime = s.largest(0)
@@ -345,17 +369,23 @@ func (r *Response) Figures(band float64) (Figures, error) {
 	f.LargestTime = seconds(f.LargestTime)
 	s.band = band
 	f.SettlingTime = seconds(s.settle())
+	if s.open {
+		return f, unsettled(call)
+	}
 	return f, nil
+}
+
+// unsettled says that a response dies away too slowly for its figures to be decided.
+func unsettled(call string) error {
+	return &tf.UnsupportedError{Call: call, What: "a response that needs too many of its fastest time constants to settle"}
 }
 
 // largest returns the value of largest magnitude and its τ after run.
 func (s *scan) largest(final float64) (value, tau float64) {
 	switch {
-	case s.mostAt == s.mostAt && !(-s.least > s.most):
+	case s.mostAt == s.mostAt && !(s.leastAt == s.leastAt && -s.least > s.most):
 		return s.most / s.inverse, s.mostAt
-	case s.leastAt == s.leastAt && -s.least > 1:
-		return s.least / s.inverse, s.leastAt
-	case s.leastAt == s.leastAt && final == 0:
+	case s.leastAt == s.leastAt && (-s.least > 1 || final == 0):
 		return s.least / s.inverse, s.leastAt
 	}
 	return final, math.NaN()
@@ -373,7 +403,11 @@ func (r *Response) SettlingTime(band float64) (float64, error) {
 	}
 	s, start, w := r.scan()
 	s.band = band
-	return start + s.settle()/w, nil
+	tau := s.settle()
+	if s.open {
+		return math.NaN(), unsettled(call)
+	}
+	return start + tau/w, nil
 }
 
 // Overshoot returns the overshoot and its time, as by [Response.Figures], and nothing else.
@@ -383,7 +417,9 @@ func (r *Response) Overshoot() (fraction, time float64, err error) {
 	}
 	s, start, w := r.scan()
 	s.next, s.least = len(s.levels), math.Inf(-1)
-	s.run()
+	if s.run(); s.open {
+		return math.NaN(), math.NaN(), unsettled("timeresp.Response.Overshoot")
+	}
 	if s.mostAt != s.mostAt {
 		return 0, math.NaN(), nil
 	}
@@ -398,7 +434,9 @@ func (r *Response) RiseTime() (float64, error) {
 	}
 	s, _, w := r.scan()
 	s.most, s.least, s.only = math.Inf(1), math.Inf(-1), 3
-	s.run()
+	if s.run(); s.open && s.next < 3 {
+		return math.NaN(), unsettled("timeresp.Response.RiseTime")
+	}
 	return (s.reached[2] - s.reached[0]) / w, nil
 }
 
@@ -416,7 +454,9 @@ func (r *Response) Largest() (value, time float64, err error) {
 	if r.final != 0 {
 		s.least = -1
 	}
-	s.run()
+	if s.run(); s.open {
+		return math.NaN(), math.NaN(), unsettled("timeresp.Response.Largest")
+	}
 	value, tau := s.largest(r.final)
 	return value, start + tau/w, nil
 }
@@ -435,7 +475,8 @@ func (s *scan) run() {
 			return
 		}
 		end := s.curve.cellEnd(a.t)
-		if math.IsInf(end, 1) && math.IsInf(a.step, 1) {
+		if math.IsInf(end, 1) && math.IsInf(a.step, 1) || s.nodes > maxNodes {
+			s.open = a.spread > 0
 			return
 		}
 		if a.t+a.step < end {
@@ -455,6 +496,10 @@ func (s *scan) run() {
 func (s *scan) settle() float64 {
 	// From the horizon on the modes together cannot leave the band.
 	n := node{t: s.curve.calm(s.band / math.Abs(s.inverse))}
+	if math.IsInf(n.t, 1) {
+		s.open = true
+		return math.NaN()
+	}
 	outside := func(n *node) bool { return !(math.Abs(n.y-1) <= s.band) }
 	for n.t > 0 {
 		var a, b node
@@ -466,6 +511,10 @@ func (s *scan) settle() float64 {
 		if t, found := s.backward(&a, &b, 0); found {
 			return t
 		}
+		if s.nodes > 2*maxNodes {
+			s.open = true
+			return math.NaN()
+		}
 		n = a
 	}
 	return 0
@@ -474,7 +523,7 @@ func (s *scan) settle() float64 {
 // backward returns the last entry into the band between a and b, b being inside.
 func (s *scan) backward(a, b *node, depth int) (float64, bool) {
 	c := enclose(a, b, s.fourth(a, b))
-	if c.low > 1-s.band && c.high < 1+s.band {
+	if c.low > 1-s.band && c.high < 1+s.band || s.nodes > 2*maxNodes {
 		return 0, false
 	}
 	if c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t {
@@ -517,7 +566,10 @@ func calmBySearch(c curve, level float64) float64 {
 		return lo
 	}
 	hi := max(lo, 1)
-	for c.node(hi, false, &n); !(n.spread <= level) && hi < math.MaxFloat64/4; c.node(hi, false, &n) {
+	for c.node(hi, false, &n); !(n.spread <= level); c.node(hi, false, &n) {
+		if hi > 0x1p1000 {
+			return math.Inf(1)
+		}
 		lo = hi
 		hi *= 2
 	}

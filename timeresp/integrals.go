@@ -22,7 +22,8 @@ const integralRest = 1e-14
 // squares. Other responses are integrated by Gauss's rule between zeros and breaking points,
 // until nothing that counts is left. Each has a relative error of about 1e-11.
 //
-// The error is a [*NoFinalValueError] if the response has no limit.
+// The error is a [*NoFinalValueError] if the response has no limit, and a
+// [*tf.UnsupportedError] as that of [Response.Figures].
 func (r *Response) Integrals() (Integrals, error) {
 	nan := math.NaN()
 	none := Integrals{nan, nan, nan, nan, nan}
@@ -42,7 +43,9 @@ func (r *Response) Integrals() (Integrals, error) {
 	sum.TimeAbsolute = f * from * from / 2
 	sum.TimeSquare = f * f * from * from / 2
 	v.sum = &sum
-	v.run()
+	if v.run(); v.open {
+		return none, unsettled("timeresp.Response.Integrals")
+	}
 	sum.Absolute /= w
 	sum.Square /= w
 	sum.TimeAbsolute /= w * w
@@ -110,7 +113,8 @@ func (v *travel) run() {
 		}
 		end := v.curve.cellEnd(a.t)
 		step := a.step
-		if math.IsInf(end, 1) && math.IsInf(step, 1) {
+		if math.IsInf(end, 1) && math.IsInf(step, 1) || v.nodes > 4*maxNodes {
+			v.open = a.spread > 1e-11*v.largest
 			return
 		}
 		if a.t+step < end {
@@ -130,7 +134,7 @@ func (v *travel) run() {
 func (v *travel) part(a, b *node, depth int) {
 	c := enclose(a, b, v.fourth(a, b))
 	switch {
-	case c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t:
+	case c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t || v.nodes > 4*maxNodes:
 		v.monotone(a, b)
 	case c.lowCurve >= 0 || c.highCurve <= 0:
 		if a.d*b.d < 0 {
@@ -140,7 +144,7 @@ func (v *travel) part(a, b *node, depth int) {
 		} else {
 			v.monotone(a, b)
 		}
-	case depth > 8 && math.Abs(c.high-c.low) <= 1e-13*v.largest:
+	case depth > 4 && math.Abs(c.high-c.low) <= 1e-13*v.largest:
 		v.monotone(a, b)
 	default:
 		m := v.node(a.t + (b.t-a.t)/2)
@@ -199,7 +203,11 @@ func (r *Response) HalfCycles(band float64) (int, error) {
 	}
 	s, _, _ := r.scan()
 	s.band = band
-	h := halfCycles{scan: s, last: s.settle()}
+	h := halfCycles{last: s.settle()}
+	h.scan = s
+	if h.open || s.open {
+		return 0, unsettled(call)
+	}
 	return h.run(), nil
 }
 
@@ -250,7 +258,7 @@ func (h *halfCycles) turn(n *node, rate float64) {
 func (h *halfCycles) part(a, b *node, depth int) {
 	c := enclose(a, b, h.fourth(a, b))
 	switch {
-	case c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t,
+	case c.lowRate >= 0 || c.highRate <= 0 || depth > maxDepth || b.t-a.t <= 4e-16*b.t || h.nodes > 4*maxNodes,
 		c.low > 1-h.band && c.high < 1+h.band:
 		h.turn(b, b.d)
 	case c.lowCurve >= 0 || c.highCurve <= 0:

@@ -15,7 +15,7 @@ func (r *Response) Sample(out []float64, start, step float64) {
 				out[i] = r.At(start + float64(i)*step)
 				i++
 			}
-			k.sampleModes(out[i:], start+float64(i)*step, a.from, step)
+			k.sampleModes(out[i:], start+float64(i)*step, a.from, step) // rounded once, to an instant as good
 			return
 		}
 	}
@@ -75,10 +75,12 @@ func (k *kernel) sampleModes(out []float64, t, from, step float64) {
 		turn.fill(re, im)
 		for i := 0; i < len(out); i += block {
 			part := out[i:min(i+block, len(out))]
-			at := t + float64(i)*step
-			s := at - from
-			u := s - at
-			lo := (at - (s - u)) + (-from - u)
+			// The instant t + i·step - from with what the roundings lose.
+			travelled := float64(i) * step
+			lost := math.FMA(float64(i), step, -travelled)
+			at, rest := twoSum(t, travelled)
+			s, more := twoSum(at, -from)
+			lo := lost + rest + more
 			re, im := m.turn(s*k.w, lo*k.w)
 			if m.count > 1 {
 				a := k.amplitudes[m.first : m.first+m.count]

@@ -3,6 +3,7 @@ package timeresp
 import (
 	"context"
 	"math"
+	"sort"
 
 	"github.com/polewright/polewright/poly"
 	"github.com/polewright/polewright/tf"
@@ -270,7 +271,13 @@ func (s *sequence) cellStart(t float64) float64 { return float64(s.locate(t, tru
 
 func (s *sequence) horizon() float64 { return 0 }
 
-func (s *sequence) calm(level float64) float64 { return calmBySearch(s, level) }
+func (s *sequence) calm(level float64) float64 {
+	k := sort.Search(len(s.spreads), func(k int) bool { return s.spreads[k] <= level })
+	if k == len(s.spreads) {
+		return math.Inf(1)
+	}
+	return float64(k) * s.period
+}
 
 func (s *sequence) rate() float64 { return 1 }
 

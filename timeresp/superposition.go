@@ -137,4 +137,11 @@ func (s *superposition) horizon() float64 {
 	return end
 }
 
-func (s *superposition) calm(level float64) float64 { return calmBySearch(s, level) }
+func (s *superposition) calm(level float64) float64 {
+	// Each arc may keep its part of the level.
+	tau := s.horizon()
+	for i := range s.arcs {
+		tau = max(tau, s.at[i]+s.arcs[i].signal.calm(level/float64(len(s.arcs))))
+	}
+	return tau
+}

@@ -65,7 +65,10 @@ func (r *Response) Span() float64 {
 	if size == 0 {
 		return last + 20/w
 	}
-	return r.arcs[0].from + c.calm(1e-3*size)/w
+	if tau := c.calm(1e-3 * size); !math.IsInf(tau, 1) {
+		return r.arcs[0].from + tau/w
+	}
+	return last + 1000/w
 }
 
 // Picture returns n samples, at least 2, evenly spread over [Response.Span].
