@@ -55,6 +55,7 @@ type runner struct {
 	scale    []float64 // largest size so far of each state
 	sample   sampling
 	last     float64 // s, how long a segment the series last allowed
+	turns    int     // changes of mode at this instant
 }
 
 // sampling is the state of a sampled controller.
@@ -126,14 +127,31 @@ func (r *runner) advance(until float64, switched bool) bool {
 	if limited {
 		var at float64
 		at, to = r.firstSwitch(end-r.seg.from, switched)
+		if to != r.seg.mode && at == 0 {
+			if r.turns++; r.turns <= mostTurns {
+				r.turn(to)
+				return true
+			}
+			to = r.seg.mode // a touch, or a tie that rounding cannot break: the mode stays
+		}
 		if to != r.seg.mode {
 			end = math.Min(end, math.Max(r.seg.from+at, math.Nextafter(r.seg.from, math.Inf(1))))
 		}
 	}
 	r.finish(end)
+	r.turns = 0
 	if to == r.seg.mode {
 		return false
 	}
+	r.turn(to)
+	return true
+}
+
+// mostTurns bounds the changes of mode at one instant.
+const mostTurns = 4
+
+// turn changes the mode where the segment being made begins.
+func (r *runner) turn(to Mode) {
 	before := r.seg.mode
 	r.seg.mode = to
 	if to == Linear && r.loop.Rate > 0 {
@@ -142,8 +160,7 @@ func (r *runner) advance(until float64, switched bool) bool {
 		r.expand(&r.seg, &r.now)
 		r.seg.mode = r.follow()
 	}
-	r.result.Switches = append(r.result.Switches, Switch{Time: end, From: before, To: r.seg.mode})
-	return true
+	r.result.Switches = append(r.result.Switches, Switch{Time: r.seg.from, From: before, To: r.seg.mode})
 }
 
 // follow returns the mode of an actuator that stands where its demand is.
@@ -240,6 +257,10 @@ func (r *runner) firstSwitch(h float64, switched bool) (at float64, to Mode) {
 			copy(distance[:], distance[1:])
 			distance[terms-1] = 0
 			noise /= h
+			if b := distance.bernstein(h); firstSign(&b, noise, false) < 0 {
+				at, to = 0, next
+				return
+			}
 		}
 		var room [terms]float64
 		if found := distance.roots(h, noise, room[:0]); len(found) > 0 && (found[0] < at || to == r.seg.mode) {
