@@ -42,8 +42,18 @@ type Path struct {
 	fixed    poly.Poly // characteristic: fixed + scaled·exp(-s·around)
 	scaled   poly.Poly
 	around   deadTime
+	whole    poly.Poly // outer·(fixed + scaled), where no dead time lies around the loop
 	period   float64
 	made     bool
+}
+
+// finished returns the path with what At would otherwise compute at every call.
+func (p Path) finished() Path {
+	if p.around.zero() || p.scaled.Degree() < 0 {
+		p.around = deadTime{}
+		p.whole = p.outer.Mul(p.fixed.Add(p.scaled))
+	}
+	return p
 }
 
 // Path returns the function from an input of the loop (Reference, LoadDisturbance,
@@ -68,9 +78,9 @@ func (l Loop) path(call string, from, to Point) (Path, error) {
 		if from == OutputDisturbance {
 			return Path{}, &UnsupportedError{Call: call, What: "an output disturbance in front of a sensor in s, sampled"}
 		}
-		return p.jointPath(from, to), nil
+		return p.jointPath(from, to).finished(), nil
 	}
-	return p.path(from, to), nil
+	return p.path(from, to).finished(), nil
 }
 
 // path for blocks in one variable. Letters: n and d numerator and denominator; f prefilter,
@@ -153,7 +163,7 @@ func (l Loop) ofLoop(call string, fill func(p plan, path *Path)) (Path, error) {
 	path := Path{from: OutputDisturbance, to: Output, outer: one, period: p.period, around: p.loopDelay(), made: true}
 	path.fixed, path.scaled = p.characteristic()
 	fill(p, &path)
-	return path, nil
+	return path.finished(), nil
 }
 
 // LoadSensitivity returns plant/(1 + L), from a disturbance at the plant's input to the
@@ -187,7 +197,7 @@ func (p Path) At(s complex128) complex128 {
 		return cmplx.NaN()
 	}
 	if p.around.zero() {
-		y := ratio(p.forward, p.outer.Mul(p.fixed.Add(p.scaled)), s)
+		y := ratio(p.forward, p.whole, s)
 		if y == 0 {
 			return 0
 		}
@@ -235,17 +245,13 @@ func (p Path) function(call string) (Function, error) {
 	if !p.made {
 		return invalid(badArgument(call, "p", "the zero Path leads nowhere"))
 	}
-	characteristic := p.fixed
-	if p.scaled.Degree() >= 0 {
-		if !p.around.zero() {
-			return invalid(&IrrationalError{Call: call, DeadTime: p.around.near})
-		}
-		characteristic = p.fixed.Add(p.scaled)
+	if !p.around.zero() {
+		return invalid(&IrrationalError{Call: call, DeadTime: p.around.near})
 	}
-	if characteristic.Degree() < 0 {
+	if p.whole.Degree() < 0 {
 		return invalid(badArgument(call, "loop", "has the value -1 everywhere: no signal satisfies it"))
 	}
-	return Function{numerator: p.forward, denominator: p.outer.Mul(characteristic), delay: p.delay, period: p.period, made: true}, nil
+	return Function{numerator: p.forward, denominator: p.whole, delay: p.delay, period: p.period, made: true}, nil
 }
 
 // Parts returns what the path is made of: its value is

@@ -11,6 +11,7 @@ func (l Loop) sample(call string, p *plan) error {
 		return badArgument(call, "Hold", "%v is no hold that a loop can have", l.Hold)
 	}
 	computation := seconds(l.ComputationDelay)
+	immediate := computation.zero() && l.Hold == ZeroOrderHold // a held load acts as the effort does
 	held := func(g Function, delay deadTime, how Method, name string) (Function, error) {
 		if !g.isProper() {
 			return invalid(badArgument(call, name, "degree %d over %d is improper: a hold cannot drive it", g.numerator.Degree(), g.denominator.Degree()))
@@ -30,6 +31,10 @@ func (l Loop) sample(call string, p *plan) error {
 		if p.around, err = p.forward.Series(sensor); err != nil {
 			return err
 		}
+		if immediate {
+			p.load = p.forward
+			return nil
+		}
 		p.load, err = held(plant, plant.delay, ZeroOrderHold, "Plant")
 		return err
 	}
@@ -40,7 +45,7 @@ func (l Loop) sample(call string, p *plan) error {
 	// The plant over the denominator of both, so that the sampled functions share theirs.
 	plant.numerator = plant.numerator.Mul(sensor.denominator)
 	plant.denominator = both.denominator
-	for _, todo := range []struct {
+	todo := []struct {
 		to    *Function
 		g     Function
 		delay deadTime
@@ -50,10 +55,17 @@ func (l Loop) sample(call string, p *plan) error {
 		{&p.around, both, both.delay.plus(computation), l.Hold},
 		{&p.load, plant, plant.delay, ZeroOrderHold},
 		{&p.loadAround, both, both.delay, ZeroOrderHold},
-	} {
-		if *todo.to, err = held(todo.g, todo.delay, todo.how, "Plant and Sensor"); err != nil {
+	}
+	if immediate {
+		todo = todo[:2]
+	}
+	for _, t := range todo {
+		if *t.to, err = held(t.g, t.delay, t.how, "Plant and Sensor"); err != nil {
 			return err
 		}
+	}
+	if immediate {
+		p.load, p.loadAround = p.forward, p.around
 	}
 	return nil
 }
