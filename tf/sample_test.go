@@ -163,20 +163,5 @@ func TestSampledLoopReference(t *testing.T) {
 
 // stepSamples runs the difference equation of a function of z on a unit step.
 func stepSamples(g Function, n int) []float64 {
-	a, b := g.Denominator(), g.Numerator()
-	order := a.Degree()
-	y := make([]float64, n)
-	for k := range y {
-		var sum float64
-		for i := 0; i <= order; i++ {
-			if k-i >= 0 {
-				sum += b.Coefficient(order - i)
-				if i > 0 {
-					sum -= a.Coefficient(order-i) * y[k-i]
-				}
-			}
-		}
-		y[k] = sum / a.Coefficient(order)
-	}
-	return y
+	return difference(g, func(int) float64 { return 1 }, n)
 }
