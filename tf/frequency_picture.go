@@ -79,7 +79,9 @@ func (r *FrequencyResponse) Window() (lo, hi float64) {
 	for _, w := range r.features() {
 		mark(w)
 	}
-	if list, err := r.a.gainCrossovers(); err == nil {
+	own := *r.a // with working memory of its own: goroutines may share r
+	own.memory = slab{}
+	if list, err := own.gainCrossovers(); err == nil {
 		for _, c := range list {
 			mark(c.Frequency)
 		}

@@ -5,6 +5,7 @@ import (
 	"math/cmplx"
 	"math/rand/v2"
 	"sort"
+	"sync"
 	"testing"
 
 	"github.com/polewright/polewright/tf"
@@ -87,4 +88,29 @@ func TestCurveFollowsTheResponse(t *testing.T) {
 			}
 		}
 	}
+}
+
+// Goroutines may share a response; run with the race detector.
+func TestResponseIsShared(t *testing.T) {
+	r, err := tf.MustParse("exp(-0.3 s) (s^2 + 0.001 s + 4) / ((s^2 + 0.00004 s + 9) (s + 0.1))").FrequencyResponse()
+	if err != nil {
+		t.Fatal(err)
+	}
+	want, err := r.Curve(0, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var group sync.WaitGroup
+	for range 8 {
+		group.Add(1)
+		go func() {
+			defer group.Done()
+			got, err := r.Curve(0, 0)
+			if err != nil || len(got) != len(want) || len(got[0].Points) != len(want[0].Points) {
+				t.Errorf("another curve: %v", err)
+			}
+			r.Phase(1)
+		}()
+	}
+	group.Wait()
 }
