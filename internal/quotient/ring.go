@@ -1,6 +1,9 @@
 package quotient
 
-import "math/big"
+import (
+	"math"
+	"math/big"
+)
 
 // Ring is the polynomials modulo a monic polynomial of degree at least 1.
 type Ring struct {
@@ -99,11 +102,6 @@ func (r Ring) Scale(a Element, k *big.Float) Element {
 	return scaled
 }
 
-// timesX returns x·a.
-func (r Ring) timesX(a Element) Element {
-	return r.Reduce(append([]*big.Float{r.number()}, a...))
-}
-
 // Lead returns the coefficient of the highest power that an element can have: for an element
 // B, the sum of the residues of B/modulus.
 func (r Ring) Lead(a Element) *big.Float { return a[len(a)-1] }
@@ -116,26 +114,49 @@ func (r Ring) ExpMinusOne(t *big.Float) Element {
 	if t.Sign() == 0 {
 		return sum
 	}
-	halvings := max(0, t.MantExp(nil)+1) // now |t| < 1/2
+	// The smaller the argument of the series, the fewer its terms; a doubling costs about as
+	// much as n of them.
+	small := int(math.Sqrt(float64(r.precision)/float64(len(r.modulus)))) / 2
+	halvings := max(0, t.MantExp(nil)+1+small) // now |t| < 2^-(small+1)
 	step := r.number().SetMantExp(r.number().Set(t), -halvings)
+	n := len(r.modulus)
 	term := r.One()
 	size := 0 // exponent of the largest coefficient met
+	product, factor, index := r.number(), r.number(), r.number()
 	for j := int64(1); ; j++ {
-		factor := r.number().Quo(step, r.number().SetInt64(j))
-		term = r.Scale(r.timesX(term), factor)
-		sum = r.Add(sum, term)
+		factor.Quo(step, index.SetInt64(j))
+		// term·x, in place: the leading coefficient wraps around through the modulus.
+		top := term[n-1]
+		copy(term[1:], term[:n-1])
+		term[0] = r.number()
+		if top.Sign() != 0 {
+			for i, a := range r.modulus {
+				if a.Sign() != 0 {
+					term[i].Sub(term[i], product.Mul(top, a))
+				}
+			}
+		}
+		for i, x := range term {
+			if x.Sign() != 0 {
+				x.Mul(x, factor)
+				sum[i].Add(sum[i], x)
+			}
+		}
 		e, ok := exponent(term)
 		if j == 1 {
 			size = e
 		}
 		// Powers of x grow little: the roots are inside the unit disc.
-		if !ok || e < size-int(r.precision)-8 && j > int64(2*len(r.modulus)) {
+		if !ok || e < size-int(r.precision)-8 && j > int64(2*n) {
 			break
 		}
 	}
-	two := r.number().SetInt64(2)
 	for range halvings {
-		sum = r.Add(r.Mul(sum, sum), r.Scale(sum, two))
+		square := r.Mul(sum, sum)
+		for i, x := range sum {
+			square[i].Add(square[i], x.SetMantExp(x, 1))
+		}
+		sum = square
 	}
 	return sum
 }
