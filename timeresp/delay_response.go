@@ -16,10 +16,10 @@ type stepwise struct {
 	perPeriod int       // cells
 	q         []float64 // earlyTerms for each cell, by powers of the fraction of the cell
 	leading   int       // the first cell is this power times its polynomial
-	limit     float64   // NaN if there is none
-	settled   bool      // after the last cell the signal is its limit, to the accuracy promised
+	drift     []wide    // polynomial in τ, by power, that the signal tends to; nil if there is none
+	settled   bool      // after the last cell the signal is its trend, to the accuracy promised
 	rest      *march    // at the end of the last cell; nil if settled
-	spreads   []float64 // bound on |y - limit| from a cell on; nil if there is no limit
+	spreads   []float64 // bound on |y - trend| from a cell on; nil if there is no trend
 	largest   []float64 // |y| so far, by cell
 	dirac     []float64 // τ and areas of impulses, in scaled time
 }
@@ -48,10 +48,10 @@ func (q *delayEquation) solve(ctx context.Context, call string, in event, d *dec
 // attempt returns nil if the cells are too long.
 func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepwise, error) {
 	m := q.march(in)
-	s := &stepwise{w: q.w, h: q.h, period: q.period, perPeriod: q.cells, limit: math.NaN()}
-	var steady []float64
+	s := &stepwise{w: q.w, h: q.h, period: q.period, perPeriod: q.cells}
+	var steady [][]wide
 	if d.ok {
-		s.limit, steady = q.steady(in)
+		s.drift, steady = q.steady(in)
 	}
 	largest := 0.0
 	deviation := make([]float64, q.n+1)
@@ -63,7 +63,7 @@ func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepw
 			}
 			if m.index > 0 && steady != nil && m.dirac.hi == 0 {
 				for i := range q.n {
-					deviation[i] = m.x[i].hi - steady[i]
+					deviation[i] = m.x[i].sub(polynomialAt(steady[i], q.start(m.index))).hi
 				}
 				deviation[q.n] = s.largestDeviation(m.index - q.cells)
 				remaining = d.bound(deviation)
@@ -115,19 +115,24 @@ func (q *delayEquation) attempt(ctx context.Context, in event, d *decay) (*stepw
 	return s, nil
 }
 
-// cellDeviation bounds |y - limit| on a cell.
+// cellDeviation bounds |y - trend| on a cell.
 func (s *stepwise) cellDeviation(i int) float64 {
+	trend := shiftedWide(s.drift, wide{s.period, 0}.mulFloat(float64(i/s.perPeriod)).add(wide{s.h, 0}.mulFloat(float64(i%s.perPeriod))))
 	q := s.q[i*earlyTerms:][:earlyTerms]
-	if i == 0 && s.leading > 0 {
-		sum := math.Abs(s.limit)
-		for _, c := range q {
-			sum += math.Abs(c)
+	sum, power := 0.0, 1.0
+	apart := i == 0 && s.leading > 0
+	for k, c := range q {
+		if k < len(trend) && !apart {
+			c -= trend[k].hi * power
+			power *= s.h
 		}
-		return sum
-	}
-	sum := math.Abs(q[0] - s.limit)
-	for _, c := range q[1:] {
 		sum += math.Abs(c)
+	}
+	if apart {
+		for _, c := range trend {
+			sum += math.Abs(c.hi) * power
+			power *= s.h
+		}
 	}
 	return sum
 }
@@ -141,35 +146,134 @@ func (s *stepwise) largestDeviation(i int) float64 {
 	return top
 }
 
-// steady returns limit and states under a constant input; no states if the input does not
-// become constant.
-func (q *delayEquation) steady(in event) (limit float64, x []float64) {
-	if len(in.polynomial) > 1 || len(in.sines) > 0 {
-		return math.NaN(), nil
+// start returns where a cell begins.
+func (q *delayEquation) start(i int) wide {
+	return wide{q.period, 0}.mulFloat(float64(i / q.cells)).add(wide{q.h, 0}.mulFloat(float64(i % q.cells)))
+}
+
+// steady returns the polynomials in τ that signal and states tend to under a polynomial
+// input; none if it has other parts, or if the loop has no gain to let go by at s = 0.
+//
+// With A(D) = a(D) + b(D)·e^(-TD) as a power series the signal is y = A(D)⁻¹·f(D)·u, of which
+// only the derivatives of u that are not zero count; the states follow from their equations.
+func (q *delayEquation) steady(in event) (y []wide, x [][]wide) {
+	if len(in.sines) > 0 {
+		return nil, nil
 	}
-	u := 0.0
-	if len(in.polynomial) > 0 {
-		u = in.polynomial[0]
+	count := max(len(in.polynomial), 1)
+	u := make([]wide, count)
+	for k, c := range in.polynomial {
+		u[k] = wide{c, 0}
+		for range k {
+			u[k] = u[k].mulFloat(1 / q.w)
+		}
 	}
-	// a(0)·y = -b(0)·y + f(0)·u, of which a, b, f are direct part times a plus the rest.
-	if q.n == 0 {
-		y := q.inD.mulFloat(u).div(wide{1, 0}.sub(q.loopD))
-		return y.float(), []float64{}
+	coefficient := func(c []wide, direct wide, k int) wide {
+		if k > q.n {
+			return wide{}
+		}
+		if k == q.n {
+			return direct
+		}
+		return c[k].add(direct.mul(q.a[k]))
 	}
-	around := q.a[0].sub(q.fromLoop[0].add(q.loopD.mul(q.a[0])))
-	forward := q.fromIn[0].add(q.inD.mul(q.a[0]))
-	if around.hi == 0 {
-		return math.NaN(), nil
+	around, forward := make([]wide, count), make([]wide, count)
+	for k := range count {
+		if k <= q.n {
+			around[k] = q.a[k]
+		}
+		forward[k] = coefficient(q.fromIn, q.inD, k)
+		delay := wide{1, 0} // (-T)^(k-j)/(k-j)!
+		for j := k; j >= 0; j-- {
+			around[k] = around[k].sub(coefficient(q.fromLoop, q.loopD, j).mul(delay))
+			delay = delay.mulFloat(-q.period).div(wide{float64(k - j + 1), 0})
+		}
 	}
-	y := forward.mulFloat(u).div(around)
-	x = make([]float64, q.n)
-	x1 := y.sub(q.loopD.mul(y)).sub(q.inD.mulFloat(u))
-	next := x1
+	if around[0].hi == 0 {
+		return nil, nil
+	}
+	y = make([]wide, count)
+	gain := make([]wide, count)
+	derivative := append([]wide(nil), u...)
+	for k := range count {
+		c := forward[k]
+		for j := 1; j <= k; j++ {
+			c = c.sub(around[j].mul(gain[k-j]))
+		}
+		gain[k] = c.div(around[0])
+		for i, d := range derivative {
+			y[i] = y[i].add(gain[k].mul(d))
+		}
+		derivative = derive(derivative)
+	}
+	delayed := shiftedWide(y, wide{-q.period, 0})
+	x = make([][]wide, q.n)
+	first := make([]wide, count)
+	for k := range count {
+		first[k] = y[k].sub(q.loopD.mul(delayed[k])).sub(q.inD.mul(u[k]))
+	}
+	next := first
 	for i := range q.n {
-		x[i] = next.float()
-		next = q.a[q.n-1-i].mul(x1).sub(q.fromLoop[q.n-1-i].mul(y)).sub(q.fromIn[q.n-1-i].mulFloat(u))
+		x[i] = next
+		rate := derive(next)
+		next = make([]wide, count)
+		for k := range count {
+			if k < len(rate) {
+				next[k] = rate[k]
+			}
+			next[k] = next[k].add(q.a[q.n-1-i].mul(first[k])).sub(q.fromLoop[q.n-1-i].mul(delayed[k])).sub(q.fromIn[q.n-1-i].mul(u[k]))
+		}
 	}
-	return y.float(), x
+	for len(y) > 1 && y[len(y)-1].hi == 0 {
+		y = y[:len(y)-1]
+	}
+	return y, x
+}
+
+// derive returns the derivative of a polynomial by power.
+func derive(p []wide) []wide {
+	if len(p) == 0 {
+		return nil
+	}
+	d := make([]wide, len(p)-1)
+	for k := range d {
+		d[k] = p[k+1].mulFloat(float64(k + 1))
+	}
+	return d
+}
+
+// shiftedWide returns the polynomial of x - d instead of x, by power.
+func shiftedWide(p []wide, d wide) []wide {
+	p = append([]wide(nil), p...)
+	for k := range p {
+		for i := len(p) - 2; i >= k; i-- {
+			p[i] = p[i].add(p[i+1].mul(d))
+		}
+	}
+	return p
+}
+
+func polynomialAt(p []wide, x wide) (y wide) {
+	for k := len(p) - 1; k >= 0; k-- {
+		y = y.mul(x).add(p[k])
+	}
+	return y
+}
+
+// trendAt returns the trend and its derivatives at τ.
+func (s *stepwise) trendAt(tau float64) (y, d, c float64) {
+	p := shiftedWide(s.drift, wide{tau, 0})
+	for k, v := range p {
+		switch k {
+		case 0:
+			y = v.float()
+		case 1:
+			d = v.float()
+		case 2:
+			c = 2 * v.float()
+		}
+	}
+	return y, d, c
 }
 
 // locate returns the cell at τ, or the one before if τ is where it begins, and the fraction of it.
@@ -200,12 +304,14 @@ func (s *stepwise) at(t, lo float64) float64 {
 		return math.NaN()
 	}
 	if s.settled && tau/s.h > float64(len(s.q)/earlyTerms+1) {
-		return s.limit
+		y, _, _ := s.trendAt(tau)
+		return y
 	}
 	i, x := s.locate(tau, lo*s.w, false)
 	if i >= len(s.q)/earlyTerms {
 		if s.settled {
-			return s.limit
+			y, _, _ := s.trendAt(tau)
+			return y
 		}
 		return s.continued(i, x)
 	}
@@ -240,7 +346,11 @@ func (s *stepwise) node(tau float64, before bool, n *node) {
 	n.t = tau
 	i, x := s.locate(tau, 0, before)
 	if last := len(s.q) / earlyTerms; i >= last {
-		*n = node{t: tau, y: s.limit, step: math.Inf(1), spread: s.spreads[last]}
+		*n = node{t: tau, step: math.Inf(1), spread: s.spreads[last]}
+		n.y, n.d, n.c = s.trendAt(tau)
+		if len(s.drift) > 4 {
+			n.fourth = math.Inf(1) // no figures of what grows so
+		}
 		return
 	}
 	q := s.q[i*earlyTerms:][:earlyTerms]
@@ -313,7 +423,20 @@ func (s *stepwise) cellStart(tau float64) float64 {
 
 func (s *stepwise) rate() float64 { return s.w }
 
-func (s *stepwise) ultimate() float64 { return s.limit }
+func (s *stepwise) ultimate() float64 {
+	if len(s.drift) != 1 {
+		return math.NaN()
+	}
+	return s.drift[0].float()
+}
+
+func (s *stepwise) trend() ([]float64, bool) {
+	p := make([]float64, len(s.drift))
+	for k, c := range s.drift {
+		p[k] = c.float()
+	}
+	return p, s.drift != nil
+}
 
 func (s *stepwise) horizon() float64 { return 0 }
 

@@ -64,7 +64,7 @@ func (s *stepwise) errorAt(t float64) float64 {
 	tau := t * s.w
 	if tau/s.h > float64(len(s.q)/earlyTerms) {
 		if s.settled {
-			return s.spreads[len(s.spreads)-1] + 0x1p-52*math.Abs(s.limit)
+			return s.spreads[len(s.spreads)-1] + 0x1p-52*math.Abs(s.at(t, 0))
 		}
 		return 0x1p-40 * math.Abs(s.at(t, 0)) // continued in wide arithmetic
 	}

@@ -56,6 +56,9 @@ type signal interface {
 	errorAt(t float64) float64
 	rate() float64     // w
 	ultimate() float64 // limit for t → ∞; NaN if there is none
+	// trend returns the polynomial in τ, by power, that the signal tends to; not ok if it
+	// tends to none. The spread of nodes is that about the trend.
+	trend() (p []float64, ok bool)
 }
 
 // A node is the signal at one instant, by scaled time.

@@ -6,21 +6,26 @@ func (k *kernel) rate() float64 { return k.w }
 
 // ultimate returns the value that the signal tends to; NaN if there is none.
 func (k *kernel) ultimate() float64 {
+	p, ok := k.trend()
+	for i := 1; i < len(p); i++ {
+		ok = ok && p[i] == 0
+	}
+	switch {
+	case !ok:
+		return math.NaN()
+	case len(p) == 0:
+		return 0
+	}
+	return p[0]
+}
+
+func (k *kernel) trend() ([]float64, bool) {
 	for i := range k.modes {
-		m := &k.modes[i]
-		if m.re >= 0 {
-			return math.NaN()
+		if m := &k.modes[i]; m.re >= 0 {
+			return nil, false
 		}
 	}
-	for i := 1; i < len(k.drift); i++ {
-		if k.drift[i] != 0 {
-			return math.NaN()
-		}
-	}
-	if len(k.drift) > 0 {
-		return k.drift[0]
-	}
-	return 0
+	return k.drift, true
 }
 
 // node fills n with the signal at τ.

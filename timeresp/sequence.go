@@ -283,6 +283,8 @@ func (s *sequence) rate() float64 { return 1 }
 
 func (s *sequence) ultimate() float64 { return s.limit }
 
+func (s *sequence) trend() ([]float64, bool) { return []float64{s.limit}, s.limit == s.limit }
+
 // errorAt: the recursion loses at most a few units in 2⁻¹⁰⁰ a step; rounding to float64
 // outweighs it.
 func (s *sequence) errorAt(t float64) float64 {

@@ -25,34 +25,25 @@ func (r *Response) limit() float64 {
 	if len(r.arcs) == 1 {
 		return r.arcs[0].signal.ultimate()
 	}
-	if _, ok := r.arcs[0].signal.(*kernel); !ok { // loops with dead time
-		sum := 0.0
-		for i := range r.arcs {
-			sum += r.arcs[i].signal.ultimate()
-		}
-		return sum
-	}
 	// The drifts add up to a polynomial of the time since the last arc began, which has to
 	// be a constant. Its coefficients are rounded sums.
 	w := r.arcs[0].signal.rate()
 	last := r.arcs[len(r.arcs)-1].from
 	var sum, size []float64
 	for i := range r.arcs {
-		k := r.arcs[i].signal.(*kernel)
-		for j := range k.modes {
-			if m := &k.modes[j]; m.re >= 0 && !(m.ar == 0 && m.ai == 0 && m.count == 1) {
-				return math.NaN()
-			}
+		drift, ok := r.arcs[i].signal.trend()
+		if !ok {
+			return math.NaN()
 		}
-		for len(sum) < len(k.drift) {
+		for len(sum) < len(drift) {
 			sum, size = append(sum, 0), append(size, 0)
 		}
-		absolute := make([]float64, len(k.drift))
-		for j, c := range k.drift {
+		absolute := make([]float64, len(drift))
+		for j, c := range drift {
 			absolute[j] = math.Abs(c)
 		}
 		d := (last - r.arcs[i].from) * w
-		for j, c := range shifted(k.drift, d) {
+		for j, c := range shifted(drift, d) {
 			sum[j] += c
 		}
 		for j, c := range shifted(absolute, d) {
@@ -113,7 +104,11 @@ func (s *superposition) cellEnd(tau float64) float64 {
 		if s.at[i] > tau {
 			return min(end, s.at[i])
 		}
-		end = min(end, s.at[i]+s.arcs[i].signal.cellEnd(tau-s.at[i]))
+		next := s.arcs[i].signal.cellEnd(tau - s.at[i])
+		if s.at[i]+next <= tau { // by rounding
+			next = s.arcs[i].signal.cellEnd(math.Nextafter(next, math.Inf(1)))
+		}
+		end = min(end, max(s.at[i]+next, math.Nextafter(tau, math.Inf(1))))
 	}
 	return end
 }
@@ -124,7 +119,11 @@ func (s *superposition) cellStart(tau float64) float64 {
 		if s.at[i] >= tau {
 			break
 		}
-		start = max(start, s.at[i]+s.arcs[i].signal.cellStart(tau-s.at[i]))
+		next := s.arcs[i].signal.cellStart(tau - s.at[i])
+		if s.at[i]+next >= tau { // by rounding
+			next = s.arcs[i].signal.cellStart(math.Nextafter(next, 0))
+		}
+		start = max(start, min(s.at[i]+next, math.Nextafter(tau, 0)))
 	}
 	return start
 }
