@@ -13,7 +13,7 @@ type deadTime struct {
 	exact *big.Rat // nil where near is exact
 }
 
-func seconds(x float64) deadTime { return deadTime{near: x} }
+func delayOf(x float64) deadTime { return deadTime{near: x} }
 
 func (d deadTime) rat() *big.Rat {
 	if d.exact != nil {

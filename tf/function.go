@@ -135,22 +135,22 @@ func (g Function) DeadTime() float64 {
 // WithDeadTime returns the function with this dead time, s, in the place of the one it has.
 // The error is a [*poly.ArgumentError] if it is negative or not finite, or, for a function
 // of z, not a whole number of periods (to 4 units in the last place).
-func (g Function) WithDeadTime(dead float64) (Function, error) {
+func (g Function) WithDeadTime(seconds float64) (Function, error) {
 	const call = "tf.Function.WithDeadTime"
 	if g.err != nil {
 		return g, g.err
 	}
-	if !(dead >= 0) || math.IsInf(dead, 0) {
-		return invalid(badArgument(call, "seconds", "%v is not a finite number ≥ 0", dead))
+	if !(seconds >= 0) || math.IsInf(seconds, 0) {
+		return invalid(badArgument(call, "seconds", "%v is not a finite number ≥ 0", seconds))
 	}
 	g = g.filled()
 	if g.period == 0 {
-		g.delay = seconds(dead + 0)
+		g.delay = delayOf(seconds + 0)
 		return g, nil
 	}
-	n, ok := wholePeriods(dead, g.period)
+	n, ok := wholePeriods(seconds, g.period)
 	if !ok {
-		return invalid(badArgument(call, "seconds", "%v s is not a whole number of periods of %v s", dead, g.period))
+		return invalid(badArgument(call, "seconds", "%v s is not a whole number of periods of %v s", seconds, g.period))
 	}
 	g.periods = n
 	return g, nil
@@ -182,23 +182,23 @@ func (g Function) Period() float64 {
 // WithPeriod declares a function of z with this sampling period, s; the polynomials stay as
 // they are. 0 declares a function of s. The error is a [*poly.ArgumentError] if the period is
 // negative or not finite, or the dead time is not a whole number of periods.
-func (g Function) WithPeriod(period float64) (Function, error) {
+func (g Function) WithPeriod(seconds float64) (Function, error) {
 	const call = "tf.Function.WithPeriod"
 	if g.err != nil {
 		return g, g.err
 	}
-	if !(period >= 0) || math.IsInf(period, 0) {
-		return invalid(badArgument(call, "seconds", "%v is not a finite number ≥ 0", period))
+	if !(seconds >= 0) || math.IsInf(seconds, 0) {
+		return invalid(badArgument(call, "seconds", "%v is not a finite number ≥ 0", seconds))
 	}
 	dead := g.DeadTime()
 	g = g.filled()
-	g.period, g.delay, g.periods = period+0, deadTime{}, 0
+	g.period, g.delay, g.periods = seconds+0, deadTime{}, 0
 	if dead == 0 {
 		return g, nil
 	}
 	h, err := g.WithDeadTime(dead)
 	if err != nil {
-		return invalid(badArgument(call, "seconds", "the dead time of %v s is not a whole number of periods of %v s", dead, period))
+		return invalid(badArgument(call, "seconds", "the dead time of %v s is not a whole number of periods of %v s", dead, seconds))
 	}
 	return h, nil
 }

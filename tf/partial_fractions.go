@@ -39,7 +39,7 @@ func (f PartialFractions) At(s complex128) complex128 {
 		y += term
 	}
 	if f.DeadTime > 0 {
-		y *= seconds(f.DeadTime).factor(s)
+		y *= delayOf(f.DeadTime).factor(s)
 	}
 	return y
 }

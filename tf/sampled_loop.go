@@ -10,7 +10,7 @@ func (l Loop) sample(call string, p *plan) error {
 	if l.Hold != ZeroOrderHold && l.Hold != FirstOrderHold {
 		return badArgument(call, "Hold", "%v is no hold that a loop can have", l.Hold)
 	}
-	computation := seconds(l.ComputationDelay)
+	computation := delayOf(l.ComputationDelay)
 	immediate := computation.zero() && l.Hold == ZeroOrderHold // a held load acts as the effort does
 	held := func(g Function, delay deadTime, how Method, name string) (Function, error) {
 		if !g.isProper() {
