@@ -183,7 +183,7 @@ func modulus(x, y float64) float64 {
 		return x
 	}
 	t := y / x
-	return x * math.Sqrt(1+float64(t*t))
+	return float64(x * math.Sqrt(1+float64(t*t)))
 }
 
 // negligible says when a point beside which another stands that much farther away does not

@@ -107,8 +107,8 @@ func (k *Kernel) Start(attempt int) {
 // corners of the polygon make, from the given power on: the other terms are smaller there.
 func (k *Kernel) startQuadratic(power int) bool {
 	lead := 1 / k.c[power+2]
-	half := -0.5 * k.c[power+1] * lead
-	product := k.c[power] * lead
+	half := float64(-0.5 * k.c[power+1] * lead)
+	product := float64(k.c[power] * lead)
 	switch discriminant := float64(half*half) - product; {
 	case discriminant < 0:
 		k.addPair(half, math.Sqrt(-discriminant))
