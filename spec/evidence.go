@@ -204,9 +204,8 @@ const (
 )
 
 // trajectory returns a step response as the search sees it, traced until the envelope is
-// below small (a fraction of the sum of the modes) and at least until the time given. nil
-// means that the path has an impulse.
-func (e *Evidence) trajectory(which int, until, small float64) (*signal, error) {
+// below small, a fraction of the sum of the modes. nil means that the path has an impulse.
+func (e *Evidence) trajectory(which int, small float64) (*signal, error) {
 	if !e.m.rational() {
 		return nil, &tf.UnsupportedError{Call: "spec", What: "recovery from a load, integral criteria and comparison with second order for loops with dead time"}
 	}
@@ -242,8 +241,8 @@ func (e *Evidence) trajectory(which int, until, small float64) (*signal, error) 
 		e.signals[which] = newSignal(c, first, poles)
 	}
 	s := e.signals[which]
-	if s != nil && (len(s.t) == 0 || s.horizon < until || s.tail > small*s.scale) {
-		s.trace(until, small*s.scale, maxSteps)
+	if s != nil && (len(s.t) == 0 || s.tail > small*s.scale) {
+		s.trace(0, small*s.scale, maxSteps)
 	}
 	return s, nil
 }

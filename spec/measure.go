@@ -346,7 +346,7 @@ func measureLoadPeak(ctx context.Context, e *Evidence, _ *limited) (measured, er
 }
 
 func measureLoadRecovery(_ context.Context, e *Evidence, r *limited) (measured, error) {
-	s, err := e.trajectory(loadToOutput, 0, 1e-9)
+	s, err := e.trajectory(loadToOutput, 1e-9)
 	if err != nil {
 		return measured{}, err
 	}
@@ -360,7 +360,7 @@ func measureLoadRecovery(_ context.Context, e *Evidence, r *limited) (measured, 
 // integral measures ∫tⁿ·(…) dt of the error.
 func integral(of func(s *signal, n int) float64, n int) measure {
 	return func(_ context.Context, e *Evidence, _ *limited) (measured, error) {
-		s, err := e.trajectory(toOutput, 0, 1e-12)
+		s, err := e.trajectory(toOutput, 1e-12)
 		if err != nil {
 			return measured{}, err
 		}

@@ -131,7 +131,7 @@ func TestVaryController(t *testing.T) {
 
 // The windows of several variants are those gains that every one of them accepts.
 func TestWindowsOfVariants(t *testing.T) {
-	sheet := Sheet{OvershootAtMost(0.25), SettlesWithin(9, 0.02)}
+	sheet := Sheet{OvershootAtMost(0.4), SettlesWithin(15, 0.05)}
 	var loops []tf.Loop
 	joint := []GainWindow{{Hi: End{Gain: math.Inf(1)}}}
 	for _, a := range []float64{3, 4, 5} {

@@ -61,7 +61,7 @@ func (e *Evidence) resembles() (Resemblance, error) {
 		r.Sentence = "The closed loop is not stable; no response to compare."
 		return r, nil
 	}
-	s, err := e.trajectory(toOutput, 0, 1e-6)
+	s, err := e.trajectory(toOutput, 1e-6)
 	if err != nil {
 		return r, err
 	}

@@ -89,9 +89,8 @@ const (
 	deadBelow = 1e-15
 )
 
-// trace samples the signal until the time given, and on until the envelope has fallen to
-// small, and finds the extrema. It gives up limit samples after the time given; tail then
-// tells how much may still come.
+// trace samples the signal until the envelope has fallen to small and finds the extrema. It
+// gives up limit samples after the time given; tail then tells how much may still come.
 func (s *signal) trace(until, small float64, limit int) {
 	m := s.modes
 	n := len(m.re)
@@ -131,16 +130,11 @@ func (s *signal) trace(until, small float64, limit int) {
 		if t < until {
 			late = len(s.t)
 		}
-		if t >= until && (rest <= small || rate == 0 || len(s.t) >= late+limit) || len(s.t) >= maxSteps {
+		if rest <= small || rate == 0 || t >= until && len(s.t) >= late+limit || len(s.t) >= maxSteps {
 			s.horizon, s.tail = t, rest
 			s.add(t, zr, zi, &previous)
 			s.swing = s.variationFrom(t)
 			return
-		}
-		if rate == 0 { // nothing moves any more, but the time asked for is ahead
-			s.add(t, zr, zi, &previous)
-			t = until
-			continue
 		}
 		dt := stepAngle / rate
 		for i := range n {
@@ -324,6 +318,14 @@ func (s *signal) largest(sign, from, to float64) (value, where, above float64) {
 		if x := sign * s.estimate(u); x > value && u.t >= from && u.t <= to {
 			value, where = x, u.t
 		}
+	}
+	if from > s.horizon && from > 0 && math.IsInf(to, 1) {
+		// Nothing was sampled here: either all has died down, or the signal has swung so often
+		// that its envelope tells its extrema.
+		if top := sign*s.final + s.envelope(from); top > value {
+			value, where = top, from*(1+1e-6)
+		}
+		return value, where, value
 	}
 	above = value
 	if to > s.horizon {

@@ -347,7 +347,7 @@ const (
 	reachUp     = 1e3  // above them
 	furtherDown = 1e9  // beyond that: how far the verdict is sampled
 	furtherUp   = 1e3
-	edgeOffset  = 1e-5 // of a gap: how near to an end of stability the search begins
+	edgeOffset  = 1e-9 // of a gap: how near to an end of stability the search begins
 )
 
 // search replaces the windows of g by the parts of them that the seeker accepts.

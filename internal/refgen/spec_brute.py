@@ -15,10 +15,17 @@ import sys
 import time
 
 import numpy as np
-from mpmath import mp, mpf, mpc, polyval, pi, sqrt, arg
+from mpmath import mp, mpf, mpc, pi, sqrt, arg
 
 mp.dps = 40
 X, XC = np.longdouble, np.clongdouble
+
+
+def horner(p, x):
+    y = 0 * x
+    for c in p:
+        y = y * x + c
+    return y
 
 
 def multiply(a, b):
@@ -67,8 +74,8 @@ class Closed:
         for z in np.roots(np.array([float(x) for x in self.P])):
             z = mpc(complex(z))
             for _ in range(7):
-                z -= polyval(self.P, z) / polyval(dP, z)
-            if abs(polyval(self.P, z)) > mpf(10) ** -30 * sum(abs(c) * abs(z) ** (len(self.P) - 1 - i) for i, c in enumerate(self.P)):
+                z -= horner(self.P, z) / horner(dP, z)
+            if abs(horner(self.P, z)) > mpf(10) ** -30 * sum(abs(c) * abs(z) ** (len(self.P) - 1 - i) for i, c in enumerate(self.P)):
                 raise ValueError("root not found")
             self.poles.append(z)
         for i, p in enumerate(self.poles):
@@ -84,7 +91,7 @@ class Closed:
             for j, q in enumerate(self.poles):
                 if j != i:
                     d *= p - q
-            out.append((polyval(numerator, p) / d, p))
+            out.append((horner(numerator, p) / d, p))
         final = numerator[-1] / self.P[-1]
         return final, out
 
@@ -187,8 +194,8 @@ def margins(c):
     n64 = np.array([float(x) for x in N]); d64 = np.array([float(x) for x in D])
     w = np.exp(np.linspace(math.log(1e-3), math.log(1e3), 6001))
     s = 1j * w
-    L = float(k) * np.polyval(n64, s) / np.polyval(d64, s)
-    at = lambda x: k * polyval(N, mpc(0, x)) / polyval(D, mpc(0, x))
+    L = float(k) * horner(n64, s) / horner(d64, s)
+    at = lambda x: k * horner(N, mpc(0, x)) / horner(D, mpc(0, x))
     f = {}
     gm = None
     im = L.imag
