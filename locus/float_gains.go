@@ -6,7 +6,7 @@ import (
 	"github.com/polewright/polewright/poly"
 )
 
-// Windows of half-planes and sectors in float64: the same steps as in exact arithmetic, each with
+// Windows of half-planes, sectors and discs in float64: the same steps as in exact arithmetic, each with
 // a bound on its error. What is returned is proven; where a bound is not good enough for a proof
 // or for the accuracy of an end, the answer is left to exact arithmetic.
 
@@ -28,10 +28,11 @@ type floatContact struct {
 
 // A floatFamily is the family with float64 coefficients, by power.
 type floatFamily struct {
-	a, b    []float64
-	rounded float64 // by how much coefficients are rounded at most, relative: 0 or unitRoundoff
-	room    []float64
-	buf     [8*(floatDegree+1) + 8]float64
+	fixed, scaled poly.Poly
+	a, b          []float64
+	rounded       float64 // by how much coefficients are rounded at most, relative: 0 or unitRoundoff
+	room          []float64
+	buf           [8*(floatDegree+1) + 8]float64
 }
 
 func (w *floatFamily) take(n int) []float64 {
@@ -54,13 +55,13 @@ func (w *floatFamily) load(p poly.Poly, into []float64) bool {
 	return true
 }
 
-// windowsFloat returns the windows of a half-plane or sector, and false if it cannot prove them.
+// windowsFloat returns the windows of a half-plane, sector or disc, and false if it cannot prove them.
 func (f Family) windowsFloat(r Region) ([]Window, bool) {
 	n, m := f.fixed.Degree(), f.scaled.Degree()
 	if n < 0 || m < 0 || max(n, m) < 1 || max(n, m) > floatDegree {
 		return nil, false
 	}
-	var w floatFamily
+	w := floatFamily{fixed: f.fixed, scaled: f.scaled}
 	w.room = w.buf[:]
 	w.a, w.b = w.take(n+1), w.take(m+1)
 	if !w.load(f.fixed, w.a) || !w.load(f.scaled, w.b) {
@@ -74,6 +75,10 @@ func (f Family) windowsFloat(r Region) ([]Window, bool) {
 		return w.leftOf(r.sigma)
 	case damped:
 		return w.damped(r.zeta)
+	case within:
+		if !r.outside {
+			return w.within(r.radius)
+		}
 	}
 	return nil, false
 }
@@ -105,33 +110,94 @@ func (w *floatFamily) leftOf(sigma float64) ([]Window, bool) {
 			return nil, false
 		}
 	}
-	a, b := w.take(n+1), w.take(m+1)
-	majorA, majorB := w.take(n+1), w.take(m+1)
-	copy(a, w.a)
-	copy(b, w.b)
-	shift(a, majorA, sigma)
-	shift(b, majorB, sigma)
-	relative := float64(2*max(n, m)+3) * unitRoundoff // of a and b in relation to their majorants
+	h := floatHalfPlane{
+		a: w.take(n + 1), b: w.take(m + 1), majorA: w.take(n + 1), majorB: w.take(m + 1),
+		relative: float64(2*max(n, m)+3) * unitRoundoff,
+		sigma:    sigma,
+	}
+	copy(h.a, w.a)
+	copy(h.b, w.b)
+	shift(h.a, h.majorA, sigma)
+	shift(h.b, h.majorB, sigma)
+	h.low = [2]float64{h.a[0], h.b[0]}
+	if sigma != 0 {
+		h.low = [2]float64{w.fixed.At(sigma), w.scaled.At(sigma)}
+		h.clearZeros()
+	}
+	return w.alongLine(&h)
+}
 
+// A floatHalfPlane is the question which gains have all roots of a + k·b in Re s < 0: for a shifted
+// half-plane, or for a disc that is mapped to it.
+type floatHalfPlane struct {
+	a, b, majorA, majorB []float64 // each coefficient is within relative·major of the exact one
+	relative             float64
+	low                  [2]float64 // the values of the two at the real point ω = 0, with full accuracy; 0 if exactly 0
+	sigma                float64    // of the half-plane
+	radius               float64    // of the disc; 0 for a half-plane
+	high                 [2]float64 // as low, where ω is infinite, which is a point of the circle
+}
+
+// clearZeros makes exact the zeros that are known to be so.
+func (h *floatHalfPlane) clearZeros() {
+	if h.low[0] == 0 {
+		h.a[0], h.majorA[0] = 0, 0
+	}
+	if h.low[1] == 0 {
+		h.b[0], h.majorB[0] = 0, 0
+	}
+}
+
+// realContact adds the contact at a real point of the boundary, where A and B have the given values.
+func realContact(list []floatContact, values [2]float64, grows int) ([]floatContact, bool) {
+	switch a, b := values[0], values[1]; {
+	case b == 0:
+		return list, a != 0 // otherwise a common root
+	case a == 0:
+		return append(list, floatContact{grows: grows}), true
+	default:
+		k := -a / b
+		return append(list, floatContact{k, 0x1p-47 * math.Abs(k), grows}), true
+	}
+}
+
+// point returns the point of the boundary for ω > 0.
+func (h *floatHalfPlane) point(omega float64) floatPoint {
+	if h.radius == 0 {
+		return floatPoint{re: double{h: h.sigma}, im: double{h: omega}, dIm: 1}
+	}
+	// r·(1 + jω)/(1 - jω) = r·(1 - ω² + 2jω)/(1 + ω²)
+	square := productOf(omega, omega)
+	below := square.plusFloat(1)
+	radius := double{h: h.radius}
+	re := square.minus().plusFloat(1).over(below).times(radius)
+	im := double{h: 2 * omega}.over(below).times(radius)
+	speed := 2 / below.h
+	return floatPoint{re, im, -im.h * speed, re.h * speed, 1.01 * math.Sqrt(below.h) / h.radius}
+}
+
+// alongLine returns the windows.
+func (w *floatFamily) alongLine(h *floatHalfPlane) ([]Window, bool) {
+	n, m := len(h.a)-1, len(h.b)-1
 	// w(u) = im_A·re_B - re_A·im_B, u = ω²; aᵢ and bⱼ go with (jω)^(i+j), i odd and j even or the
 	// other way round.
 	var room [2 * (floatRoots + 1)]float64
 	top := (n + m - 1) / 2
 	c, e := room[:top+1], room[floatRoots+1:floatRoots+top+2]
-	for i, x := range a {
+	for i, x := range h.a {
 		for j := 1 - i&1; j <= m; j += 2 {
 			// (jω)^i·conj (jω)^j = j^(i-j)·ω^(i+j); its imaginary part has the sign of
 			// sin((i-j)·π/2).
 			k := (i + j) >> 1
-			if p := float64(x * b[j]); (i-j)&3 == 1 {
+			if p := float64(x * h.b[j]); (i-j)&3 == 1 {
 				c[k] += p
 			} else {
 				c[k] -= p
 			}
-			e[k] += majorA[i] * majorB[j]
+			e[k] += h.majorA[i] * h.majorB[j]
 		}
 	}
-	factor := (2*relative + float64(max(n, m)+4)*unitRoundoff) * (1 + 0x1p-30)
+	factor := (2*h.relative + float64(max(n, m)+4)*unitRoundoff) * (1 + 0x1p-30)
 	for k := range e {
 		e[k] *= factor
 	}
@@ -150,37 +216,107 @@ func (w *floatFamily) leftOf(sigma float64) ([]Window, bool) {
 		return nil, false
 	}
 	var contactRoom [floatRoots + 4]floatContact
-	list := contactRoom[:0]
-	// ω = 0
-	switch a0, b0 := signOf(a[0], relative*majorA[0]), signOf(b[0], relative*majorB[0]); {
-	case majorB[0] == 0:
-		if majorA[0] == 0 {
-			return nil, false // a common root
-		}
-	case majorA[0] == 0:
-		list = append(list, floatContact{grows: signOf(c[0], 0)})
-	case a0 == 0 || b0 == 0:
+	lowest, highest := signOf(c[0], 0), signOf(c[len(c)-1], 0)
+	list, ok := realContact(contactRoom[:0], h.low, lowest)
+	if !ok {
 		return nil, false
-	default:
-		k := -a[0] / b[0]
-		list = append(list, floatContact{k, math.Abs(k) * quotientError(relative*majorA[0], a[0], relative*majorB[0], b[0]), signOf(c[0], 0)})
 	}
 	for _, r := range s.found[:s.count] {
 		omega := math.Sqrt(r.x)
-		at := floatPoint{double{h: sigma}, double{h: omega}, 0, 1}
-		k, err, ok := w.gain(at, 0.51*r.d/omega+2*unitRoundoff*omega)
+		d := 0.51*r.d/omega + 2*unitRoundoff*omega
+		k, err, ok := w.gain(h.point(omega), d)
 		if !ok {
 			return nil, false
 		}
 		list = append(list, floatContact{k, err, pairOf(r.rising)})
 	}
-	if list, ok := w.degreeDrop(list, signOf(c[len(c)-1], 0)); ok {
-		return w.assemble(list, func(k float64) (bool, bool) {
-			f, ef := w.combine(a, majorA, b, majorB, k, relative)
-			return leftByRouth(f, ef)
-		})
+	if h.radius == 0 {
+		list, ok = w.degreeDrop(list, highest)
+	} else {
+		// A root passes through infinity outside the disc.
+		list, ok = realContact(list, h.high, -highest)
 	}
-	return nil, false
+	if !ok {
+		return nil, false
+	}
+	return w.assemble(list, func(k float64) (bool, bool) {
+		f, ef := w.combine(h.a, h.majorA, h.b, h.majorB, k, h.relative)
+		return leftByRouth(f, ef)
+	})
+}
+
+// within returns the windows of |s| < radius: with s = radius·(1 + w)/(1 - w) the disc becomes
+// Re w < 0, and p(s)·(1 - w)ⁿ a polynomial of the common degree n.
+func (w *floatFamily) within(radius float64) ([]Window, bool) {
+	n := max(len(w.a), len(w.b)) - 1
+	if !(radius > 0x1p-10 && radius < 0x1p10) {
+		if e := math.Ilogb(radius) * n; e < -floatSize || e > floatSize {
+			return nil, false
+		}
+	}
+	h := floatHalfPlane{
+		a: w.take(n + 1), b: w.take(n + 1), majorA: w.take(n + 1), majorB: w.take(n + 1),
+		// At most 3n+6 roundings on the way of each term.
+		relative: float64(3*n+10) * unitRoundoff,
+		radius:   radius,
+		low:      [2]float64{w.fixed.At(radius), w.scaled.At(radius)},
+		high:     [2]float64{w.fixed.At(-radius), w.scaled.At(-radius)},
+	}
+	ontoHalfPlane(w.a, radius, h.a, h.majorA)
+	ontoHalfPlane(w.b, radius, h.b, h.majorB)
+	h.clearZeros()
+	// A multiple pole at the real point, of a double integrator, is a multiple zero at w = 0.
+	for _, p := range [...]struct {
+		p        poly.Poly
+		c, major []float64
+	}{{w.fixed, h.a, h.majorA}, {w.scaled, h.b, h.majorB}} {
+		for i := 1; i <= n && p.c[i-1] == 0 && p.major[i-1] == 0; i++ {
+			p.p = p.p.Derivative()
+			if p.p.At(radius) != 0 {
+				break
+			}
+			p.c[i], p.major[i] = 0, 0
+		}
+	}
+	if h.high[0] == 0 {
+		h.a[n], h.majorA[n] = 0, 0
+	}
+	if h.high[1] == 0 {
+		h.b[n], h.majorB[n] = 0, 0
+	}
+	return w.alongLine(&h)
+}
+
+// ontoHalfPlane sets c to the coefficients of Σ p[i]·rⁱ·(1 + w)ⁱ·(1 - w)^(n-i), by Horner's rule,
+// and major to those with all terms positive: Σ|p[i]|·rⁱ times the binomials.
+func ontoHalfPlane(p []float64, r float64, c, major []float64) {
+	n := len(c) - 1
+	var terms [floatDegree + 1]float64
+	power, sum := 1.0, 0.0
+	for i, x := range p {
+		terms[i] = x * power
+		sum += math.Abs(terms[i])
+		power *= r
+	}
+	var minus [floatDegree + 1]float64 // (1 - w)^(n-i)
+	minus[0] = 1
+	clear(c)
+	for i := n; i >= 0; i-- {
+		for j := n - i; j > 0; j-- {
+			c[j] += c[j-1]
+		}
+		for j := 0; j <= n-i; j++ {
+			c[j] += float64(terms[i] * minus[j])
+		}
+		for j := n - i + 1; j > 0 && i > 0; j-- {
+			minus[j] -= minus[j-1]
+		}
+	}
+	binomial := 1.0
+	for i := range major {
+		major[i] = sum * binomial * (1 + 0x1p-40)
+		binomial = binomial * float64(n-i) / float64(i+1)
+	}
 }
 
 func pairOf(rising bool) int {
@@ -263,7 +399,7 @@ func (w *floatFamily) damped(zeta float64) ([]Window, bool) {
 	root := double{h: math.Sqrt(square.h)}
 	root.l = square.plus(productOf(-root.h, root.h)).float() / (2 * root.h)
 	for _, r := range s.found[:s.count] {
-		at := floatPoint{productOf(-zeta, r.x), root.times(double{h: r.x}), -zeta, root.h}
+		at := floatPoint{re: productOf(-zeta, r.x), im: root.times(double{h: r.x}), dRe: -zeta, dIm: root.h}
 		k, err, ok := w.gain(at, r.d)
 		if !ok {
 			return nil, false
@@ -326,6 +462,7 @@ func (w *floatFamily) combine(a, majorA, b, majorB []float64, k, relative float6
 type floatPoint struct {
 	re, im   double
 	dRe, dIm float64
+	bend     float64 // |d²s/dx²|/|ds/dx|² nearby, at most; 0 on a straight line
 }
 
 // gain returns the gain -A/B at the point of the locus that is on the boundary within d of x, where
@@ -363,7 +500,7 @@ func (w *floatFamily) gain(p floatPoint, d float64) (k, err float64, ok bool) {
 	// |f″| within reach: |B| ≥ modB - reach·sizesB.first there.
 	q1, q2 := sizesB.first/modB, sizesB.second/modB
 	p1, p2 := sizes.first/modB, sizes.second/modB
-	curvature := (p2 + 2*p1*q1 + (size+reach*p1)*(q2+2*q1*q1)) * 1.01
+	curvature := (p2 + 2*p1*q1 + (size+reach*p1)*(q2+2*q1*q1) + p.bend*(p1+size*q1)) * 1.01
 	// Errors of the float64 derivative, with the first order of everything in it.
 	rough := 16 * n * unitRoundoff * (p1 + size*q1 + (sizes.value/modB+size*sizesB.value/modB)*q1)
 	slant := math.Abs(gRe / gIm)

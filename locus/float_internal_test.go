@@ -66,6 +66,53 @@ func TestFloatAgainstExact(t *testing.T) {
 	}
 }
 
+// Sampled plants: poles inside the circle and at 1, zeros at -1 among others.
+func TestFloatDiscs(t *testing.T) {
+	rng := rand.New(rand.NewPCG(13, 14))
+	tried, answered := 0, 0
+	for range 150 {
+		factor := func(degree int, special float64) poly.Poly {
+			p := poly.New(1)
+			for p.Degree() < degree {
+				switch x := rng.Float64()*1.9 - 0.95; {
+				case rng.IntN(3) == 0:
+					p = roundedPoly(p.Mul(poly.New(1, -special)))
+				case rng.IntN(2) == 0 && p.Degree()+2 <= degree:
+					p = roundedPoly(p.Mul(poly.New(1, -x, x*x*0.9)))
+				default:
+					p = roundedPoly(p.Mul(poly.New(1, -x)))
+				}
+			}
+			return p
+		}
+		n := 2 + rng.IntN(7)
+		f, err := Parameter(factor(n, 1), factor(rng.IntN(n+1), -1))
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, r := range []Region{Within(1), Within(0.9), Within(2)} {
+			tried++
+			got, ok := f.windowsFloat(r)
+			if !ok {
+				continue
+			}
+			answered++
+			want, err := f.reduced().windows("", constraintsFor(t, r))
+			if err != nil {
+				t.Fatal(err)
+			}
+			same := len(got) == len(want)
+			for j := range got {
+				same = same && nearEnd(got[j].Lo, want[j].Lo) && nearEnd(got[j].Hi, want[j].Hi)
+			}
+			if !same {
+				t.Errorf("%v + k·%v, %v: %v, exactly %v", f.fixed, f.scaled, r, got, want)
+			}
+		}
+	}
+	t.Logf("%d of %d", answered, tried)
+}
+
 func constraintsFor(t testing.TB, r Region) []constraint {
 	t.Helper()
 	list, err := constraintsOf("", r)

@@ -54,7 +54,7 @@ func FuzzWindows(f *testing.F) {
 		if !ok || !(zeta > 1e-3 && zeta < 0.999) || !(math.Abs(sigma) < 100) || sigma != 0 && math.Abs(sigma) < 1e-3 {
 			return
 		}
-		for _, r := range []Region{LeftOf(sigma), Damped(zeta)} {
+		for _, r := range []Region{LeftOf(sigma), Damped(zeta), Within(1), Within(2 * zeta)} {
 			got, claimed := family.windowsFloat(r)
 			want, err := family.reduced().windows("", constraintsFor(t, r))
 			if err != nil {

@@ -47,6 +47,10 @@ func simpleRegions(call string, r Region) ([]Region, error) {
 		if s.zeta > 0 && s.zeta < 1 {
 			return []Region{r}, nil
 		}
+	case within:
+		if s.radius > 0 && finite(s.radius) {
+			return []Region{r}, nil
+		}
 	case all:
 		var list []Region
 		for _, one := range s {
