@@ -65,6 +65,7 @@ type Design struct {
 	InUse      *Use          // with the option of that name
 	Reason     string        // where no gain is recommended: why, in a sentence
 	Preference string        // what the recommendation goes by, in words
+	Warnings   []string      // in sentences: requirements that say little of these loops, windows that were only estimated
 }
 
 // A Miss is the gain that misses a sheet least: with the greatest smallest slack.
@@ -145,6 +146,7 @@ func (s Sheet) Design(ctx context.Context, loops []tf.Loop, opt ...Option) (Desi
 			return Design{}, err
 		}
 	}
+	d.Warnings = h.warnings(d, found)
 	d.Gains = h.mirrored(found)
 	if d.Feasible {
 		d.Window, _ = d.Gains.Find(d.Gain)
@@ -161,6 +163,38 @@ func (s Sheet) Design(ctx context.Context, loops []tf.Loop, opt ...Option) (Desi
 		d.InUse = &Use{Place: d.Gains.Place(set.inUse), Reports: j.reports, Refused: j.refused}
 	}
 	return d, nil
+}
+
+// warnings says what a reader of the design should know.
+func (h *hunt) warnings(d Design, g Gains) []string {
+	var out []string
+	damping := ""
+	for _, r := range h.sheet {
+		if l, ok := r.(*limited); ok && l.kind == dampingRatio {
+			damping = "The sheet asks for a damping ratio"
+		}
+	}
+	for i, r := range d.Resembles {
+		if damping == "" || r.Verdict != poly.Fails {
+			continue
+		}
+		loop := ""
+		if len(d.Resembles) > 1 {
+			loop = fmt.Sprintf(" %d", i)
+		}
+		out = append(out, damping+", which says little of loop"+loop+" at the recommended gain. "+r.Sentence)
+	}
+	if g.Estimated {
+		out = append(out, "The windows rest on samples of a figure; a window narrower than the samples may have been missed.")
+	}
+	for _, w := range g.Windows {
+		for _, e := range [2]End{w.Lo, w.Hi} {
+			if !e.Proven && e.Gain != 0 && !math.IsInf(e.Gain, 0) {
+				out = append(out, fmt.Sprintf("At gain %.8g the answer gave out: the window may go on.", h.signed(e.Gain)))
+			}
+		}
+	}
+	return out
 }
 
 func (h *hunt) signed(k float64) float64 {

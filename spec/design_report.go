@@ -45,6 +45,9 @@ func (d Design) String() string {
 			fmt.Fprintf(&b, "Nearest miss: gain %.8g, slack %+.3g by %s\n", d.Nearest.Gain, d.Nearest.Slack, d.Nearest.By.String())
 		}
 	}
+	for _, w := range d.Warnings {
+		b.WriteString("Note: " + w + "\n")
+	}
 	if d.InUse != nil {
 		b.WriteString("In use: " + d.InUse.Place.String())
 		if len(d.InUse.Refused) > 0 {
@@ -237,6 +240,7 @@ func (d Design) MarshalJSON() ([]byte, error) {
 		Conflict   []string      `json:"conflict,omitempty"`
 		Nearest    *miss         `json:"nearest miss,omitempty"`
 		InUse      *use          `json:"in use,omitempty"`
+		Warnings   []string      `json:"warnings,omitempty"`
 	}
 	holds := "undecided"
 	switch d.Rule.Holds {
@@ -247,7 +251,7 @@ func (d Design) MarshalJSON() ([]byte, error) {
 	}
 	o := document{
 		Feasible: d.Feasible, Reason: d.Reason, Gains: d.Gains, Gain: jsonNumber(d.Gain), Unbounded: d.Unbounded,
-		Preference: d.Preference, Slack: jsonNumber(d.Slack), Reports: d.Reports, Resembles: d.Resembles, OtherSign: d.OtherSign,
+		Preference: d.Preference, Slack: jsonNumber(d.Slack), Reports: d.Reports, Resembles: d.Resembles, OtherSign: d.OtherSign, Warnings: d.Warnings,
 		Rule: rule{holds, jsonWindows(d.Rule.Windows), d.Rule.OnTheLine.json(), d.Rule.InTheMiddle.json(), d.Rule.Map.Assumptions, d.Rule.Sentence},
 	}
 	if d.Feasible && !math.IsInf(d.Slack, 0) {

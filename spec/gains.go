@@ -32,7 +32,7 @@ type GainWindow struct{ Lo, Hi End }
 type End struct {
 	Gain   float64 // ±Inf: unbounded
 	Closed bool    // the end belongs to the window: a limit met with equality is met; an end of stability is open
-	Proven bool    // something ends the window here; false: 0 or ±Inf by search, or searched up to here
+	Proven bool    // the window ends here, or is proven to have no end (0, ±Inf); false: no end was found up to Gains.SearchedFrom or SearchedTo, or the answer gave out here
 	By     []Cause // what ends the window; empty at 0 and where nothing does
 }
 

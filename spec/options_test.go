@@ -355,3 +355,29 @@ func TestFurtherRequirements(t *testing.T) {
 		t.Errorf("recovery after %.17g s", got)
 	}
 }
+
+// A sheet that speaks of damping for a loop where that means little gets told so; ends that
+// nothing was found for are marked.
+func TestDesignWarns(t *testing.T) {
+	slow := []tf.Loop{{Plant: mustFunction(t, []float64{20}, []float64{1, 2.5, 27, 13})}}
+	d, err := Sheet{DampingAtLeast(0.1), RisesWithin(2)}.Design(t.Context(), slow)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !d.Feasible || len(d.Warnings) != 1 || !strings.Contains(d.Warnings[0], "damping ratio") || !strings.Contains(d.String(), d.Warnings[0]) {
+		t.Errorf("%s", d)
+	}
+	g, err := Sheet{RisesWithin(1)}.Windows(t.Context(), []tf.Loop{{Plant: mustFunction(t, []float64{1}, []float64{1, 4, 0})}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if e := g.Windows[0].Hi; !math.IsInf(e.Gain, 1) || e.Proven || len(e.By) != 0 || math.IsInf(g.SearchedTo, 1) {
+		t.Errorf("unbounded by search: %+v, searched to %g", e, g.SearchedTo)
+	}
+	if g, err = (Sheet{PhaseMarginAtLeast(0.5)}).Windows(t.Context(), []tf.Loop{{Plant: mustFunction(t, []float64{1}, []float64{1, 1})}}); err != nil {
+		t.Fatal(err)
+	}
+	if e := g.Windows[0].Hi; !math.IsInf(e.Gain, 1) || !e.Proven {
+		t.Errorf("unbounded by proof: %+v", e)
+	}
+}

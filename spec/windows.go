@@ -201,6 +201,11 @@ func (h *hunt) windows(ctx context.Context, which []int) (Gains, error) {
 			}
 		}
 	}
+	for n := range g.Windows { // what formulas leave open is proven to be open
+		w := &g.Windows[n]
+		w.Lo.Proven = w.Lo.Proven || w.Lo.Gain == 0
+		w.Hi.Proven = w.Hi.Proven || math.IsInf(w.Hi.Gain, 1)
+	}
 	for _, i := range other { // one loop needs figures: all do
 		if at := slices.Index(probed, i); at >= 0 {
 			probed = slices.Delete(probed, at, at+1)
@@ -449,6 +454,8 @@ func (h *hunt) searchWindow(ctx context.Context, g *Gains, s *seeker, w GainWind
 	var out []GainWindow
 	for _, r := range runs {
 		v := w
+		v.Lo.Proven = v.Lo.Proven && lo > 0
+		v.Hi.Proven = v.Hi.Proven && !math.IsInf(hi, 1)
 		if r.lo != nil {
 			v.Lo = End{Gain: r.lo.met.k, Closed: true, Proven: !r.lo.not.unknown, By: s.causes(*r.lo)}
 		}
