@@ -70,7 +70,7 @@ func (p Poly) AtComplex(s complex128) complex128 {
 	if p.err != nil || math.IsNaN(a-a) || math.IsNaN(b-b) {
 		return cmplx.NaN()
 	}
-	if b == 0 {
+	if b == 0 || len(p.c) == 0 {
 		return complex(p.At(a), 0)
 	}
 	if re, im, miss := rootkernel.Value(p.c, p.lo, a, b); p.evaluable() && math.Abs(re)+math.Abs(im) >= 0x1p52*miss {

@@ -14,7 +14,7 @@ import (
 // Whatever a function is, a call returns, in bounded time, with an answer or an error.
 // POLEWRIGHT_RANDOM_CALLS sets how many functions are tried.
 func TestNoCallPanicsOrHangs(t *testing.T) {
-	n := 12
+	n := 8
 	if s := os.Getenv("POLEWRIGHT_RANDOM_CALLS"); s != "" {
 		var err error
 		if n, err = strconv.Atoi(s); err != nil {
