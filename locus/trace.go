@@ -205,25 +205,33 @@ func (t *tracker) draw(l *Locus) {
 		}
 	}
 	size := t.size()
-	far := 8 * size
+	look := view{tolerance: t.accuracy * size, longest: 0.06 * size, far: 8 * size}
 	// Seldom the frame turns out much smaller or larger than poles and zeros let expect.
-	for range 3 {
-		t.place(l, size, far)
+	for range 4 {
+		t.place(l, look)
 		l.makeFrame()
 		diagonal := math.Ldexp(l.frame.Diagonal(), -t.plane.stretch)
 		reach := math.Ldexp(l.frame.reach(), -t.plane.stretch)
-		if size <= diagonal && far >= 1.2*reach {
+		fine := max(min(size, diagonal), diagonal/30)
+		next := view{tolerance: t.accuracy * fine, longest: 0.06 * max(fine, 0.5*diagonal), far: max(8*fine, 1.5*reach)}
+		if look.tolerance <= 1.5*next.tolerance && look.longest <= 2*next.longest && look.longest >= 0.1*next.longest && look.far >= 0.8*next.far && look.far <= 30*next.far {
 			break
 		}
-		size, far = min(size, diagonal), max(far, 1.5*reach)
+		look = next
 	}
 }
 
-// place places the points of all branches, for a figure of a given size that reaches so far from
-// the origin, in the plane.
-func (t *tracker) place(l *Locus, size, far float64) {
+// A view tells how finely points are placed, in the plane.
+type view struct {
+	tolerance float64 // the farthest that the curve may be from the polyline
+	longest   float64 // the longest piece of line in view
+	far       float64 // what is farther from the origin is out of view
+}
+
+// place places the points of all branches.
+func (t *tracker) place(l *Locus, look view) {
 	points := make([][]point, len(t.chains))
-	s := shaper{tracker: t, tolerance: t.accuracy * size, longest: 0.06 * size, far: far}
+	s := shaper{tracker: t, view: look}
 	for i := range t.chains {
 		points[i] = s.points(&t.chains[i])
 	}

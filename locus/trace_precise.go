@@ -75,24 +75,31 @@ func (p *plane) preciseGain(x, y float64) double {
 	return a.re.times(b.re).plus(a.im.times(b.im)).over(norm).minus()
 }
 
-// precisely replaces F and dF/dx of a value at x + jy by what twice the precision gives.
+// precisely replaces what a value holds at x + jy by what twice the precision gives.
 func (p *plane) precisely(x, y, κ float64, v *value) {
-	var f, d complexDouble
+	var f, d, b complexDouble
+	r := math.Hypot(x, y) * (1 + 4*unitRoundoff)
+	scale, scaleB := 0.0, 0.0
 	for i := p.n; i >= 0; i-- {
+		c := coefficient(p.b, p.tailB, i)
 		d = d.timesFloat(x, y).plus(f)
 		f = f.timesFloat(x, y)
-		f.re = f.re.plus(coefficient(p.b, p.tailB, i).timesFloat(κ).plus(coefficient(p.a, p.tailA, i)))
-	}
-	v.re, v.im, v.dRe, v.dIm = f.re.h, f.im.h, d.re.h, d.im.h
-	scale := v.modulusMax
-	if p.major != nil {
-		r := math.Hypot(x, y) * (1 + 4*unitRoundoff)
-		scale = 0
-		for i := p.n; i >= 0; i-- {
-			scale = scale*r + p.major[i] + math.Abs(p.a[i]) + math.Abs(κ*p.b[i])
+		f.re = f.re.plus(c.timesFloat(κ).plus(coefficient(p.a, p.tailA, i)))
+		b = b.timesFloat(x, y)
+		b.re = b.re.plus(c)
+		size := math.Abs(c.h)
+		scaleB = scaleB*r + size
+		size = math.Abs(p.a[i]) + math.Abs(κ)*size
+		if p.major != nil {
+			size += p.major[i]
 		}
+		scale = scale*r + size
 	}
-	v.errF = 20*float64(p.n+1)*doubleRoundoff*scale + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
+	err := 20 * float64(p.n+1) * doubleRoundoff
+	v.re, v.im, v.dRe, v.dIm = f.re.h, f.im.h, d.re.h, d.im.h
+	v.errF = err*scale + 2*unitRoundoff*(math.Abs(v.re)+math.Abs(v.im)) + minNormal
+	v.bRe, v.bIm = b.re.h, b.im.h
+	v.modulusB = modulus(v.bRe, v.bIm)*(1+8*unitRoundoff) + err*scaleB + minNormal
 }
 
 // preciseTaylor computes the coefficients of a + κ·b and of b about x, rounded at the end.

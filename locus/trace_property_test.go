@@ -6,7 +6,9 @@ import (
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
+	"os"
 	"testing"
+	"time"
 
 	"github.com/polewright/polewright/poly"
 )
@@ -244,4 +246,72 @@ func TestRandomFamilies(t *testing.T) {
 		}
 		sound(t, fmt.Sprint(i, cs), f, span[0], span[1])
 	}
+}
+
+// TestHarderFamilies traces products of repeated, symmetric, clustered and far-apart factors.
+func TestHarderFamilies(t *testing.T) {
+	count := 60
+	if os.Getenv("POLEWRIGHT_LONG") != "" {
+		count = 3000
+	}
+	r := rand.New(rand.NewPCG(5, 17))
+	n := poly.New
+	integer := func(k int) float64 { return float64(r.IntN(2*k+1) - k) }
+	factors := []func() poly.Poly{
+		func() poly.Poly { return n(1, integer(3)) },
+		func() poly.Poly { return n(1, 2, 5) },
+		func() poly.Poly { return n(1, 0, float64(1+r.IntN(4))) },
+		func() poly.Poly { return n(1, 2*integer(2), 4+float64(r.IntN(9))) },
+		func() poly.Poly { return n(1, math.Pow(10, 8*r.Float64()-4)) },
+		func() poly.Poly { w := math.Pow(10, 4*r.Float64()-2); return n(1, 0.02*w, w*w) },
+		func() poly.Poly { return n(1, -0.9-0.1*r.Float64()) },
+		func() poly.Poly { return n(1, 1+1e-6*r.Float64()) },
+		func() poly.Poly { return n(1, 0) },
+	}
+	product := func(most int) poly.Poly {
+		p := n(1)
+		for p.Degree() < most {
+			q := factors[r.IntN(len(factors))]()
+			for range 1 + r.IntN(3)*r.IntN(2) {
+				p = p.Mul(q)
+			}
+			if r.IntN(4) == 0 {
+				break
+			}
+		}
+		return p
+	}
+	open := 0
+	for i := range count {
+		f := Family{fixed: product(1 + r.IntN(12)), scaled: product(r.IntN(9)).Scale(math.Pow(10, 4*r.Float64()-2))}
+		if i%3 == 0 {
+			f.scaled = n(1)
+		}
+		if i%7 == 0 {
+			f.fixed, f.scaled = f.scaled, f.fixed
+		}
+		span := fuzzSpans[r.IntN(len(fuzzSpans))]
+		text := ""
+		for _, p := range []poly.Poly{f.fixed, f.scaled} {
+			text += "["
+			for j := p.Degree(); j >= 0; j-- {
+				text += fmt.Sprint(" ", p.Coefficient(j))
+			}
+			text += "]"
+		}
+		if _, err := f.Trace(span[0], span[1]); err != nil {
+			// Clusters of different roots may be beyond the arithmetic: said, not guessed.
+			var undecided *UnresolvedError
+			if !errors.As(err, &undecided) {
+				t.Errorf("%d%s %v: %v", i, text, span, err)
+			}
+			open++
+			continue
+		}
+		sound(t, fmt.Sprint(i, text), f, span[0], span[1])
+	}
+	if open*20 > count {
+		t.Errorf("%d of %d families undecided", open, count)
+	}
+	t.Logf("%d of %d families undecided", open, count)
 }

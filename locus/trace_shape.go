@@ -9,11 +9,13 @@ import (
 // A shaper places the points of chains so that the polyline keeps to the curve.
 type shaper struct {
 	*tracker
-	tolerance float64 // the farthest that the curve may be from the polyline, in the plane
-	longest   float64 // the longest piece of line in view
-	far       float64 // how far from the origin of the plane a chain that escapes is drawn
-	out       []point // in the plane
+	view
+	out []point // in the plane
 }
+
+// mostPoints ends the refinement of a chain: pictures of very different scales at once cannot
+// have all of them fine.
+const mostPoints = 4000
 
 // points returns the points of a chain in ascending gain.
 func (s *shaper) points(c *chain) []point {
@@ -101,7 +103,7 @@ func (s *shaper) split(c *chain, i int, lo, hi float64, x0, x1, v0, v1 complex12
 		return math.Abs(real(v)*imag(chord)-imag(v)*real(chord)) / length
 	}
 	straight := c.real || (normal(v0)+normal(v1))*(hi-lo)*4/27 <= s.tolerance
-	if straight && (length <= s.longest || s.outside(x0, x1)) || depth > 40 {
+	if straight && (length <= s.longest || s.outside(x0, x1)) || depth > 40 || len(s.out) > mostPoints {
 		return
 	}
 	mid := lo + (hi-lo)/2
@@ -221,7 +223,7 @@ func (s *shaper) inCell(e tip, from, to float64) {
 		mid := (u0 + u1) / 2
 		κ := gain(mid, sign)
 		x, ok := e.at(κ)
-		if !ok || depth > 12 {
+		if !ok || depth > 12 || len(points) > mostPoints {
 			return
 		}
 		chord := x1 - x0

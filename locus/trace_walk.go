@@ -388,7 +388,7 @@ func (t *tracker) correct(r *row, near float64) bool {
 	for range 10 {
 		t.pencil.at(r.x, r.y, &r.v)
 		// Where rounding hides the separation, twice the precision shows it.
-		if d := math.Abs(r.v.dRe) + math.Abs(r.v.dIm); precise || !(r.v.errF*float64(t.plane.n) <= 1e-3*near*d) {
+		if d := math.Abs(r.v.dRe) + math.Abs(r.v.dIm); precise || !(r.v.errF*float64(t.plane.n) <= 1e-3*near*d) || r.v.modulusB > 1.25*(math.Abs(r.v.bRe)+math.Abs(r.v.bIm)) {
 			precise = true
 			t.plane.precisely(r.x, r.y, t.pencil.κ, &r.v)
 		}
