@@ -65,7 +65,7 @@ func newDelayEquation(call string, a, b, f poly.Poly, seconds float64) (*delayEq
 	_, scale := math.Frexp(rate)
 	q.w = math.Ldexp(1, scale)
 	q.period = math.Ldexp(seconds, scale)
-	q.cells = int(max(1, math.Ceil(min(q.period/earlyStep, 2*mostPerPeriod))))
+	q.cells = int(max(1, math.Ceil(min(q.period/2, 2*mostPerPeriod))))
 	if q.cells > mostPerPeriod {
 		return nil, &tf.UnsupportedError{Call: call, What: fmt.Sprintf("dead time in the loop that is more than %d times the fastest time constant", 2*mostPerPeriod)}
 	}
@@ -118,8 +118,9 @@ type march struct {
 	dirac wide     // weight, in scaled time, of an impulse that comes round at the next breaking point
 	rough bool     // the series of a cell has not converged
 
-	xs [][]wide // working storage: series of the states
-	u  []wide
+	xs      [][]wide // working storage: series of the states
+	u       []wide
+	factors []wide // h/(k+1)
 }
 
 func (q *delayEquation) march(in event) *march {
@@ -138,6 +139,10 @@ func (m *march) prepare() {
 		m.xs[i] = make([]wide, delayTerms+1)
 	}
 	m.u = make([]wide, delayTerms)
+	m.factors = make([]wide, delayTerms)
+	for k := range m.factors {
+		m.factors[k] = wide{m.h, 0}.div(wide{float64(k + 1), 0})
+	}
 }
 
 // clone returns a copy that can go on by itself.
@@ -188,7 +193,7 @@ func (m *march) step() (y []wide, dirac wide) {
 		if n > 0 {
 			x1 = m.xs[0][k]
 		}
-		factor := wide{m.h, 0}.div(wide{float64(k + 1), 0})
+		factor := m.factors[k]
 		for i := range n {
 			var d wide
 			if i+1 < n {

@@ -30,8 +30,7 @@ func (k *kernel) errorAt(t float64) float64 {
 	tau := t * k.w
 	switch {
 	case tau < k.earlyEnd:
-		piece := int(tau * (1 / earlyStep))
-		x := (tau - earlyStep*float64(piece)) * (1 / earlyStep)
+		piece, x := k.piece(tau, 0)
 		sum := 0.0
 		c := k.early[piece*earlyTerms:][:earlyTerms]
 		for i := len(c) - 1; i >= 0; i-- {

@@ -49,15 +49,15 @@ type kernel struct {
 	modal
 	w        float64
 	early    []float64 // len(early) = pieces·earlyTerms coefficients of (τ - τᵢ)/h
+	step     float64   // h
 	earlyEnd float64   // scaled; the modes are used from here on
 	leading  int       // the first piece is this power times its polynomial
 	stages   []stage   // if not empty, they and not the modes are used from earlyEnd on
 }
 
 const (
-	earlyStep  = 2.0 // h, scaled
-	earlyTerms = 26  // kept of a piece; (h^k/k!) falls below 2⁻⁵² of the sum
-	maxPieces  = 40
+	earlyTerms   = 26 // kept of a piece; h^k/k! falls below 2⁻⁵² of the sum
+	longestEarly = 80 // scaled
 
 	// modalRounding bounds the rounding of one mode's value relative to its envelope:
 	// exponential and sine are good to a unit in the last place or better and the argument
@@ -238,7 +238,45 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	if n == 0 {
 		return 0, true
 	}
-	shift := earlyTerms + 2 + n/2 // terms of a derivative's series in a step
+	// The longest of five steps with |p|·h ≤ 2, and with so few poles that the polynomials
+	// have terms enough.
+	fastest := 0.0
+	for i := range f.poles {
+		fastest = max(fastest, f.poles[i].at.abs())
+	}
+	size := len(earlySteps) - 1
+	for size > 1 && earlySteps[size]*fastest > 2 {
+		size--
+	}
+	shift := earlyTerms + 2 + n/2
+	for {
+		var verdict early
+		largest, verdict = k.beginWith(f, shift, size)
+		switch {
+		case verdict == shiftTooShort && shift < 3*(earlyTerms+n):
+			shift += 12 + n
+		case verdict == stepTooLong && size > 0:
+			size--
+		default:
+			return largest, verdict == enough
+		}
+	}
+}
+
+// early says how laying the early polynomials has ended.
+type early int8
+
+const (
+	enough        early = iota // the modes can take over
+	notEnough                  // they cannot, but there is no use in going on
+	shiftTooShort              // too few terms in the series that carry the derivatives from one polynomial to the next
+	stepTooLong                // too few terms in the polynomials
+)
+
+// beginWith is begin with one of the steps, and with so many terms in the series that carry
+// the derivatives on.
+func (k *kernel) beginWith(f *transform, shift, size int) (largest float64, verdict early) {
+	n := len(f.den) - 1
 	terms := shift + n
 	var small [128]wide
 	buffer := small[:]
@@ -247,8 +285,9 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	}
 	y, next := buffer[:terms], buffer[terms:2*terms]
 	var smallEarly [8 * earlyTerms]float64
-	early := smallEarly[:0]
-	defer func() { k.early = append([]float64(nil), early...) }()
+	pieces := smallEarly[:0]
+	defer func() { k.early = append([]float64(nil), pieces...) }()
+	k.earlyEnd = 0
 	for i := 0; i < n; i++ { // y⁽ⁱ⁾(0+) by long division
 		var c wide
 		if j := n - 1 - i; j < len(f.num) {
@@ -262,61 +301,90 @@ func (k *kernel) begin(f *transform) (largest float64, ok bool) {
 	}
 	if k.leading == n { // the zero signal
 		k.leading = 0
-		return 0, true
+		return 0, enough
 	}
-	weights := taylorWeights()
-	var smallSizes [24]float64
-	sizes := smallSizes[:]
-	if n > len(sizes) {
-		sizes = make([]float64, n)
+	k.step = earlySteps[size]
+	weights := weightTables[size][:]
+	// A derivative is a sum over den of earlier ones: it loses so much of the largest of them.
+	weight, top := 0.0, 0.0
+	for i := range f.den {
+		weight += math.Abs(f.den[i].hi)
 	}
-	// What is lost of a derivative in a step: the roundings, and the terms left out.
-	lossOfStep := max(0x1p-98, weightTable[shift].hi)
+	left := 0.0 // of the series that carry the derivatives on: what lies beyond their terms
 	for piece := 0; ; piece++ {
-		start := earlyStep * float64(piece)
-		if k.roundingAt(start) <= tolerance*largest {
-			return largest, true
-		}
-		// What is lost of the k-th derivative comes back at most as τ^k/k! of it: the share of
-		// poles near 0. Where poles lie far in the right half-plane the signal grows as well.
-		lost, power := 0.0, lossOfStep
+		start := k.step * float64(piece)
+		// What is lost of the k-th derivative, by rounding and by what is left out, comes back
+		// at most as τ^k/k! of it: the share of poles near 0. Where poles lie far in the right
+		// half-plane the signal grows as well.
+		rounded, without, power := 0.0, 0.0, 1.0
 		for i := range n {
-			sizes[i] = max(sizes[i], math.Abs(y[i].hi))
-			lost += sizes[i] * power
+			top = max(top, math.Abs(y[i].hi))
+			rounded += power
+			without += left * power
 			power *= start / float64(i+1)
 		}
-		if piece == maxPieces || lost > tolerance/32*largest && piece > 0 {
-			return largest, false
+		rounded *= 0x1p-98 * weight * top
+		if piece > 0 && rounded+without > tolerance/32*largest {
+			if without > rounded {
+				return largest, shiftTooShort
+			}
+			return largest, notEnough
+		}
+		if k.roundingAt(start) <= tolerance*largest {
+			return largest, enough
+		}
+		if start >= longestEarly {
+			return largest, notEnough
 		}
 		for i := n; i < terms; i++ {
 			y[i] = dotWide(y[i-n:i], f.den[:n]).neg()
+			top = max(top, math.Abs(y[i].hi))
+			if i >= shift {
+				left = max(left, 2*weights[shift].hi*math.Abs(y[i].hi))
+			}
 		}
 		skip := 0
 		if piece == 0 {
 			skip = k.leading
 		}
 		for i := 0; i < earlyTerms; i++ {
-			early = append(early, y[i+skip].hi*weights[i+skip].hi)
+			pieces = append(pieces, y[i+skip].hi*weights[i+skip].hi)
 		}
-		k.earlyEnd = start + earlyStep
+		k.earlyEnd = start + k.step
+		rest := 0.0 // of the polynomial: the first terms left out
+		for i := earlyTerms + skip; i < earlyTerms+skip+2; i++ {
+			rest += math.Abs(y[i].hi) * weights[i].hi
+		}
 		for i := 0; i < n; i++ { // step on
 			next[i] = dotWide(y[i:i+shift], weights[:shift])
 		}
 		y, next = next, y
 		largest = math.Max(largest, math.Abs(y[0].hi))
+		if rest > 1e-3*tolerance*largest {
+			return largest, stepTooLong
+		}
 	}
 }
 
-// taylorWeights returns h^k/k!.
-func taylorWeights() []wide { return weightTable[:] }
+// earlySteps are the lengths h of the early pieces to choose from, and weightTables their h^k/k!.
+var (
+	earlySteps   = [...]float64{1, 2, 2.5, 3, 3.5}
+	weightTables = func() (t [len(earlySteps)][600]wide) {
+		for q := range t {
+			t[q][0] = wide{1, 0}
+			for i := 1; i < len(t[q]); i++ {
+				t[q][i] = t[q][i-1].mulFloat(earlySteps[q]).div(wide{float64(i), 0})
+			}
+		}
+		return t
+	}()
+)
 
-var weightTable = func() (t [1100]wide) {
-	t[0] = wide{1, 0}
-	for i := 1; i < len(t); i++ {
-		t[i] = t[i-1].mulFloat(earlyStep).div(wide{float64(i), 0})
-	}
-	return t
-}()
+// piece returns the early piece at τ + lo and the fraction of it.
+func (k *kernel) piece(tau, lo float64) (i int, x float64) {
+	i = min(int(tau/k.step), len(k.early)/earlyTerms-1)
+	return i, ((tau - k.step*float64(i)) + lo) / k.step
+}
 
 // roundingAt bounds the rounding of the modal sum at τ and, for a decaying signal, later.
 func (k *modal) roundingAt(tau float64) float64 {
@@ -355,8 +423,7 @@ func (k *kernel) at(t, lo float64) float64 {
 }
 
 func (k *kernel) earlyAt(tau, lo float64) float64 {
-	piece := int(tau * (1 / earlyStep))
-	x := ((tau - earlyStep*float64(piece)) + lo) * (1 / earlyStep)
+	piece, x := k.piece(tau, lo)
 	c := k.early[piece*earlyTerms:][:earlyTerms]
 	y := 0.0
 	for i := len(c) - 1; i >= 0; i-- {

@@ -182,8 +182,7 @@ func abs(z complex128) float64 { return math.Hypot(real(z), imag(z)) }
 
 // earlyNode is node on the Taylor polynomials.
 func (k *kernel) earlyNode(tau float64, n *node) {
-	piece := int(tau * (1 / earlyStep))
-	x := (tau - earlyStep*float64(piece)) * (1 / earlyStep)
+	piece, x := k.piece(tau, 0)
 	c := k.early[piece*earlyTerms:][:earlyTerms]
 	var y, d, s float64
 	for i := len(c) - 1; i >= 0; i-- {
@@ -200,14 +199,15 @@ func (k *kernel) earlyNode(tau float64, n *node) {
 		}
 		y, d, s = p1*x*y, p1*(x*d+r*y), p1*(x*s+2*r*d)+r*(r-1)*p2*y
 	}
-	n.y, n.d, n.c = y, d*(1/earlyStep), s*(1/(earlyStep*earlyStep))
-	n.spread, n.fourth, n.step = math.Inf(1), math.Inf(1), earlyStep/2
+	h := 1 / k.step
+	n.y, n.d, n.c = y, d*h, s*h*h
+	n.spread, n.fourth, n.step = math.Inf(1), math.Inf(1), k.step/2
 }
 
 // earlyFourth bounds |y⁗| between a and b, which lie in one piece.
 func (k *kernel) earlyFourth(a, b float64) float64 {
-	piece := int((a + (b-a)/2) * (1 / earlyStep))
-	x := (b - earlyStep*float64(piece)) * (1 / earlyStep)
+	piece, _ := k.piece(a+(b-a)/2, 0)
+	x := (b - k.step*float64(piece)) / k.step
 	c := k.early[piece*earlyTerms:][:earlyTerms]
 	lead := 0
 	if piece == 0 {
@@ -224,5 +224,6 @@ func (k *kernel) earlyFourth(a, b float64) float64 {
 	if lead > 4 {
 		sum *= math.Pow(x, float64(lead-4))
 	}
-	return sum * (1 / (earlyStep * earlyStep * earlyStep * earlyStep))
+	h := 1 / k.step
+	return sum * h * h * h * h
 }

@@ -701,7 +701,12 @@ func (c *chain) node(s, lo float64, n *node) {
 func (k *kernel) cellEnd(tau float64) float64 {
 	switch {
 	case tau < k.earlyEnd:
-		return earlyStep * (math.Floor(tau*(1/earlyStep)) + 1)
+		i, _ := k.piece(tau, 0)
+		end := k.step * float64(i+1)
+		if end <= tau {
+			end += k.step
+		}
+		return min(end, k.earlyEnd)
 	case len(k.stages) > 0:
 		return k.stageOf(tau).cellEnd(tau)
 	}
@@ -712,7 +717,12 @@ func (k *kernel) cellEnd(tau float64) float64 {
 func (k *kernel) cellStart(tau float64) float64 {
 	switch {
 	case tau <= k.earlyEnd:
-		return max(0, earlyStep*(math.Ceil(tau*(1/earlyStep))-1))
+		i, _ := k.piece(tau, 0)
+		start := k.step * float64(i)
+		if start >= tau {
+			start -= k.step
+		}
+		return max(0, start)
 	case len(k.stages) > 0:
 		lo, hi := 0, len(k.stages)
 		for hi-lo > 1 {
