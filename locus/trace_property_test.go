@@ -8,7 +8,6 @@ import (
 	"math/rand/v2"
 	"os"
 	"testing"
-	"time"
 
 	"github.com/polewright/polewright/poly"
 )
