@@ -37,7 +37,7 @@ func (s *Solver) simple(f exact.Poly, call string) ([]located, error) {
 		return s.parted(f, true, call)
 	}
 	discs, failure := s.approachFactor(f, false)
-	if failure == rootkernel.OnAxis || failure == rootkernel.Meeting {
+	if failure != rootkernel.None {
 		// The real part of some root may be zero. If so, it is a root of the greatest common
 		// divisor of f(s) and f(-s), which has all its roots in pairs s, -s.
 		if g := exact.GCD(f, mirror(f)); g.Degree() > 0 {
