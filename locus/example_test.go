@@ -136,3 +136,74 @@ func ExampleFamily_WindowsOf() {
 	fmt.Println(windows)
 	// Output: [{-Inf 5}]
 }
+
+// A region of one's own: the ellipse of poles that the specification of a servo allows, about
+// -2 rad/s with half-axes of 1.5 and 1 rad/s.
+type ellipse struct{ center, a, b float64 }
+
+func (e ellipse) Contains(s complex128) bool {
+	x, y := (real(s)-e.center)/e.a, imag(s)/e.b
+	return x*x+y*y < 1
+}
+
+func (e ellipse) Boundary() []locus.Curve {
+	at := func(t float64) complex128 { return complex(e.center+e.a*math.Cos(t), e.b*math.Sin(t)) }
+	velocity := func(lo, hi float64) locus.Disc {
+		m := lo/2 + hi/2
+		return locus.Disc{
+			Center: complex(-e.a*math.Sin(m), e.b*math.Cos(m)),
+			Radius: max(e.a, e.b) * (hi - lo) / 2 * 1.000001, // the second derivative times half the width
+		}
+	}
+	return []locus.Curve{locus.Parametric(-math.Pi, math.Pi, at, velocity)}
+}
+
+func ExampleParametric() {
+	family, err := locus.Gain(tf.MustParse("1 / ((s+1) (s+3))"))
+	if err != nil {
+		log.Fatal(err)
+	}
+	// (s+2)² = 1 - k: real poles for k < 1, then a pair at -2 ± j√(k-1).
+	windows, err := family.Windows(ellipse{center: -2, a: 1.5, b: 1})
+	if err != nil {
+		log.Fatal(err)
+	}
+	fmt.Printf("%.4f\n", windows)
+	// Output: [{-1.2500 2.0000}]
+}
+
+// Which gain gives a pair of poles the damping ratio 0.6, and where are they?
+func ExampleFamily_On() {
+	family, err := locus.Gain(tf.MustParse("1 / (s (s+1.2))"))
+	if err != nil {
+		log.Fatal(err)
+	}
+	points, err := family.On(locus.Ray(0, complex(-0.6, 0.8)))
+	if err != nil {
+		log.Fatal(err)
+	}
+	for _, p := range points {
+		fmt.Printf("%.4f at k = %.4f\n", p.S, p.Gain)
+	}
+	// Output: (-0.6000+0.8000i) at k = 1.0000
+}
+
+// The poles of a loop at many gains, each search starting from the last answer.
+func ExampleWorkspace() {
+	family, err := locus.Gain(tf.MustParse("1 / (s (s+2))"))
+	if err != nil {
+		log.Fatal(err)
+	}
+	var w locus.Workspace
+	for _, k := range []float64{4, 5, 10} {
+		roots, err := w.PolesAt(family, k)
+		if err != nil {
+			log.Fatal(err)
+		}
+		fmt.Printf("k = %v: %.4f\n", k, roots[1].Value)
+	}
+	// Output:
+	// k = 4: (-1.0000+1.7321i)
+	// k = 5: (-1.0000+2.0000i)
+	// k = 10: (-1.0000+3.0000i)
+}

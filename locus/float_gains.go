@@ -79,6 +79,10 @@ func (f Family) windowsFloat(r Region) ([]Window, bool) {
 		if !r.outside {
 			return w.within(r.radius)
 		}
+	case onSamples:
+		if r.r == (leftOf{0}) {
+			return w.within(1)
+		}
 	}
 	return nil, false
 }

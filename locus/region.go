@@ -61,6 +61,18 @@ func simpleRegions(call string, r Region) ([]Region, error) {
 			list = append(list, more...)
 		}
 		return list, nil
+	case onSamples:
+		if inner, ok := s.r.(all); ok {
+			var list []Region
+			for _, one := range inner {
+				more, err := simpleRegions(call, onSamples{one, s.period})
+				if err != nil {
+					return nil, err
+				}
+				list = append(list, more...)
+			}
+			return list, nil
+		}
 	}
 	if _, err := constraintsOf(call, r); err != nil {
 		return nil, err
