@@ -28,6 +28,7 @@ func (s Sheet) check(ctx context.Context, l tf.Loop) (Report, error) {
 		return Report{}, err
 	}
 	e := &Evidence{loop: l, m: m}
+	defer func() { e.quickSignal.release(); e.quickSignal = nil }()
 	r := Report{Sheet: s, Binding: -1}
 	if r.Stable, err = e.Stable(); err != nil {
 		return Report{}, err

@@ -2,6 +2,7 @@ package spec
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -237,8 +238,19 @@ func (h *hunt) judge(ctx context.Context, k float64) (judged, error) {
 			return judged{}, err
 		}
 		r, err := h.sheet.check(ctx, loop)
+		var refused *tf.UnsupportedError
+		if errors.As(err, &refused) {
+			// Next to the limit of stability a response may be out of reach: no gain to choose.
+			r, err = Report{Sheet: h.sheet, Findings: make([]Finding, len(h.sheet)), Binding: -1}, nil
+			c := Cause{Requirement: -1, Name: "want of an answer next to the limit of stability", Loop: n, Kind: Stability}
+			j.refused, j.slack, j.by = append(j.refused, c), math.Inf(-1), c
+		}
 		if err != nil {
 			return judged{}, err
+		}
+		if refused != nil {
+			j.loops, j.reports, j.met = append(j.loops, loop), append(j.reports, r), false
+			continue
 		}
 		j.loops, j.reports = append(j.loops, loop), append(j.reports, r)
 		j.met = j.met && r.Met()
@@ -398,6 +410,10 @@ func (h *hunt) effortAt(ctx context.Context, k float64) (float64, error) {
 			return 0, err
 		}
 		v, err := largestEffort(ctx, e, 1, inf)
+		var refused *tf.UnsupportedError
+		if errors.As(err, &refused) {
+			return inf, nil
+		}
 		if err != nil {
 			return 0, err
 		}

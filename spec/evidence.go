@@ -28,6 +28,9 @@ type Evidence struct {
 	settling    map[float64]float64 // by band
 	figures     map[float64]timeresp.Figures
 
+	quickSignal *signal
+	quickDone   bool
+
 	margins    tf.Margins
 	marginsErr error
 	hasMargins bool

@@ -39,6 +39,20 @@ func measureUndershoot(_ context.Context, e *Evidence, _ *limited) (measured, er
 		return absent(why), err
 	}
 	f, err := e.Figures(0.02)
+	var long *tf.UnsupportedError
+	if errors.As(err, &long) && e.m.rational() {
+		// It settles too slowly for the other figures; the undershoot comes early.
+		s, err := e.trajectory(toOutput, 1e-3)
+		if s == nil || err != nil {
+			return measured{}, err
+		}
+		sign := math.Copysign(1, s.final)
+		v, w, _ := s.largest(-sign, 0, inf)
+		if v <= excess*math.Abs(s.final) {
+			return at(0, none, ""), nil
+		}
+		return at(v/math.Abs(s.final), w, "s"), nil
+	}
 	return at(f.Undershoot, f.UndershootTime, "s"), err
 }
 
@@ -353,7 +367,7 @@ func measureLoadRecovery(_ context.Context, e *Evidence, r *limited) (measured, 
 	if s == nil || math.Abs(s.final) > r.second {
 		return absent("the output never comes back: its steady deviation is larger"), nil
 	}
-	t := s.lastOutside(r.second)
+	t := s.lastOutside(0, r.second)
 	return at(t, t, "s"), nil
 }
 

@@ -195,6 +195,7 @@ func (e *engine) at(k float64, probes []*probe) (*sample, error) {
 		} else {
 			w.trace(0, 0.02*math.Max(math.Abs(w.final), w.scale*1e-3), e.limit)
 			s.weight = w.variation()
+			w.release()
 		}
 	}
 	if e.needEffort {
@@ -239,7 +240,9 @@ func (e *engine) part(numerator []float64, lead float64, poles []complex128, wan
 		return inf
 	}
 	p.trace(0, 0.1*p.scale, e.limit)
-	return supremum(p, 0)
+	sup := supremum(p, 0)
+	p.release()
+	return sup
 }
 
 // supremum bounds |f - about| at every time.

@@ -1,6 +1,9 @@
 package spec
 
-import "math"
+import (
+	"math"
+	"sync"
+)
 
 // The search for gain windows looks at hundreds of closed loops that differ in the gain
 // alone. A trajectory is the step response of one of them, as a sum over the modes in
@@ -26,6 +29,19 @@ type signal struct {
 	horizon float64
 	tail    float64 // bound on |f - final| from the horizon on
 	swing   float64 // bound on the total variation from the horizon on
+}
+
+// samples are working storage, handed on from one signal to the next.
+type samples struct{ t, f, d []float64 }
+
+var spare sync.Pool // of *samples
+
+// release gives the samples back; the signal must not be used after.
+func (s *signal) release() {
+	if s != nil && s.t != nil {
+		spare.Put(&samples{s.t[:0], s.f[:0], s.d[:0]})
+		s.t, s.f, s.d = nil, nil, nil
+	}
 }
 
 // turn is an extremum in a cell of the samples.
@@ -95,9 +111,11 @@ func (s *signal) trace(until, small float64, limit int) {
 	m := s.modes
 	n := len(m.re)
 	if s.t == nil {
-		const room = 192
-		store := make([]float64, 3*room)
-		s.t, s.f, s.d = store[0:0:room], store[room:room:2*room], store[2*room:2*room]
+		if b, ok := spare.Get().(*samples); ok {
+			s.t, s.f, s.d = b.t, b.f, b.d
+		} else {
+			s.t, s.f, s.d = make([]float64, 0, 192), make([]float64, 0, 192), make([]float64, 0, 192)
+		}
 	}
 	s.t, s.f, s.d, s.turns = s.t[:0], s.f[:0], s.d[:0], s.turns[:0]
 	var store [4 * 32]float64

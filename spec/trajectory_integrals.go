@@ -5,34 +5,48 @@ import (
 	"math/cmplx"
 )
 
-// lastOutside returns the last time at which |f| exceeds the limit, 0 if it never does. The
-// final value has to lie within it.
-func (s *signal) lastOutside(limit float64) float64 {
+// lastOutside returns the last time at which |f - about| exceeds the limit, 0 if it never
+// does. The final value has to lie within it, and the tail after the horizon.
+func (s *signal) lastOutside(about, limit float64) float64 {
 	// Monotone stretches run from extremum to extremum; look from the end.
-	knots := make([]float64, 0, len(s.turns)+2)
-	knots = append(knots, 0)
-	for i := range s.turns {
-		s.estimate(&s.turns[i])
-		knots = append(knots, s.turns[i].t)
-	}
-	knots = append(knots, s.horizon)
-	for j := len(knots) - 2; j >= 0; j-- {
-		a, b := knots[j], knots[j+1]
-		fa, _ := s.at(a)
-		fb, _ := s.at(b)
-		if math.Abs(fb) > limit*(1+1e-15) && j == len(knots)-2 {
-			return b
+	end, fEnd := s.horizon, s.f[len(s.f)-1]
+	for j := len(s.turns) - 1; j >= -1; j-- {
+		a, fa := 0.0, s.f[0]
+		if j >= 0 {
+			u := &s.turns[j]
+			if !u.refined && math.Abs(u.f-about)+roughness*math.Abs(u.f-s.final) < limit {
+				end, fEnd = u.t, u.f
+				continue
+			}
+			s.refine(u)
+			a, fa = u.t, u.f
 		}
-		if math.Abs(fa) <= limit {
+		if math.Abs(fa-about) <= limit {
+			end, fEnd = a, fa
 			continue
 		}
+		if math.Abs(fEnd-about) > limit*(1+1e-15) {
+			return end
+		}
 		sign := 1.0
-		if fa < 0 {
+		if fa < about {
 			sign = -1
 		}
-		return increasing(a, b, a+(b-a)/2, func(t float64) (float64, float64) {
+		// The samples narrow the bracket down to one step.
+		lo, hi := a, end
+		for i := len(s.t) - 1; i >= 0 && s.t[i] > a; i-- {
+			if s.t[i] >= hi {
+				continue
+			}
+			if math.Abs(s.f[i]-about) > limit {
+				lo = s.t[i]
+				break
+			}
+			hi = s.t[i]
+		}
+		return increasing(lo, hi, lo+(hi-lo)/2, func(t float64) (float64, float64) {
 			f, d := s.at(t)
-			return limit - sign*f, -sign * d
+			return limit - sign*(f-about), -sign * d
 		})
 	}
 	return 0

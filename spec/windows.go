@@ -320,7 +320,9 @@ func (h *hunt) exact(m *model, j, i int) ([]GainWindow, manner, error) {
 // A seeker is a survey together with the causes of a change of verdict.
 type seeker struct {
 	survey
-	causes func(e edge) []Cause
+	causes   func(e edge) []Cause
+	answered bool  // at one gain at least
+	refused  error // why there was no answer at a gain
 }
 
 // gap returns the width of the narrowest gap between critical gains that [a, b] meets; past
@@ -369,6 +371,9 @@ func (h *hunt) search(ctx context.Context, g *Gains, s *seeker) error {
 		}
 		out = append(out, found...)
 		g.MissedBelow = math.Max(g.MissedBelow, missed)
+	}
+	if s.refused != nil && !s.answered {
+		return s.refused
 	}
 	g.Windows = out
 	return nil
@@ -616,6 +621,7 @@ func (h *hunt) judging(ctx context.Context, which []int) *seeker {
 				if errors.As(err, &near) && m.around != 0 {
 					// Next to the limit of stability a response with dead time may be out of
 					// reach; the windows then end there, without proof.
+					s.refused = err
 					f, err = Finding{Slack: math.Inf(-1)}, nil
 					l.unknown = true
 				}
@@ -632,6 +638,7 @@ func (h *hunt) judging(ctx context.Context, which []int) *seeker {
 			}
 		}
 		l.data = all
+		s.answered = s.answered || !l.unknown
 		return l, nil
 	}
 	// Estimated: over a cell that is a small part of its gap, the slack that decides varies
