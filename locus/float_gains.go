@@ -480,6 +480,16 @@ func (w *floatFamily) gain(p floatPoint, d float64) (k, err float64, ok bool) {
 	r := math.Sqrt(float64(re*re)+float64(im*im)) * (1 + 8*unitRoundoff)
 	a, sizes := w.evaluate(w.a, p, re, im, r)
 	b, sizesB := w.evaluate(w.b, p, re, im, r)
+	var extraA, extraB float64 // relative errors of the values beyond those of double precision
+	if w.rounded != 0 {
+		// The exact polynomials at the point rounded to float64.
+		va, vb := w.fixed.AtComplex(complex(re, im)), w.scaled.AtComplex(complex(re, im))
+		a.re, a.im, b.re, b.im = real(va), imag(va), real(vb), imag(vb)
+		a.exactRe, a.exactIm, b.exactRe, b.exactIm = double{h: a.re}, double{h: a.im}, double{h: b.re}, double{h: b.im}
+		off := (math.Abs(p.re.l) + math.Abs(p.im.l)) * 1.01
+		extraA = 0x1p-50 + off*sizes.first/math.Sqrt(float64(a.re*a.re)+float64(a.im*a.im))
+		extraB = 0x1p-50 + off*sizesB.first/math.Sqrt(float64(b.re*b.re)+float64(b.im*b.im))
+	}
 	squareB := float64(b.re*b.re) + float64(b.im*b.im)
 	modB := math.Sqrt(squareB)
 	// f = A/B in twice the precision: only the small imaginary part needs it.
@@ -495,9 +505,8 @@ func (w *floatFamily) gain(p floatPoint, d float64) (k, err float64, ok bool) {
 	speed := math.Sqrt(float64(p.dRe*p.dRe)+float64(p.dIm*p.dIm)) * (1 + 8*unitRoundoff)
 	reach := d * speed * (1 + 8*unitRoundoff) // in the plane
 	n := float64(max(len(w.a), len(w.b)))
-	// Relative errors of A and B at p: double precision, and coefficients that were rounded.
-	relative := n*0x1p-98 + w.rounded
-	x, y := relative*sizes.value/math.Abs(size*modB), relative*sizesB.value/modB
+	// Relative errors of A and B at p.
+	x, y := n*0x1p-98*sizes.value/math.Abs(size*modB)+1.01*extraA, n*0x1p-98*sizesB.value/modB+1.01*extraB
 	if !(x < 1e-6 && y < 1e-6) || !(reach*sizesB.first < 0x1p-12*modB) {
 		return 0, 0, false
 	}

@@ -39,6 +39,13 @@ func TestFloatAgainstExact(t *testing.T) {
 	for range 150 {
 		n := []int{4, 8, 12}[rng.IntN(3)]
 		f := typicalFamily(rng, n, rng.IntN(n))
+		if rng.IntN(3) == 0 {
+			// Coefficients that are no float64.
+			var err error
+			if f, err = Parameter(f.fixed.Mul(poly.New(1, 0.1)), f.scaled.Mul(poly.New(0.3))); err != nil {
+				t.Fatal(err)
+			}
+		}
 		for i, on := range parts {
 			tried[[2]int{n, i}]++
 			got, ok := f.windowsFloat(on)
