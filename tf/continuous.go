@@ -1,6 +1,7 @@
 package tf
 
 import (
+	"fmt"
 	"math"
 	"math/big"
 	"math/cmplx"
@@ -271,6 +272,9 @@ func (g Function) withoutHold(call string, how Method) (Function, error) {
 		h.denominator = h.denominator.Mul(x.factor())
 	}
 	n := h.denominator.Degree()
+	if n > maxHeld {
+		return h, &UnsupportedError{Call: call, What: fmt.Sprintf("a hold before a function of order %d; at most %d", n, maxHeld)}
+	}
 	most := n
 	if how == FirstOrderHold {
 		most++
@@ -294,15 +298,13 @@ func (g Function) withoutHold(call string, how Method) (Function, error) {
 			system[i][n+1].Set(c[i])
 		}
 	}
-	_, scale := h.ring(64, 0)
+	sampler := h.heldSampler(g.period, new(big.Rat), how, precision)
 	for j := 0; j <= n; j++ {
-		unit := h
-		unit.numerator = powerOfVariable(j)
-		column, _ := unit.heldNumerator(g.period, new(big.Rat), how, precision)
+		column, _ := sampler.numerator(powerOfVariable(j))
 		column = shiftByOne(column, false, precision)
 		for i := range system {
 			if i < len(column) {
-				system[i][j].SetMantExp(column[i], -scale*j) // of (s/2^scale)ʲ
+				system[i][j].SetMantExp(column[i], -sampler.scale*j) // of (s/2^scale)ʲ
 			}
 		}
 	}
@@ -326,7 +328,7 @@ func (g Function) withoutHold(call string, how Method) (Function, error) {
 		solution[0].SetInt64(0)
 	}
 	for j, x := range solution {
-		x.SetMantExp(x, -scale*j)
+		x.SetMantExp(x, -sampler.scale*j)
 	}
 	h.numerator = polyOf(solution)
 	return h, nil

@@ -92,7 +92,7 @@ func scalePeriod(period float64, scale int) int {
 // first-order hold), and how often z divides it.
 func (g Function) sampledNumerator(call string, period float64, fraction *big.Rat, how Method) (poly.Poly, int, error) {
 	compute := func(precision uint) ([]*big.Float, int) {
-		return g.heldNumerator(period, fraction, how, precision)
+		return g.heldSampler(period, fraction, how, precision).numerator(g.numerator)
 	}
 	p, err := agree(call, compute, offsetBits+48*g.denominator.Degree())
 	if err != nil {
@@ -106,56 +106,76 @@ func (g Function) sampledNumerator(call string, period float64, fraction *big.Ra
 	return p, common, nil
 }
 
-// heldNumerator returns the coefficients of the numerator in δ, by power, and the exponent
-// of the period, see agree.
-func (g Function) heldNumerator(period float64, fraction *big.Rat, how Method, precision uint) ([]*big.Float, int) {
+// heldSampler is what the numerators over one denominator share.
+type heldSampler struct {
+	ring           quotient.Ring
+	w              quotient.Element
+	characteristic []*big.Float     // of w, by power
+	fraction       quotient.Element // exp(s·m·T) - 1; nil without a fraction of a period
+	t              *big.Float       // scaled period
+	divisor        *big.Float       // of numerators
+	period         float64
+	scale          int
+	how            Method
+	precision      uint
+}
+
+func (g Function) heldSampler(period float64, fraction *big.Rat, how Method, precision uint) heldSampler {
 	q := 1
 	if how != ZeroOrderHold {
 		q = 2
 	}
-	ring, scale := g.ring(precision, q)
-	t := scaledPeriod(period, scale, precision)
-	w := ring.ExpMinusOne(t)
+	h := heldSampler{period: period, how: how, precision: precision}
+	h.ring, h.scale = g.ring(precision, q)
+	h.t = scaledPeriod(period, h.scale, precision)
+	h.w = h.ring.ExpMinusOne(h.t)
 	// The characteristic polynomial of W, with δ^q for the poles of the hold.
-	characteristic := make([]*big.Float, 0, ring.Degree()+1)
 	for range q {
-		characteristic = append(characteristic, bigNumber(precision))
+		h.characteristic = append(h.characteristic, bigNumber(precision))
 	}
 	if g.denominator.Degree() > 0 {
 		own, _ := g.ring(precision, 0)
-		characteristic = append(characteristic, own.Characteristic(own.Reduce(w))...)
+		h.characteristic = append(h.characteristic, own.Characteristic(own.Reduce(h.w))...)
 	} else {
-		characteristic = append(characteristic, bigNumber(precision).SetInt64(1))
+		h.characteristic = append(h.characteristic, bigNumber(precision).SetInt64(1))
 	}
-	// N, divided by what made D monic and, for q = 2, by the scaled period.
-	n := scaledCoefficients(g.numerator, scale, precision)
-	d := scaledCoefficients(g.denominator, scale, precision)
-	divisor := bigNumber(precision).Set(d[len(d)-1])
+	// N is divided by what made D monic and, for q = 2, by the scaled period.
+	d := scaledCoefficients(g.denominator, h.scale, precision)
+	h.divisor = bigNumber(precision).Set(d[len(d)-1])
 	if q == 2 {
-		divisor.Mul(divisor, t)
+		h.divisor.Mul(h.divisor, h.t)
 	}
-	for _, x := range n {
-		x.Quo(x, divisor)
-	}
-	if how == FirstOrderHold { // times 1 + T·s
-		n = append(n, bigNumber(precision))
-		for i := len(n) - 1; i > 0; i-- {
-			n[i].Add(n[i], bigNumber(precision).Mul(n[i-1], t))
-		}
-	}
-	u := ring.Reduce(n)
 	if fraction.Sign() != 0 {
-		m := ring.ExpMinusOne(bigNumber(precision).Mul(t, bigRat(precision, fraction)))
-		u = ring.Add(u, ring.Mul(u, m))
+		h.fraction = h.ring.ExpMinusOne(bigNumber(precision).Mul(h.t, bigRat(precision, fraction)))
 	}
-	result := make([]*big.Float, ring.Degree())
-	y := u
-	for j := ring.Degree() - 1; ; j-- {
-		result[j] = ring.Lead(y)
-		if j == 0 {
-			return result, scalePeriod(period, scale)
+	return h
+}
+
+// numerator returns the coefficients of the sampled numerator in δ, by power, and the exponent
+// of the period, see agree.
+func (h heldSampler) numerator(p poly.Poly) ([]*big.Float, int) {
+	n := scaledCoefficients(p, h.scale, h.precision)
+	for _, x := range n {
+		x.Quo(x, h.divisor)
+	}
+	if h.how == FirstOrderHold { // times 1 + T·s
+		n = append(n, bigNumber(h.precision))
+		for i := len(n) - 1; i > 0; i-- {
+			n[i].Add(n[i], bigNumber(h.precision).Mul(n[i-1], h.t))
 		}
-		y = ring.Add(ring.Mul(y, w), ring.Scale(u, characteristic[j]))
+	}
+	u := h.ring.Reduce(n)
+	if h.fraction != nil {
+		u = h.ring.Add(u, h.ring.Mul(u, h.fraction))
+	}
+	result := make([]*big.Float, h.ring.Degree())
+	y := u
+	for j := h.ring.Degree() - 1; ; j-- {
+		result[j] = h.ring.Lead(y)
+		if j == 0 {
+			return result, scalePeriod(h.period, h.scale)
+		}
+		y = h.ring.Add(h.ring.Mul(y, h.w), h.ring.Scale(u, h.characteristic[j]))
 	}
 }
 
