@@ -63,18 +63,34 @@ func (a wide) div(b wide) wide {
 // SIAM J. Sci. Comput. 26 (2005) 1955–1988, Algorithm 5.3), with an error of some 2⁻¹⁰⁰·Σ|a·b|.
 func dotWide(a, b []wide) wide {
 	b = b[:len(a)]
-	var sum, rest float64
-	for i := range a {
-		x, y := a[i], b[i]
+	// Two sums side by side, so that one need not wait for the other.
+	var sum, rest, sum2, rest2 float64
+	i := 0
+	for ; i+2 <= len(a); i += 2 {
+		x, y := &a[i], &b[i]
 		p := x.hi * y.hi
-		e := math.FMA(x.hi, y.hi, -p)
-		e = math.FMA(x.hi, y.lo, math.FMA(x.lo, y.hi, e))
+		e := math.FMA(x.hi, y.lo, math.FMA(x.lo, y.hi, math.FMA(x.hi, y.hi, -p)))
 		s := sum + p
 		t := s - sum
 		rest += e + ((sum - (s - t)) + (p - t))
 		sum = s
+		x, y = &a[i+1], &b[i+1]
+		p = x.hi * y.hi
+		e = math.FMA(x.hi, y.lo, math.FMA(x.lo, y.hi, math.FMA(x.hi, y.hi, -p)))
+		s = sum2 + p
+		t = s - sum2
+		rest2 += e + ((sum2 - (s - t)) + (p - t))
+		sum2 = s
 	}
-	return quickSum(sum, rest)
+	if i < len(a) {
+		p := a[i].hi * b[i].hi
+		e := math.FMA(a[i].hi, b[i].lo, math.FMA(a[i].lo, b[i].hi, math.FMA(a[i].hi, b[i].hi, -p)))
+		var lost float64
+		sum, lost = twoSum(sum, p)
+		rest += e + lost
+	}
+	s, lost := twoSum(sum, sum2)
+	return quickSum(s, rest+rest2+lost)
 }
 
 // scale multiplies by 2^n.
