@@ -252,7 +252,7 @@ func (p *plane) dropCell() *cell {
 // endCell returns the cell of the roots that tend to a zero of b of multiplicity m at x, which
 // is within errX, as κ → ±∞.
 func (p *plane) endCell(x complex128, m int, errX float64) *cell {
-	swapped := &plane{a: p.b, b: p.a, n: p.n}
+	swapped := &plane{a: p.b, b: p.a, tailA: p.tailB, tailB: p.tailA, n: p.n}
 	c := swapped.multipleCell(x, 0, m, errX)
 	if c != nil {
 		c.reciprocal = true
@@ -261,8 +261,16 @@ func (p *plane) endCell(x complex128, m int, errX float64) *cell {
 }
 
 // multipleCell returns the cell of a root at x, within errX, of multiplicity m at exactly the
-// gain κ; nil if it cannot be proved in float64.
+// gain κ; nil if it cannot be proved.
 func (p *plane) multipleCell(x complex128, κ float64, m int, errX float64) *cell {
+	if c := p.multipleCellBy(x, κ, m, errX, false); c != nil {
+		return c
+	}
+	return p.multipleCellBy(x, κ, m, errX, true)
+}
+
+// multipleCellBy is multipleCell in float64 or in twice its precision.
+func (p *plane) multipleCellBy(x complex128, κ float64, m int, errX float64, precise bool) *cell {
 	n := p.n
 	f := make([]complex128, n+1)
 	b := make([]complex128, n+1)
@@ -272,15 +280,20 @@ func (p *plane) multipleCell(x complex128, κ float64, m int, errX float64) *cel
 		f[i], b[i] = complex(p.a[i]+float64(κ*p.b[i]), 0), complex(p.b[i], 0)
 		errF[i], errB[i] = math.Abs(p.a[i])+math.Abs(κ*p.b[i]), math.Abs(p.b[i])
 	}
-	taylor(f, x)
-	taylor(b, x)
+	u := (6.6*float64(n) + 10) * 1.05 * unitRoundoff
+	if precise {
+		p.preciseTaylor(x, double{κ, 0}, f, b)
+		u = 20 * float64(n+1) * doubleRoundoff
+	} else {
+		taylor(f, x)
+		taylor(b, x)
+	}
 	r := cmplx.Abs(x) * (1 + 4*unitRoundoff)
 	taylorReal(errF, r)
 	taylorReal(errB, r)
-	u := (6.6*float64(n) + 10) * 1.05 * unitRoundoff
 	for i := range f {
-		wideF[i] = cmplx.Abs(f[i]) + u*errF[i] + minNormal
-		wideB[i] = cmplx.Abs(b[i]) + u*errB[i] + minNormal
+		wideF[i] = cmplx.Abs(f[i])*(1+2*unitRoundoff) + u*errF[i] + minNormal
+		wideB[i] = cmplx.Abs(b[i])*(1+2*unitRoundoff) + u*errB[i] + minNormal
 	}
 	taylorReal(wideF, errX)
 	taylorReal(wideB, errX)
