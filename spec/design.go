@@ -49,7 +49,8 @@ type Design struct {
 
 	// Gain is the recommended gain, NaN if there is none. Where the optimum is Unbounded, it
 	// is the smallest gain looked at that comes within a twentieth of the best slack (or
-	// effort) seen up to Gains.SearchedTo.
+	// effort) seen up to Gains.SearchedTo, or, where that is infinite, a thousand times the
+	// largest critical gain.
 	Gain      float64
 	Unbounded bool
 	Window    int       // index of the window that holds it; -1 if none
@@ -104,12 +105,19 @@ type RuleGain struct {
 
 // Design looks for the windows of gains as [Sheet.Windows] does, recommends a gain and
 // reports on it, or says why there is none. By default it recommends the gain with the
-// greatest smallest slack over all requirements and loops; where that gain stands on a jump
-// of a figure, such as a settling time at an extremum that touches the band, the one with the
+// greatest smallest slack over all requirements and loops, the largest of several; where that
+// gain stands on a jump of a figure, such as a settling time at an extremum that touches the band, the one with the
 // greatest smallest slack within 2 % on both sides.
 func (s Sheet) Design(ctx context.Context, loops []tf.Loop, opt ...Option) (Design, error) {
+	const call = "spec.Sheet.Design"
 	set := newSettings(opt)
-	h, err := s.hunt("spec.Sheet.Design", loops, set)
+	switch {
+	case set.hasInUse && !finite(set.inUse):
+		return Design{}, &poly.ArgumentError{Call: call, Argument: "InUse", Reason: fmt.Sprintf("%v is not a finite gain", set.inUse)}
+	case set.preference == nearestWanted && !finite(set.wanted):
+		return Design{}, &poly.ArgumentError{Call: call, Argument: "NearestTo", Reason: fmt.Sprintf("%v is not a finite gain", set.wanted)}
+	}
+	h, err := s.hunt(call, loops, set)
 	if err != nil {
 		return Design{}, err
 	}
@@ -434,6 +442,9 @@ func (h *hunt) best(ctx context.Context, g Gains, w GainWindow, cost func(float6
 	free := math.IsInf(hi, 1)
 	if free {
 		hi = g.SearchedTo
+		if math.IsInf(hi, 1) { // nothing was searched: all requirements have exact windows
+			hi = math.Max(h.scale[1]*reachUp, lo*10)
+		}
 	}
 	if lo == 0 {
 		lo = math.Min(hi/1e6, g.SearchedFrom)
@@ -478,7 +489,7 @@ func (h *hunt) best(ctx context.Context, g Gains, w GainWindow, cost func(float6
 	i := 0
 	for j, p := range points {
 		flat = flat && p.c == points[0].c
-		if p.c < points[i].c {
+		if p.c <= points[i].c {
 			i = j
 		}
 	}
