@@ -335,8 +335,8 @@ func checkBand(call string, band float64) error {
 // the figures to be decided: then what is not NaN holds.
 func (r *Response) Figures(band float64) (Figures, error) {
 	const call = "timeresp.Response.Figures"
-	nan := math.NaN()
-	f := Figures{r.final, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
+	f := noFigures()
+	f.Final = r.final
 	if err := checkBand(call, band); err != nil {
 		return f, err
 	}

@@ -161,16 +161,16 @@ func (r *Record) Compare(p tf.Point, log Series) (Difference, error) {
 // Figures returns the figures of merit of the output over the time recorded, found by
 // root-finding on its series. Final is the value at which the linear loop would rest, the
 // inputs staying as they are at the end; what happens after the record is not seen. With no
-// such value the error is a [*NoFinalValueError]. A settling time that lies beyond the
+// such value the error is a [*NoFinalValueError] and every figure NaN. A settling time that lies beyond the
 // record is NaN.
 func (r *Record) Figures(band float64) (Figures, error) {
 	const call = "timeresp.Record.Figures"
 	if !(band > 0 && band < 1) {
-		return Figures{}, &poly.ArgumentError{Call: call, Argument: "band", Reason: fmt.Sprintf("%g; want a fraction between 0 and 1", band)}
+		return noFigures(), &poly.ArgumentError{Call: call, Argument: "band", Reason: fmt.Sprintf("%g; want a fraction between 0 and 1", band)}
 	}
 	final, ok := r.final()
 	if !ok {
-		return Figures{}, &NoFinalValueError{Call: call}
+		return noFigures(), &NoFinalValueError{Call: call}
 	}
 	return recordFigures(r.source, final, band), nil
 }

@@ -11,8 +11,8 @@ func recordFigures(source recordSource, final, band float64) Figures {
 	nan := math.NaN()
 	f := Figures{Final: final, PeakTime: nan, PeakValue: nan, UndershootTime: nan, RiseTime: nan, SettlingTime: nan,
 		DelayTime: nan, Reach100: nan, Reach10: nan, Reach90: nan}
-	size := math.Abs(final)
-	if size == 0 {
+	f.LargestValue, f.LargestTime = recordLargest(source, final)
+	if final == 0 {
 		f.Overshoot, f.Undershoot = nan, nan
 		return f
 	}
@@ -90,4 +90,37 @@ func recordFigures(source recordSource, final, band float64) Figures {
 		f.SettlingTime = lastOutside
 	}
 	return f
+}
+
+// noFigures has NaN for every figure.
+func noFigures() Figures {
+	nan := math.NaN()
+	return Figures{nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan, nan}
+}
+
+// recordLargest returns the output of largest magnitude and when it is taken: the final value
+// and NaN where the output stays below that.
+func recordLargest(source recordSource, final float64) (value, time float64) {
+	const output = hybrid.Output
+	d, n := source.reader(), source.segments()
+	value, time = final, math.NaN()
+	most := math.Abs(final) * (1 + 1e-9)
+	see := func(t float64) {
+		if y := d.at(output, t); math.Abs(y) > most {
+			value, time, most = y, t, math.Abs(y)
+		}
+	}
+	var turns []float64
+	for i := range n {
+		from, to := d.span(i)
+		see(from)
+		turns = d.turns(output, i, turns[:0])
+		for _, t := range turns {
+			see(t)
+		}
+		if i == n-1 {
+			see(to)
+		}
+	}
+	return value, time
 }

@@ -285,3 +285,52 @@ func ExampleRun() {
 	// tracking time 0.0 s: overshoot 38.5 %, settled after 11.69 s
 	// tracking time 0.5 s: overshoot 0.0 %, settled after 8.18 s
 }
+
+// A recorded output has the largest value that the response has, also around a final value of 0.
+func TestRecordLargestValue(t *testing.T) {
+	l := tf.Loop{Plant: tf.MustParse("4 / (s (s + 1))"), Controller: tf.MustParse("1 + 1/(20 s)")}
+	for _, c := range []struct {
+		from tf.Point
+		opt  Option
+	}{
+		{tf.Reference, nil},
+		{tf.LoadDisturbance, LoadInput(StepInput(-1))}, // comes to rest at 0
+	} {
+		in := StepInput(1)
+		opt := []Option{Until(60)}
+		if c.opt != nil {
+			in, opt = Input{}, append(opt, c.opt)
+		}
+		r, err := Run(t.Context(), l, in, opt...)
+		if err != nil {
+			t.Fatal(err)
+		}
+		f, err := r.Figures(0.02)
+		if err != nil {
+			t.Fatal(err)
+		}
+		height := 1.0
+		if c.from == tf.LoadDisturbance {
+			height = -1
+		}
+		response, err := Of(t.Context(), l, c.from, tf.Output, StepInput(height))
+		if err != nil {
+			t.Fatal(err)
+		}
+		value, at, err := response.Largest()
+		if err != nil {
+			t.Fatal(err)
+		}
+		if math.Abs(f.LargestValue-value) > 1e-9 || math.Abs(f.LargestTime-at) > 1e-6 {
+			t.Errorf("from %v: largest %v at %v, want %v at %v", c.from, f.LargestValue, f.LargestTime, value, at)
+		}
+	}
+	// A lag only approaches its final value.
+	r, err := Run(t.Context(), tf.Loop{Plant: tf.MustParse("3 / (s + 1)")}, StepInput(1))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if f, err := r.Figures(0.02); err != nil || f.LargestValue != f.Final || !math.IsNaN(f.LargestTime) {
+		t.Errorf("%+v, %v", f, err)
+	}
+}
