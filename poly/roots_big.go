@@ -227,10 +227,10 @@ func (b *bigSolver) radii() []*big.Float {
 	return radii
 }
 
-// maxBits bounds the precision, maxWork the work, in products of two words: minutes at most.
+// maxBits bounds the precision, maxWork the work, in products of two words: some seconds.
 const (
 	maxBits = 1 << 15
-	maxWork = 1 << 33
+	maxWork = 1 << 31
 )
 
 // locate finds all roots of a square-free polynomial, not zero at 0, at once: single ones
