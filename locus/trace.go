@@ -45,8 +45,10 @@ type Locus struct {
 //
 // The error is a [*poly.ArgumentError] for a gain that is NaN or an empty interval and for a
 // family that is invalid, a [*poly.RangeError] for roots outside the range of float64, an
-// [*UnresolvedError] where the proof fails within the arithmetic or the limit on the
-// number of steps, and the error of the context given by [Interrupted].
+// [*UnresolvedError] where the proof fails within the arithmetic (twice that of float64, gains
+// counted from where it matters: three different roots within some 1e-9 of their size, and five
+// within 1e-6, are near its end) or the limit on the number of steps, and the error of the
+// context given by [Interrupted].
 //
 // Sources: the discs are those of K. Weierstrass and W. Börsch-Supan, see certify; for the
 // tracking of paths with proof C. Beltrán and A. Leykin, Robust certified numerical homotopy

@@ -193,8 +193,13 @@ func TestTraceArguments(t *testing.T) {
 	}
 	var undecided *UnresolvedError
 	f.fixed = poly.New(1, 3, 2, 0)
-	if _, err := f.Trace(0, 1e3, StepLimit(1)); !errors.As(err, &undecided) {
+	_, err := f.Trace(0, 1e3, StepLimit(1))
+	if !errors.As(err, &undecided) {
 		t.Errorf("step limit: %v", err)
+	}
+	var plain *UndecidedError
+	if !errors.As(err, &plain) {
+		t.Errorf("step limit: %v is no UndecidedError", err)
 	}
 }
 
