@@ -98,7 +98,7 @@ func intersect(a, b []GainWindow) []GainWindow {
 	var out []GainWindow
 	for i, j := 0, 0; i < len(a) && j < len(b); {
 		w := GainWindow{Lo: laterStart(a[i].Lo, b[j].Lo), Hi: earlierEnd(a[i].Hi, b[j].Hi)}
-		if w.Lo.Gain < w.Hi.Gain || w.Lo.Gain == w.Hi.Gain && w.Lo.Closed && w.Hi.Closed {
+		if w.Lo.Gain < w.Hi.Gain && !w.sliver() || w.Lo.Gain == w.Hi.Gain && w.Lo.Closed && w.Hi.Closed {
 			out = append(out, w)
 		}
 		if endsBefore(a[i].Hi, b[j].Hi) {
@@ -108,6 +108,12 @@ func intersect(a, b []GainWindow) []GainWindow {
 		}
 	}
 	return out
+}
+
+// sliver reports whether a window beside an end of stability is so narrow that its two ends,
+// found in different ways, are one and the same gain but for rounding.
+func (w GainWindow) sliver() bool {
+	return (!w.Lo.Closed || !w.Hi.Closed) && w.Hi.Gain*(1-1e-14) <= w.Lo.Gain && !math.IsInf(w.Hi.Gain, 1)
 }
 
 func endsBefore(a, b End) bool { return a.Gain < b.Gain || a.Gain == b.Gain && !a.Closed }

@@ -47,7 +47,10 @@ func tops(side, factor float64) *probe {
 			if final == 0 {
 				return noFinal()
 			}
-			v, w, _ := s.y.largest(side*sign, 0, inf)
+			v, w, above := s.y.largest(side*sign, 0, inf)
+			if v <= factor*final && above > factor*final && s.y.extend() {
+				v, w, _ = s.y.largest(side*sign, 0, inf)
+			}
 			return judgment{margin: factor*final - v, where: w}
 		},
 		pass: func(a, b *sample, c spans) bool {
@@ -131,7 +134,10 @@ func settlingProbe(i int, t, band float64) *probe {
 			if final == 0 || t < 0 {
 				return noFinal()
 			}
-			v, w, _ := s.y.largestAbs(s.y.final, from, inf)
+			v, w, above := s.y.largestAbs(s.y.final, from, inf)
+			if v <= band*final && above > band*final && s.y.extend() {
+				v, w, _ = s.y.largestAbs(s.y.final, from, inf)
+			}
 			return judgment{margin: band*final - v, where: w, jump: w > from*(1+1e-7)}
 		},
 		pass: func(a, b *sample, c spans) bool {
@@ -178,6 +184,12 @@ func riseProbe(limit float64) *probe {
 				return noFinal()
 			}
 			start := s.y.firstAt(sign, 0.1*final)
+			if start+limit > s.y.horizon && s.y.extend() {
+				start = s.y.firstAt(sign, 0.1*final)
+			}
+			if math.IsInf(start, 1) {
+				return noFinal()
+			}
 			end := start + limit
 			v, w, _ := s.y.largest(sign, 0, end)
 			return judgment{margin: v - 0.9*final, where: w, jump: w < end-1e-7*limit}
@@ -218,14 +230,14 @@ func riseProbe(limit float64) *probe {
 			start := 0.0
 			for _, s := range [2]*sample{a, b} {
 				sign, final := s.sense()
-				start = math.Max(start, s.y.firstAt(sign, 0.1*final+d1))
+				start = math.Max(start, s.y.firstAt(sign, 0.1*final+d1+1e-12*final)) // above the rounding of the check below
 			}
 			if math.IsInf(start, 1) {
 				return false
 			}
 			for _, s := range [2]*sample{a, b} {
 				sign, final := s.sense()
-				if y, _ := s.y.at(start); !(sign*y-0.1*final >= d1*(1-1e-12)) {
+				if y, _ := s.y.at(start); !(sign*y-0.1*final >= d1) {
 					return false
 				}
 				if _, _, above := s.y.largest(sign, 0, start+limit); !(above-0.9*final < -d9) {
@@ -253,10 +265,8 @@ func peakProbe(i int, t float64) *probe {
 			if v <= final*(1+excess) {
 				return judgment{margin: math.Inf(-1), where: none, jump: true}
 			}
-			// Another extremum as high as this one: there the peak time jumps.
-			before, _, _ := s.y.largest(sign, 0, math.Min(t, w*(1-1e-6)))
-			after, _, _ := s.y.largest(sign, math.Max(t, w*(1+1e-6)), inf)
-			return judgment{margin: t - w, where: w, jump: w < t && after > v-1e-9*final || w > t && before > v-1e-9*final}
+			// Where another extremum is as high as this one the peak time jumps, past t by far.
+			return judgment{margin: t - w, where: w, jump: math.Abs(w-t) > 1e-6*t}
 		},
 		pass: func(a, b *sample, c spans) bool {
 			if !shares(a, b) || t < 0 {
@@ -325,7 +335,13 @@ func boundProbe(i int, t, limit float64, of func(*sample) *signal, span func(spa
 			if f == nil { // an impulse
 				return judgment{margin: math.Inf(-1), where: 0}
 			}
-			v, w, _ := f.largestAbs(0, t, inf)
+			v, w, above := f.largestAbs(0, t, inf)
+			if v <= limit && above > limit && f.extend() {
+				v, w, _ = f.largestAbs(0, t, inf)
+			}
+			if math.Abs(limit-v) <= 1e-14*limit {
+				v = limit // as when the limit is the final value, which may not depend on the gain
+			}
 			return judgment{margin: limit - v, where: w, jump: t > 0 && w > t*(1+1e-7)}
 		},
 		pass: func(a, b *sample, c spans) bool {

@@ -29,6 +29,9 @@ type signal struct {
 	horizon float64
 	tail    float64 // bound on |f - final| from the horizon on
 	swing   float64 // bound on the total variation from the horizon on
+
+	until, small float64 // what trace was asked for
+	cut          bool    // trace gave up before
 }
 
 // samples are working storage, handed on from one signal to the next.
@@ -150,6 +153,7 @@ func (s *signal) trace(until, small float64, limit int) {
 		}
 		if rest <= small || rate == 0 || t >= until && len(s.t) >= late+limit || len(s.t) >= maxSteps {
 			s.horizon, s.tail = t, rest
+			s.until, s.small, s.cut = until, small, rest > small && limit < maxSteps
 			s.add(t, zr, zi, &previous)
 			s.swing = s.variationFrom(t)
 			return
@@ -176,6 +180,15 @@ func (s *signal) trace(until, small float64, limit int) {
 		}
 		t = start + blockSteps*dt
 	}
+}
+
+// extend samples on where trace gave up, and reports whether there was more to see.
+func (s *signal) extend() bool {
+	if !s.cut {
+		return false
+	}
+	s.trace(s.until, s.small, maxSteps)
+	return true
 }
 
 // add appends a sample and looks for extrema since the last one.

@@ -493,6 +493,9 @@ func (h *hunt) probing(which []int) *seeker {
 				return nil, err
 			}
 			samples[j] = x
+			if x.y != nil { // long responses cost more
+				s.budget -= len(x.y.t) / 2000
+			}
 			for _, f := range x.found {
 				l.margin = math.Min(l.margin, f.margin)
 			}
@@ -584,6 +587,9 @@ func (h *hunt) engine(m *model, which []int) *engine {
 		case peakTime:
 			e.needOutput = true
 			e.until = math.Max(e.until, r.limit)
+		case riseTime:
+			e.needOutput = true
+			e.small = math.Min(e.small, 0.05) // past the horizon 90 % is behind
 		default:
 			e.needOutput = true
 		}

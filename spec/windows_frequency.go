@@ -267,7 +267,24 @@ func (s *spectrum) delayHoles(tau float64, cause Cause) ([]GainWindow, error) {
 	}
 	slices.Sort(boundary)
 	boundary = slices.Compact(boundary)
-	return s.crossoverHoles(boundary, func(x float64) bool { w := math.Sqrt(x); return h(w) < 0 }, cause)
+	holes, err := s.crossoverHoles(boundary, func(x float64) bool { w := math.Sqrt(x); return h(w) < 0 }, cause)
+	if err != nil || s.num.Degree() < s.den.Degree() {
+		return holes, err
+	}
+	// Where |L(j∞)| ≥ 1 the smallest delay destabilises.
+	lo := End{}
+	if s.num.Degree() == s.den.Degree() {
+		cause.Kind = Jump
+		n := s.num.Degree()
+		lo = End{Gain: math.Abs(s.den.Coefficient(n) / s.num.Coefficient(n)), Closed: true, By: []Cause{cause}}
+	}
+	for i := range holes {
+		if holes[i].Hi.Gain >= lo.Gain*(1-1e-14) { // neighbours share the gain between them
+			holes[i].Hi = End{Gain: inf}
+			return holes, nil
+		}
+	}
+	return append(holes, GainWindow{Lo: lo, Hi: End{Gain: inf}}), nil
 }
 
 // A quadratic forbids, at x, the gains with a·k² + b·k + c > 0.
