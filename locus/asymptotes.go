@@ -5,13 +5,21 @@ import (
 	"math/big"
 )
 
-// A Sign chooses the half of the locus.
+// A Sign chooses the half of the locus. Of other values the sign counts, and 0 is [Positive].
 type Sign int
 
 const (
 	Positive Sign = +1 // gains k > 0
 	Negative Sign = -1 // gains k < 0
 )
+
+// String returns "k > 0" or "k < 0".
+func (s Sign) String() string {
+	if s < 0 {
+		return "k < 0"
+	}
+	return "k > 0"
+}
 
 // Asymptotes describes how branches go to infinity.
 type Asymptotes struct {

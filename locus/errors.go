@@ -1,5 +1,7 @@
 package locus
 
+import "fmt"
+
 // A BoundaryOnLocusError says that a whole piece of a boundary belongs to the locus, so that its
 // crossings cannot be listed: k/s² and the imaginary axis.
 type BoundaryOnLocusError struct {
@@ -7,6 +9,9 @@ type BoundaryOnLocusError struct {
 }
 
 func (e *BoundaryOnLocusError) Error() string {
+	if words, ok := e.Region.(fmt.Stringer); ok {
+		return "locus: a whole piece of the boundary of the region " + words.String() + " belongs to the locus"
+	}
 	return "locus: a whole piece of the region's boundary belongs to the locus"
 }
 

@@ -34,7 +34,7 @@ func Gain(open tf.Function) (Family, error) {
 	fixed, period := open.Denominator(), open.Period()
 	if dead := open.DeadTime(); dead != 0 {
 		if period == 0 {
-			return Family{}, &tf.UnsupportedError{Call: "locus.Gain", What: "dead time makes the family transcendental; that needs a DelayFamily (GainWithDeadTime)"}
+			return Family{}, &tf.UnsupportedError{Call: "locus.Gain", What: "dead time in s, which gives infinitely many roots; tf.Loop.StableGains and spec answer with dead time"}
 		}
 		periods := math.Round(dead / period)
 		if periods > poly.MaxDegree {

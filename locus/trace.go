@@ -1,6 +1,7 @@
 package locus
 
 import (
+	"fmt"
 	"math"
 	"sort"
 
@@ -61,11 +62,11 @@ func (f Family) Trace(lo, hi float64, opt ...Option) (*Locus, error) {
 	}
 	switch {
 	case math.IsNaN(lo) || math.IsInf(lo, 1):
-		return nil, &poly.ArgumentError{Call: call, Argument: "lo", Reason: "a gain below +Inf is needed"}
+		return nil, &poly.ArgumentError{Call: call, Argument: "lo", Reason: fmt.Sprintf("is %v; a gain below +Inf is needed", lo)}
 	case math.IsNaN(hi) || math.IsInf(hi, -1):
-		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: "a gain above -Inf is needed"}
+		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: fmt.Sprintf("is %v; a gain above -Inf is needed", hi)}
 	case lo > hi:
-		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: "must not be below lo"}
+		return nil, &poly.ArgumentError{Call: call, Argument: "hi", Reason: fmt.Sprintf("is %v and must not be below lo, %v", hi, lo)}
 	}
 	for _, p := range []poly.Poly{f.fixed, f.scaled} {
 		if err := p.Err(); err != nil {

@@ -22,5 +22,5 @@ func StepLimit(steps int) Option { return func(s *settings) { s.trace.steps = st
 
 // LineAccuracy is how far, as a share of the diagonal of [Locus.Frame], a point of a branch may be
 // from the polyline that [Family.Trace] draws of it: between 1e-7 and 0.1, else the default of
-// 2e-4. The number of points grows with the root of its inverse. [Branch.At] does not depend on it.
+// 2e-4, finer than Trace promises. The number of points grows with the root of its inverse. [Branch.At] does not depend on it.
 func LineAccuracy(share float64) Option { return func(s *settings) { s.trace.accuracy = share } }
