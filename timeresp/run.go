@@ -67,8 +67,8 @@ func SensorCharacteristic(f func(output float64) float64) Option {
 //
 // The error is a [*poly.ArgumentError] for a block that is improper, an invalid input or
 // option, and a loop of direct parts without a solution; a [*tf.UnsupportedError] for a plant
-// in z and for what a characteristic cannot be combined with; and the context's error if it
-// is cancelled.
+// in z and for what a characteristic cannot be combined with; a [*poly.RangeError] for signals
+// that grow out of the range of float64; and the context's error if it is cancelled.
 func Run(ctx context.Context, l tf.Loop, in Input, opt ...Option) (*Record, error) {
 	const call = "timeresp.Run"
 	var s settings
@@ -259,7 +259,10 @@ func defaultUntil(call string, l tf.Loop) (float64, error) {
 // runError turns the errors of the machinery into those of the package.
 func runError(call string, err error) error {
 	var block *hybrid.BlockError
+	var over *hybrid.OverflowError
 	switch {
+	case errors.As(err, &over):
+		return &poly.RangeError{Call: call, Reason: fmt.Sprintf("the signals leave the range of float64 by t = %.3g s", over.Time)}
 	case errors.As(err, &block):
 		return &poly.ArgumentError{Call: call, Argument: "l." + block.Block, Reason: block.Err.Error()}
 	case errors.Is(err, hybrid.ErrAlgebraic):

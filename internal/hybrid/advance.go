@@ -96,6 +96,11 @@ func Simulate(ctx context.Context, l Loop, in Inputs, until float64, progress fu
 			}
 		}
 		switched = r.advance(until, switched)
+		for _, x := range r.seg.states {
+			if x-x != 0 {
+				return nil, &OverflowError{Time: r.seg.from}
+			}
+		}
 	}
 	return r.result, nil
 }

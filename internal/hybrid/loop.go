@@ -68,6 +68,13 @@ var ErrAlgebraic = errors.New("hybrid: the direct parts around the loop multiply
 // ErrTooLong reports that the limit of segments was reached.
 var ErrTooLong = errors.New("hybrid: too many segments; the time asked for is too long beside the fastest part of the loop")
 
+// An OverflowError reports that a signal has grown out of the range of float64.
+type OverflowError struct{ Time float64 } // s
+
+func (e *OverflowError) Error() string {
+	return fmt.Sprintf("hybrid: the signals leave the range of float64 by t = %.3g s", e.Time)
+}
+
 // A BlockError says which block cannot be simulated.
 type BlockError struct {
 	Block string // "prefilter", "controller", "plant" or "sensor"
