@@ -67,6 +67,8 @@ func ZerosAtInfinity(n int) Option { return func(s *settings) { s.zerosAtInfinit
 // exact numbers so close to the true ones that zeros, poles and static gain keep float64
 // accuracy however short or long the period is. Poles of equal place keep their multiplicity. A root
 // below the smallest normal float64 is 0. See [Function.PoleOffsets] for poles as 1 + δ.
+// Such numbers stand in hexadecimal in [Function.String]; [Function.Text] is for reading, and
+// [Function.Sections] or [Function.Rounded] give the float64s for firmware.
 //
 // The error is a [*poly.ArgumentError] for a period that is not finite and > 0, a function
 // of z, an improper function behind a hold, or an option out of place; a [*poly.RangeError]

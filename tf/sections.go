@@ -9,7 +9,8 @@ import (
 )
 
 // Section is a factor of second order, (n₀s² + n₁s + n₂)/(d₀s² + d₁s + d₂), or the same in z.
-// Leading coefficients are 0 where the factor has fewer roots.
+// Leading coefficients are 0 where the factor has fewer roots: a section of first order has
+// d₀ = 0 and d₁ = 1.
 type Section struct {
 	Numerator, Denominator [3]float64 // highest power first
 }
