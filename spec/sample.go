@@ -165,7 +165,13 @@ func (e *engine) at(k float64, probes []*probe) (*sample, error) {
 	if err != nil {
 		return nil, err
 	}
-	for _, p := range poles {
+	for i, p := range poles {
+		// A billionth of a gap from the limit of stability, the rounding of the coefficients may
+		// put a pole on the axis.
+		if size := math.Hypot(real(p), imag(p)); real(p) >= 0 && real(p) < 1e-12*size && size > 0 {
+			poles[i] = complex(-1e-15*size, imag(p))
+			continue
+		}
 		if !(real(p) < 0) {
 			return nil, fmt.Errorf("spec: gain %g inside a stable window gave the pole %v", k, p)
 		}
