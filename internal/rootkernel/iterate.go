@@ -220,7 +220,8 @@ func (k *Kernel) moveReals(i, j int) (removed, still bool) {
 		p1, d1, p2, d2 = k.horner2(x1, x2)
 		s1, s2, ratio = k.othersReal2(x1, x2, i, j)
 	}
-	// w₁ = p₁/(d₁ - p₁·s₁ - r·g₁…): with f = p·g, the slope r = (f₁ - f₂)/(x₁ - x₂) over g.
+	// With f = p·g and the ratio g₂/g₁ both corrections need only the slope of f divided by g₁:
+	// w₁ = p₁/(d₁ - p₁·s₁ - slope), and w₂ likewise, times g₂/g₁ above and below.
 	moved := float64(p2 * ratio) // f₂/g₁
 	slope := (p1 - moved) / gap
 	w1 := p1 / (d1 - float64(p1*s1) - slope)
