@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"strconv"
 
 	"github.com/polewright/polewright/locus"
 	"github.com/polewright/polewright/poly"
@@ -86,15 +87,16 @@ func (r *limited) Validate() error {
 		}
 		return nil
 	}
+	in := func(x float64) string { return withUnit(strconv.FormatFloat(x, 'g', 6, 64), k.dimension.unit()) }
 	switch x := r.limit; {
 	case math.IsNaN(x) || math.IsInf(x, 0):
-		return bad("limit", "must be a finite number")
+		return bad("limit", fmt.Sprintf("is %v and must be a finite number", x))
 	case x < k.lowest:
-		return bad("limit", fmt.Sprintf("is %g and must not be below %g", x, k.lowest))
+		return bad("limit", "is "+in(x)+" and must not be below "+in(k.lowest))
 	case k.open && x == k.lowest:
-		return bad("limit", fmt.Sprintf("must be above %g", x))
+		return bad("limit", "is "+in(x)+" and must be above that")
 	case k.highest != 0 && x > k.highest:
-		return bad("limit", fmt.Sprintf("is %g and must not be above %g", x, k.highest))
+		return bad("limit", "is "+in(x)+" and must not be above "+in(k.highest))
 	}
 	if s := k.second; s != nil {
 		if x := r.second; !(x > s.between[0] && x < s.between[1]) {
