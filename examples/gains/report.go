@@ -63,15 +63,18 @@ func number(x float64) string {
 	return fmt.Sprintf("%.6g", x)
 }
 
+// digits is how many digits of a coefficient are for people to read.
+const digits = 10
+
 func writeLoop(b *strings.Builder, j *job) {
 	write := func(name string, g tf.Function) {
 		if g.Equal(tf.Function{}) {
 			return
 		}
-		fmt.Fprintf(b, "  %-11s %v\n", name, g)
+		fmt.Fprintf(b, "  %-11s %s\n", name, g.Text(digits))
 	}
 	write("plant", j.loop.Plant)
-	controller := j.loop.Controller.String()
+	controller := j.loop.Controller.Text(digits)
 	if j.loop.Controller.Equal(tf.Function{}) {
 		controller = "1"
 	}
@@ -79,9 +82,9 @@ func writeLoop(b *strings.Builder, j *job) {
 	write("sensor", j.loop.Sensor)
 	write("prefilter", j.loop.Prefilter)
 	for i, name := range j.names[1:] {
-		fmt.Fprintf(b, "  variant     %s: plant %v", name, j.loops[i+1].Plant)
+		fmt.Fprintf(b, "  variant     %s: plant %s", name, j.loops[i+1].Plant.Text(digits))
 		if !j.loops[i+1].Controller.Equal(j.loop.Controller) {
-			fmt.Fprintf(b, ", controller k · %v", j.loops[i+1].Controller)
+			fmt.Fprintf(b, ", controller k · %s", j.loops[i+1].Controller.Text(digits))
 		}
 		if !j.loops[i+1].Sensor.Equal(j.loop.Sensor) {
 			fmt.Fprintf(b, ", sensor %v", j.loops[i+1].Sensor)
