@@ -2,6 +2,7 @@ package tf
 
 import (
 	"math"
+	"math/cmplx"
 	"testing"
 
 	"github.com/polewright/polewright/internal/refdata"
@@ -164,4 +165,40 @@ func TestSampledLoopReference(t *testing.T) {
 // stepSamples runs the difference equation of a function of z on a unit step.
 func stepSamples(g Function, n int) []float64 {
 	return difference(g, func(int) float64 { return 1 }, n)
+}
+
+// Towards s = 0 matched roots agree with the function they stand for, poles and zeros at 0
+// included; with a frequency to match, in magnitude there.
+func TestMatchedRootsGain(t *testing.T) {
+	const period = 0.1
+	for _, text := range []string{"(2 s + 1) / s", "3 / (s^2 (s + 2))", "s / (s + 1)", "-4 (s - 3) / ((s + 1)^2 + 25)", "exp(-0.3 s) / (s + 1)"} {
+		g := MustParse(text)
+		h, err := g.Sample(period, MatchedRoots)
+		if err != nil {
+			t.Errorf("%s: %v", text, err)
+			continue
+		}
+		s := 1e-7i
+		if got, want := h.At(cmplx.Exp(s*period)), g.At(s); cmplx.Abs(got-want) > 1e-6*cmplx.Abs(want) {
+			t.Errorf("%s: near 0 %v, want %v", text, got, want)
+		}
+		if h, err = g.Sample(period, MatchedRoots, MatchFrequency(2)); err != nil {
+			t.Errorf("%s: %v", text, err)
+			continue
+		}
+		if got, want := cmplx.Abs(h.At(cmplx.Exp(2i*period))), cmplx.Abs(g.At(2i)); math.Abs(got-want) > 1e-14*want {
+			t.Errorf("%s: magnitude at 2 rad/s %v, want %v", text, got, want)
+		}
+	}
+	if _, err := MustParse("s^2 / (s + 1)").Sample(period, MatchedRoots); err == nil {
+		t.Error("an improper function is matched")
+	}
+	if _, err := MustParse("exp(-0.25 s) / (s + 1)").Sample(period, Trapezoidal); err == nil {
+		t.Error("2.5 periods of dead time pass the trapezoidal rule")
+	}
+	for _, opt := range []Option{MatchFrequency(0), MatchFrequency(math.Pi / period), ZerosAtInfinity(2)} {
+		if _, err := MustParse("1 / (s + 1)").Sample(period, MatchedRoots, opt); err == nil {
+			t.Error("an option out of range is taken")
+		}
+	}
 }
