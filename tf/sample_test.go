@@ -202,3 +202,19 @@ func TestMatchedRootsGain(t *testing.T) {
 		}
 	}
 }
+
+// A period of 2³⁰⁰ time constants takes more doublings than there are bits at first.
+func TestSampleAtAnEndlessPeriod(t *testing.T) {
+	g := MustParse("1 / ((s + 1) (s^2 + s + 3) (s + 0x1p-1000))")
+	for _, period := range []float64{0x1p300} {
+		for how := ZeroOrderHold; how <= FirstOrderHold; how++ {
+			h, err := g.Sample(period, how)
+			if err != nil {
+				continue // said, and not a panic
+			}
+			if got, want := h.At(1), g.At(0); cmplx.Abs(got-want) > 1e-13*cmplx.Abs(want) {
+				t.Errorf("period %v, %v: static gain %v, want %v", period, how, got, want)
+			}
+		}
+	}
+}

@@ -108,7 +108,7 @@ func (r Ring) Lead(a Element) *big.Float { return a[len(a)-1] }
 
 // ExpMinusOne returns exp(x·t) - 1, for roots of the modulus of magnitude about 1 at most:
 // Taylor's series for a fraction of t, and then the doubling w → w² + 2w, which does not
-// cancel for small w as squaring exp would.
+// cancel for small w as squaring exp would. The precision should exceed log₂|t| by far.
 func (r Ring) ExpMinusOne(t *big.Float) Element {
 	sum := r.zero()
 	if t.Sign() == 0 {
@@ -157,9 +157,16 @@ func (r Ring) ExpMinusOne(t *big.Float) Element {
 			square[i].Add(square[i], x.SetMantExp(x, 1))
 		}
 		sum = square
+		if e, ok := exponent(sum); ok && e > overflow {
+			break
+		}
 	}
 	return sum
 }
+
+// overflow is the exponent at which ExpMinusOne gives up: with fewer bits than doublings what
+// grows is rounding, and a result that large tells the caller to use more.
+const overflow = 1 << 20
 
 // exponent returns the exponent of the largest coefficient, not ok if all are zero.
 func exponent(a []*big.Float) (int, bool) {
