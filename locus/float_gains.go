@@ -339,12 +339,6 @@ func typical(c []float64) float64 {
 	return math.Ldexp(1, (math.Ilogb(c[0])-math.Ilogb(c[n]))/n)
 }
 
-// quotientError returns a bound on the relative error of a/b.
-func quotientError(ea, a, eb, b float64) float64 {
-	x, y := ea/math.Abs(a), eb/math.Abs(b)
-	return (x+y+4*unitRoundoff)*(1+2*y) + 4*x*y
-}
-
 // damped returns the windows of |arg(-s)| < acos zeta.
 func (w *floatFamily) damped(zeta float64) ([]Window, bool) {
 	n, m := len(w.a)-1, len(w.b)-1

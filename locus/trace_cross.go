@@ -276,7 +276,7 @@ func (t *tracker) arrive(group []*cell, next []row, rest int, centre, exit float
 	ok := true
 	for i := range next {
 		r := &next[i]
-		near := math.Inf(1)
+		var near float64
 		if i < rest {
 			d := exit - centre
 			near = r.near

@@ -36,7 +36,6 @@ type tracker struct {
 	branches []threads
 	vertices []*cell // ahead, ascending gain
 	asked    bool    // whether BreakPoints was asked for them
-	tried    []float64
 	endCells []*cell // about κ = ±∞; nil if not needed
 }
 

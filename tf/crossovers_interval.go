@@ -126,19 +126,6 @@ func (p intervalPoly) trim() (q intervalPoly, low int) {
 	return intervalPoly{p.c[:n], p.e[:n]}, low
 }
 
-// at returns p(x) for x ≥ 0 with a bound on the whole error: that of the coefficients and,
-// as in Higham, Accuracy and Stability of Numerical Algorithms, 2nd ed., SIAM 2002, Algorithm
-// 5.1, that of Horner's rule. Fused multiply-adds round less.
-func (p intervalPoly) at(x float64) (y, bound float64) {
-	var m float64
-	for i := len(p.c) - 1; i >= 0; i-- {
-		y = float64(y*x) + p.c[i]
-		bound = float64(bound*x) + p.e[i]
-		m = float64(m*x) + math.Abs(y) + minNormal
-	}
-	return y, (bound + 3*unitRoundoff*m) * (1 + float64(4*len(p.c))*unitRoundoff)
-}
-
 // sign returns the proven sign of a number known to within e, or 0.
 func sign(c, e float64) int {
 	switch {

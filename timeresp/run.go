@@ -71,10 +71,7 @@ func SensorCharacteristic(f func(output float64) float64) Option {
 // that grow out of the range of float64; and the context's error if it is cancelled.
 func Run(ctx context.Context, l tf.Loop, in Input, opt ...Option) (*Record, error) {
 	const call = "timeresp.Run"
-	var s settings
-	for _, o := range opt {
-		o(&s)
-	}
+	s := settingsOf(opt)
 	loop, inputs, err := prepareRun(call, l, in, &s.run)
 	if err != nil {
 		return nil, err

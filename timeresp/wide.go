@@ -93,9 +93,6 @@ func dotWide(a, b []wide) wide {
 	return quickSum(s, rest+rest2+lost)
 }
 
-// scale multiplies by 2^n.
-func (a wide) scale(n int) wide { return wide{math.Ldexp(a.hi, n), math.Ldexp(a.lo, n)} }
-
 func (a wide) float() float64 { return a.hi + a.lo }
 
 // wideComplex is a complex number of two wide parts.
