@@ -123,7 +123,23 @@ func (s *survey) edgeBetween(a, b *look) (edge, error) {
 		tolerance := 2e-16 * math.Abs(best.k)
 		width := math.Abs(x2.k - x1.k)
 		limit := tolerance / width
-		if limit >= 0.5 || n.margin == 0 && n.met {
+		if n.margin == 0 && n.met { // the end itself; what ends the run shows right beside it
+			beside := n.k * (1 + 1e-14)
+			if not.k < n.k {
+				beside = n.k * (1 - 1e-14)
+			}
+			if between(beside, n.k, not.k) {
+				b, err := s.at(beside)
+				if err != nil {
+					return edge{}, err
+				}
+				if !b.met {
+					not = b
+				}
+			}
+			break
+		}
+		if limit >= 0.5 {
 			break
 		}
 		f1, f2, f3 := x1.margin, x2.margin, x3.margin

@@ -10,6 +10,7 @@ import (
 	"github.com/polewright/polewright/locus"
 	"github.com/polewright/polewright/poly"
 	"github.com/polewright/polewright/tf"
+	"github.com/polewright/polewright/timeresp"
 )
 
 // Windows returns every gain k > 0 that meets the sheet on every one of the loops. The gain
@@ -308,6 +309,12 @@ func (h *hunt) exact(m *model, j, i int) ([]GainWindow, manner, error) {
 			holes, err = s.complementaryHoles(r.limit, cause)
 		case noiseAmplification:
 			holes, err = s.noiseHoles(m.noise().scaled, r.limit, cause)
+		}
+		for i, w := range holes {
+			// At a pole on the axis the frequency of gain 0 is known to rounding only.
+			if w.Lo.Gain < 1e-12*w.Hi.Gain && !math.IsInf(w.Hi.Gain, 1) && r.kind != phaseMargin && r.kind != delayMargin {
+				holes[i].Lo = End{}
+			}
 		}
 		return complement(holes), byFormula, err
 	}
@@ -624,7 +631,8 @@ func (h *hunt) judging(ctx context.Context, which []int) *seeker {
 			for _, i := range which {
 				f, err := h.sheet[i].Judge(ctx, e)
 				var near *tf.UnsupportedError
-				if errors.As(err, &near) && m.around != 0 {
+				var restless *timeresp.NoFinalValueError
+				if (errors.As(err, &near) || errors.As(err, &restless)) && m.around != 0 {
 					// Next to the limit of stability a response with dead time may be out of
 					// reach; the windows then end there, without proof.
 					s.refused = err

@@ -25,6 +25,12 @@ func TestHardWindows(t *testing.T) {
 			OvershootAtMost(0.2), 0, 0.300387861066068, "", "crossing"},
 		{"the first peak", "1", "1/(s(s+4))", // at π/√(k - 4)
 			PeaksWithin(math.Pi / 2), 8, inf, "crossing", ""},
+		{"the first peak, days", "1", "1e-5/(s(3600s+1))", // 7200π/√(4·3600·1e-5·k - 1)
+			PeaksWithin(7200 * math.Pi / math.Sqrt(0.144*44.7-1)), 44.7, inf, "crossing", ""},
+		{"the effort behind dead time", "1", "2exp(-1.5s)/(6s+1)", // k at the step, more only near the limit of stability
+			EffortAtMost(1), 0, 1, "", "crossing"},
+		{"a sensitivity that no small gain lowers: a pole on the axis", "(s+2)/(0.02s+1)", "1/(s^2+1)",
+			SensitivityPeakAtMost(1.4588), math.NaN(), math.NaN(), "crossing", "crossing"},
 		{"a loop of magnitude one or more at infinity stands no delay, falling", "1", "(s+3)/(s+1)",
 			DelayMarginAtLeast(0.5), 0, 0.89718397562384512, "", "crossing"},
 		{"a loop of magnitude one or more at infinity stands no delay, rising", "1", "(3s+1)/(s+1)",
@@ -45,7 +51,7 @@ func TestHardWindows(t *testing.T) {
 				t.Errorf("MissedBelow %g", g.MissedBelow)
 			}
 			check := func(e End, want float64, kind string) {
-				if math.Abs(e.Gain-want) > 1e-10*want && e.Gain != want {
+				if math.Abs(e.Gain-want) > 1e-10*want && e.Gain != want { // NaN passes
 					t.Errorf("an end at %.17g, want %.17g", e.Gain, want)
 				}
 				switch {
