@@ -10,7 +10,7 @@ import (
 // Bounds on what a text may ask for, so that none takes long.
 const (
 	maxDepth    = 200     // of parentheses
-	maxBits     = 1 << 16 // of a coefficient
+	maxBits     = 1 << 20 // of a coefficient: more than the roots of any function of bounded degree need
 	maxExponent = 1 << 12 // of a number
 	maxWork     = 1 << 29 // about nanoseconds, for all products together
 )
@@ -70,9 +70,7 @@ func (p *parser) spend(t token, products ...[2]poly.Poly) error {
 	}
 	for _, pair := range products {
 		terms := (pair[0].Degree() + 1) * (pair[1].Degree() + 1)
-		if p.work += terms; terms > 1 {
-			p.work += terms * (50 + words(pair[0])*words(pair[1]))
-		}
+		p.work += terms * (50 + words(pair[0])*words(pair[1]))
 	}
 	if p.work > maxWork {
 		return t.wrong("the text asks for too long a computation")

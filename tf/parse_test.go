@@ -63,6 +63,14 @@ func TestParseKeepsRoots(t *testing.T) {
 	}
 }
 
+// The coefficients of this function reach over more than 2¹⁶ bits.
+func TestParseOfWideCoefficients(t *testing.T) {
+	const text = "49 ((z - 4.179591376246709e-308)^2 + 2.0695867270408807e286^2)^16 z^8 (z + 3.736891559583761e-308)^4 / ((z - 6)^4 (z + 3.3623580122583264e-308)^2), period 5"
+	if g, err := Parse(text); err != nil || g.String() != text {
+		t.Errorf("reads back as %v, %v", g, err)
+	}
+}
+
 func TestParseErrors(t *testing.T) {
 	for _, tt := range []struct {
 		text   string
