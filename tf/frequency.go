@@ -71,7 +71,7 @@ func (g Function) FrequencyResponse() (*FrequencyResponse, error) {
 // inRange tells whether ω is a frequency of the response: ≥ 0, in z up to half the sampling
 // frequency (4 units in the last place beyond are forgiven).
 func (r *FrequencyResponse) inRange(frequency float64) bool {
-	return frequency >= 0 && (r.a.period == 0 || frequency*r.a.period <= math.Pi*(1+4*0x1p-52))
+	return r.a != nil && frequency >= 0 && (r.a.period == 0 || frequency*r.a.period <= math.Pi*(1+4*0x1p-52))
 }
 
 // At returns g at the frequency, rad/s, dead time included. At a pole it is cmplx.Inf. It is NaN

@@ -10,7 +10,8 @@ import (
 )
 
 // A Record holds every signal of a loop that [Run] has followed, from t = 0 to
-// [Record.Until]. It never changes; goroutines may share one.
+// [Record.Until]. It never changes; goroutines may share one. The zero value knows nothing:
+// every signal is NaN.
 type Record struct {
 	loop   tf.Loop
 	until  float64
@@ -46,7 +47,12 @@ func (r *Record) Until() float64 { return r.until }
 
 // LimitChanges returns when the actuator reaches and leaves its limit, ascending. Of a
 // loop with a characteristic none are told.
-func (r *Record) LimitChanges() []LimitChange { return r.source.switches() }
+func (r *Record) LimitChanges() []LimitChange {
+	if r.source == nil {
+		return nil
+	}
+	return r.source.switches()
+}
 
 // signalOf gives the signal of the machinery for a point of the loop.
 func signalOf(p tf.Point) (hybrid.Signal, bool) {
@@ -86,7 +92,12 @@ type Reader struct {
 }
 
 // Reader returns a new reader of the record.
-func (r *Record) Reader() *Reader { return &Reader{r.until, r.source.reader()} }
+func (r *Record) Reader() *Reader {
+	if r.source == nil {
+		return &Reader{}
+	}
+	return &Reader{r.until, r.source.reader()}
+}
 
 // At is [Record.At].
 func (d *Reader) At(p tf.Point, t float64) float64 {
@@ -101,7 +112,7 @@ func (d *Reader) At(p tf.Point, t float64) float64 {
 func (d *Reader) Demand(t float64) float64 { return d.at(hybrid.Demand, t) }
 
 func (d *Reader) at(signal hybrid.Signal, t float64) float64 {
-	if !(t >= 0 && t <= d.until) {
+	if d.from == nil || !(t >= 0 && t <= d.until) {
 		return math.NaN()
 	}
 	return d.from.at(signal, t)
@@ -169,7 +180,7 @@ func (r *Record) Figures(band float64) (Figures, error) {
 		return noFigures(), &poly.ArgumentError{Call: call, Argument: "band", Reason: fmt.Sprintf("%g; want a fraction between 0 and 1", band)}
 	}
 	final, ok := r.final()
-	if !ok {
+	if !ok || r.source == nil {
 		return noFigures(), &NoFinalValueError{Call: call}
 	}
 	return recordFigures(r.source, final, band), nil

@@ -239,6 +239,22 @@ func TestRunRefuses(t *testing.T) {
 	}
 }
 
+func TestZeroRecord(t *testing.T) {
+	var r Record
+	if y := r.At(tf.Output, 0); !math.IsNaN(y) {
+		t.Errorf("the output of the zero record is %g, want NaN", y)
+	}
+	if c := r.LimitChanges(); c != nil {
+		t.Errorf("limit changes of the zero record: %v", c)
+	}
+	if _, err := r.Figures(0.02); err == nil {
+		t.Error("figures of the zero record: no error")
+	}
+	if s, err := r.Resample(tf.Output, 1); err != nil || len(s.Times) != 1 || !math.IsNaN(s.Values[0]) {
+		t.Errorf("the zero record resampled: %v, %v", s, err)
+	}
+}
+
 func TestSeriesCompare(t *testing.T) {
 	a := Series{Times: []float64{0, 1, 2}, Values: []float64{1, 2, 3}}
 	b := Series{Times: []float64{0, 1, 2}, Values: []float64{1, 2.5, 2}}
