@@ -70,6 +70,9 @@ const (
 // decade beyond the smallest and the largest zero, pole and gain crossover, at most to half the
 // sampling frequency. Without any it is one decade about 1 rad/s, or about the dead time's inverse.
 func (r *FrequencyResponse) Window() (lo, hi float64) {
+	if r.a == nil {
+		return math.NaN(), math.NaN()
+	}
 	lo, hi = math.Inf(1), 0
 	mark := func(w float64) {
 		if w > 0 && !math.IsInf(w, 1) {
@@ -232,6 +235,9 @@ func distanceToChord(m, a, b complex128) float64 {
 }
 
 func (r *FrequencyResponse) pictureRange(call string, lo, hi float64) (float64, float64, error) {
+	if r.a == nil {
+		return 0, 0, badArgument(call, "r", "is the zero value; Function.FrequencyResponse makes one")
+	}
 	first, last := r.Window()
 	if lo == 0 {
 		lo = first

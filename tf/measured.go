@@ -59,6 +59,9 @@ func NewMeasuredResponse(frequencies []float64, values []complex128) (*MeasuredR
 
 // Range returns the first and the last measured frequency, rad/s.
 func (m *MeasuredResponse) Range() (lo, hi float64) {
+	if len(m.frequencies) == 0 {
+		return math.NaN(), math.NaN()
+	}
 	return m.frequencies[0], m.frequencies[len(m.frequencies)-1]
 }
 
@@ -130,6 +133,9 @@ type MeasuredMargins struct {
 // with negative feedback. Each straight piece is solved exactly.
 func (m *MeasuredResponse) Margins() MeasuredMargins {
 	out := MeasuredMargins{Delay: math.Inf(1)}
+	if len(m.frequencies) == 0 {
+		out.Delay = math.NaN() // nothing was measured
+	}
 	out.From, out.To = m.Range()
 	add := func(list *[]Crossover, w, margin float64) {
 		if k := len(*list); k > 0 && (*list)[k-1].Frequency >= w {
