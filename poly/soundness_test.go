@@ -22,8 +22,7 @@ type judge struct {
 	a        []*big.Int
 	digits   int // bits to which roots are refined
 	prec     uint
-	re, im   []*big.Float // p and its Taylor coefficients at the point
-	distinct int          // degree of the square-free part
+	distinct int // degree of the square-free part
 }
 
 func newJudge(p Poly) *judge {

@@ -19,7 +19,6 @@ type settings struct {
 	available   []float64
 	inUse       float64
 	hasInUse    bool
-	dominant    bool
 	workers     int
 	evaluations int
 }

@@ -238,10 +238,7 @@ func (s *spectrum) delayHoles(tau float64, cause Cause) ([]GainWindow, error) {
 	slices.Sort(knots)
 	knots = slices.Compact(knots)
 	h := func(w float64) float64 { return s.angle(w) - tau*w }
-	var boundary []float64
-	for _, x := range wraps {
-		boundary = append(boundary, x)
-	}
+	boundary := slices.Clone(wraps)
 	for j := 0; j+1 < len(knots); j++ {
 		// A hair inside, since the angle may jump at the knots themselves.
 		a, b := knots[j]*(1+1e-14), knots[j+1]*(1-1e-14)
