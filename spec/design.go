@@ -203,6 +203,26 @@ func (h *hunt) warnings(d Design, g Gains) []string {
 			}
 		}
 	}
+	if !d.Feasible {
+		return out
+	}
+	// Slack alone is greatest at hardly any gain where nothing asks for speed or accuracy.
+	if i, ok := g.Find(math.Abs(d.Gain)); !ok || g.Windows[i].Lo.Gain != 0 {
+		return out
+	}
+	for i, l := range d.Loops {
+		path, err := l.Path(tf.Reference, tf.Output)
+		if err != nil {
+			continue
+		}
+		if rest := real(path.At(0)); math.Abs(1-rest) > 0.5 {
+			loop := ""
+			if len(d.Loops) > 1 {
+				loop = fmt.Sprintf(" of loop %d", i)
+			}
+			out = append(out, fmt.Sprintf("No requirement ends the window at low gains, and at the recommended one the output%s rests at %.3g for a unit step of the reference; a step error, a rise time or a bandwidth in the sheet would keep the gain up.", loop, rest))
+		}
+	}
 	return out
 }
 

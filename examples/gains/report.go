@@ -35,6 +35,10 @@ func printReport(w io.Writer, j *job, d spec.Design) error {
 	heading("Gains that meet the sheet on the true loop")
 	writeWindows(&b, j, d)
 
+	for _, warning := range d.Warnings {
+		fmt.Fprintf(&b, "  Beware: %s\n", warning)
+	}
+
 	if d.Feasible {
 		heading(fmt.Sprintf("Recommended: k = %s", number(d.Gain)))
 		writeRecommendation(&b, j, d)
