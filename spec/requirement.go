@@ -2,6 +2,7 @@ package spec
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"strconv"
@@ -84,6 +85,15 @@ func (r *limited) Validate() error {
 	if k == poleRegion {
 		if r.region == nil {
 			return bad("region", "is missing")
+		}
+		// The windows of a lone pole tell what is wrong with a region at next to no cost.
+		lone, err := locus.Parameter(poly.New(1, 1), poly.New(1))
+		if err != nil {
+			return err
+		}
+		var argument *poly.ArgumentError
+		if _, err := lone.Windows(r.region); errors.As(err, &argument) {
+			return bad("region", argument.Reason)
 		}
 		return nil
 	}
